@@ -1,0 +1,3 @@
+//! The `braidwise` command.
+
+fn main() {}
