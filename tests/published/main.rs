@@ -1,0 +1,5 @@
+//! Values from outside the project, the source named beside each check.
+
+#![allow(clippy::unwrap_used)]
+
+mod catalogue;
