@@ -4,6 +4,8 @@
 //! radials drawn out as conductors, and every place (feed, choke, inline part, entry) resolved to a
 //! distance along a conductor.
 
+mod earth;
+
 use nalgebra::Vector3;
 
 /// A point or direction in space, metres: east, north, up.

@@ -3,3 +3,4 @@
 #![allow(clippy::unwrap_used)]
 
 mod catalogue;
+mod catalogue_soil_models;
