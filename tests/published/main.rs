@@ -4,3 +4,4 @@
 
 mod catalogue;
 mod catalogue_soil_models;
+mod network;
