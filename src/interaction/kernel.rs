@@ -1,0 +1,165 @@
+//! e^{−jkR}/R for many distances at once, compiled for the processor it runs on.
+//!
+//! The sine and cosine are branch-free polynomials after a three-part reduction by π/2 (Cody & Waite 1980; minimax
+//! coefficients of the fdlibm kernels), absolute error below 3·10⁻¹⁶ for arguments up to 10⁵. The same source is compiled for
+//! AVX-512, AVX2 and the baseline, and chosen at run time: the only `unsafe` of the program.
+#![allow(unsafe_code)]
+
+/// Which instruction set the kernel was chosen for, e.g. "avx2".
+#[must_use]
+pub fn instruction_set() -> &'static str {
+    #[cfg(target_arch = "x86_64")]
+    {
+        if std::is_x86_feature_detected!("avx512f") {
+            return "avx512";
+        }
+        if std::is_x86_feature_detected!("avx2") && std::is_x86_feature_detected!("fma") {
+            return "avx2";
+        }
+    }
+    "baseline"
+}
+
+/// Replace squared distances by the kernel e^{−j(k − jα)R}/R.
+///
+/// # Inputs
+/// - `squared_m2`: R² in m², each > 0; k R must stay below 10⁵
+/// - `k_per_m`, `alpha_per_m`: the wavenumber is k − jα, α ≥ 0
+///
+/// # Output
+/// `re`, `im`: real and imaginary part, 1/m; same length as `squared_m2`.
+pub fn outgoing_wave(squared_m2: &[f64], k_per_m: f64, alpha_per_m: f64, re: &mut [f64], im: &mut [f64]) {
+    #[cfg(target_arch = "x86_64")]
+    {
+        if std::is_x86_feature_detected!("avx512f") {
+            // SAFETY: the processor has AVX-512F, checked on the line above.
+            return unsafe { wave_avx512(squared_m2, k_per_m, alpha_per_m, re, im) };
+        }
+        if std::is_x86_feature_detected!("avx2") && std::is_x86_feature_detected!("fma") {
+            // SAFETY: the processor has AVX2 and FMA, checked on the line above.
+            return unsafe { wave_avx2(squared_m2, k_per_m, alpha_per_m, re, im) };
+        }
+    }
+    wave::<false>(squared_m2, k_per_m, alpha_per_m, re, im);
+}
+
+#[cfg(target_arch = "x86_64")]
+#[target_feature(enable = "avx512f")]
+fn wave_avx512(squared: &[f64], k: f64, alpha: f64, re: &mut [f64], im: &mut [f64]) {
+    wave::<true>(squared, k, alpha, re, im);
+}
+
+#[cfg(target_arch = "x86_64")]
+#[target_feature(enable = "avx2,fma")]
+fn wave_avx2(squared: &[f64], k: f64, alpha: f64, re: &mut [f64], im: &mut [f64]) {
+    wave::<true>(squared, k, alpha, re, im);
+}
+
+#[inline(always)]
+fn wave<const FMA: bool>(squared: &[f64], k: f64, alpha: f64, re: &mut [f64], im: &mut [f64]) {
+    let n = squared.len().min(re.len()).min(im.len());
+    let (squared, re, im) = (&squared[..n], &mut re[..n], &mut im[..n]);
+    for i in 0..n {
+        let r = squared[i].sqrt();
+        let inverse = 1.0 / r;
+        let (sin, cos) = sin_cos::<FMA>(k * r);
+        re[i] = cos * inverse;
+        im[i] = -sin * inverse;
+    }
+    if alpha != 0.0 {
+        for i in 0..n {
+            let decay = (-alpha * squared[i].sqrt()).exp();
+            re[i] *= decay;
+            im[i] *= decay;
+        }
+    }
+}
+
+#[inline(always)]
+fn mul_add<const FMA: bool>(a: f64, b: f64, c: f64) -> f64 {
+    if FMA { a.mul_add(b, c) } else { a * b + c }
+}
+
+/// Sine and cosine of 0 ≤ x < 10⁵.
+#[inline(always)]
+fn sin_cos<const FMA: bool>(x: f64) -> (f64, f64) {
+    // π/2 in three parts of 33, 33 and 53 bits
+    const P1: f64 = 1.570_796_326_734_125_614_17;
+    const P2: f64 = 6.077_100_506_303_965_976_60e-11;
+    const P3: f64 = 2.022_266_248_795_950_631_54e-21;
+    const ROUND: f64 = 6_755_399_441_055_744.0; // 1.5·2⁵²: adding it rounds to an integer
+    let shifted = mul_add::<FMA>(x, std::f64::consts::FRAC_2_PI, ROUND);
+    let quadrant = shifted.to_bits();
+    let q = shifted - ROUND;
+    let r = mul_add::<FMA>(-q, P3, mul_add::<FMA>(-q, P2, mul_add::<FMA>(-q, P1, x)));
+    let z = r * r;
+    let s = mul_add::<FMA>(
+        z,
+        mul_add::<FMA>(
+            z,
+            mul_add::<FMA>(
+                z,
+                mul_add::<FMA>(
+                    z,
+                    mul_add::<FMA>(z, 1.589_690_995_211_55e-10, -2.505_076_025_340_686_3e-8),
+                    2.755_731_370_707_006_8e-6,
+                ),
+                -1.984_126_982_985_795e-4,
+            ),
+            8.333_333_333_322_49e-3,
+        ),
+        -1.666_666_666_666_663_2e-1,
+    );
+    let sin = mul_add::<FMA>(r * z, s, r);
+    let c = mul_add::<FMA>(
+        z,
+        mul_add::<FMA>(
+            z,
+            mul_add::<FMA>(
+                z,
+                mul_add::<FMA>(
+                    z,
+                    mul_add::<FMA>(z, -1.135_964_755_778_819_5e-11, 2.087_572_321_298_175e-9),
+                    -2.755_731_435_139_066e-7,
+                ),
+                2.480_158_728_947_673e-5,
+            ),
+            -1.388_888_888_887_411e-3,
+        ),
+        4.166_666_666_666_66e-2,
+    );
+    let cos = mul_add::<FMA>(z * z, c, mul_add::<FMA>(z, -0.5, 1.0));
+    let swap = quadrant & 1 == 1;
+    let (a, b) = if swap { (cos, sin) } else { (sin, cos) };
+    let sin_sign = (quadrant & 2) << 62;
+    let cos_sign = (quadrant.wrapping_add(1) & 2) << 62;
+    (f64::from_bits(a.to_bits() ^ sin_sign), f64::from_bits(b.to_bits() ^ cos_sign))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn sine_and_cosine_agree_with_the_library_to_rounding() {
+        for i in 0..200_000 {
+            let x = (f64::from(i) * 0.37).powf(1.03);
+            if x < 1e5 {
+                let (s, c) = sin_cos::<false>(x);
+                assert!((s - x.sin()).abs() < 4e-16 && (c - x.cos()).abs() < 4e-16, "x = {x}: {s} {c}");
+            }
+        }
+    }
+
+    #[test]
+    fn the_wave_decays_and_turns_as_it_should() {
+        let r: Vec<f64> = (1..50).map(|i| f64::from(i) * 0.3).collect();
+        let squared: Vec<f64> = r.iter().map(|r| r * r).collect();
+        let (mut re, mut im) = (vec![0.0; r.len()], vec![0.0; r.len()]);
+        outgoing_wave(&squared, 0.7, 0.2, &mut re, &mut im);
+        for (i, r) in r.iter().enumerate() {
+            let want = num_complex::Complex64::new(-0.2 * r, -0.7 * r).exp() / r;
+            assert!((want.re - re[i]).abs() < 1e-14 && (want.im - im[i]).abs() < 1e-14);
+        }
+    }
+}
