@@ -1,23 +1,25 @@
-//! The matrix at one frequency.
+//! The matrix at one frequency, and potentials from known charges, by one walk over all pairs.
 
 use super::kernel::outgoing_wave;
 use super::line::Line;
 use super::local::{internal_impedance, jacket_elastance};
+use super::medium::Medium;
 use super::pairs::{LARGEST_RULE, Nodes, Pair, Pairs};
 use crate::layout::EarthAt;
 use crate::mesh::{Element, MAX_DEGREE, Mesh};
-use crate::quantity::{EPSILON_0_F_PER_M, MU_0_H_PER_M, SPEED_OF_LIGHT_M_PER_S};
 use faer::Mat;
 use num_complex::Complex64;
-use std::f64::consts::PI;
 
 /// A dense complex matrix.
 pub type Matrix = Mat<Complex64>;
 
-/// Moments of a kernel over a pair against Legendre polynomials.
-type Block = [[Complex64; MAX_DEGREE + 1]; MAX_DEGREE + 1];
+/// Coefficients or moments against Legendre polynomials P_0..P_3 on an element.
+pub type Legendre = [Complex64; MAX_DEGREE + 1];
 
-const ZERO: Block = [[Complex64::ZERO; MAX_DEGREE + 1]; MAX_DEGREE + 1];
+/// Means over a pair of elements of P_a P_b times a kernel.
+pub(super) type Block = [Legendre; MAX_DEGREE + 1];
+
+pub(super) const ZERO: Block = [[Complex64::ZERO; MAX_DEGREE + 1]; MAX_DEGREE + 1];
 
 /// What one family of source lines (the conductors themselves, or their images) contributes.
 #[derive(Debug, Clone, Copy)]
@@ -28,6 +30,14 @@ struct Weight {
     vertical: Complex64,
     /// On the scalar potential.
     potential: Complex64,
+}
+
+/// The kernels of a pair in a form both the matrix and the potentials can use.
+pub(super) struct PairBlocks {
+    /// Mean of t·K·t' over the pair, 1/m.
+    pub(super) current: Block,
+    /// Mean of K_Φ over the pair, 1/m.
+    pub(super) potential: Block,
 }
 
 /// A mesh with everything its matrices at all frequencies share.
@@ -49,7 +59,8 @@ impl Interaction {
         let direct = Pairs::of(&mesh, false, |_, _| true);
         let image = with_image.then(|| Pairs::of(&mesh, true, |_, _| true));
         let nodes = Nodes::of(&mesh.elements.iter().map(Line::of).collect::<Vec<_>>());
-        let image_nodes = with_image.then(|| Nodes::of(&mesh.elements.iter().map(Line::mirrored).collect::<Vec<_>>()));
+        let image_nodes =
+            with_image.then(|| Nodes::of(&mesh.elements.iter().map(Line::mirrored).collect::<Vec<_>>()));
         Self { mesh, direct, image, nodes, image_nodes }
     }
 
@@ -64,28 +75,72 @@ impl Interaction {
     pub fn fill(&self, frequency_hz: f64, earth: EarthAt) -> Matrix {
         let n = self.mesh.unknowns;
         let mut z = Mat::zeros(n, n);
-        let one = Complex64::ONE;
         let medium = Medium::air(frequency_hz);
-        let weight = Weight { horizontal: one, vertical: one, potential: one };
-        self.add_pairs(&self.direct, &self.nodes, weight, medium, &mut z);
-        if let (EarthAt::Perfect, Some(image), Some(nodes)) = (earth, &self.image, &self.image_nodes) {
-            let weight = Weight { horizontal: -one, vertical: one, potential: -one };
-            self.add_pairs(image, nodes, weight, medium, &mut z);
-        }
+        self.walk(frequency_hz, earth, |i, j, blocks| {
+            let (e, f) = (&self.mesh.elements[i], &self.mesh.elements[j]);
+            let a = medium.magnetic() * (e.length_m * f.length_m);
+            let p = medium.electric() * 4.0;
+            scatter(e, f, &combine(&blocks.current, a, &blocks.potential, p), i != j, &mut z);
+        });
         for element in &self.mesh.elements {
-            self.add_local(element, medium, &mut z);
+            add_local(element, medium, &mut z);
         }
         z
     }
 
-    fn add_pairs(&self, pairs: &Pairs, sources: &Nodes, weight: Weight, medium: Medium, z: &mut Matrix) {
+    /// Scalar potential along every element from the currents, V: Legendre coefficients of the mean over the circumference.
+    ///
+    /// # Inputs
+    /// - `currents`: Legendre coefficients of each element's current, A
+    #[must_use]
+    pub fn potentials(&self, frequency_hz: f64, earth: EarthAt, currents: &[Legendre]) -> Vec<Legendre> {
+        let medium = Medium::air(frequency_hz);
+        // Φ = 1/(4πε0) ∫ K_Φ q ds', q = −(1/jω) dI/ds, so the factor is −1/(jωε0 4π)
+        let factor = -medium.electric();
+        let elements = &self.mesh.elements;
+        let charge: Vec<Legendre> = currents.iter().map(|c| derive(*c).map(|x| x * 2.0)).collect();
+        let mut out = vec![[Complex64::ZERO; MAX_DEGREE + 1]; elements.len()];
+        self.walk(frequency_hz, earth, |i, j, blocks| {
+            for a in 0..=MAX_DEGREE {
+                let scale = factor * (2.0 * a as f64 + 1.0);
+                for b in 0..=MAX_DEGREE {
+                    out[i][a] += scale * blocks.potential[a][b] * charge[j][b];
+                    if i != j {
+                        out[j][a] += scale * blocks.potential[b][a] * charge[i][b];
+                    }
+                }
+            }
+        });
+        out
+    }
+
+    /// Hand every pair (i ≤ j) with its kernels, all images included, to a function. A pair may come in several parts.
+    pub(super) fn walk(&self, frequency_hz: f64, earth: EarthAt, mut visit: impl FnMut(usize, usize, &PairBlocks)) {
+        let one = Complex64::ONE;
+        let medium = Medium::air(frequency_hz);
+        let weight = Weight { horizontal: one, vertical: one, potential: one };
+        self.walk_family(&self.direct, &self.nodes, weight, medium, &mut visit);
+        if let (EarthAt::Perfect, Some(image), Some(nodes)) = (earth, &self.image, &self.image_nodes) {
+            let weight = Weight { horizontal: -one, vertical: one, potential: -one };
+            self.walk_family(image, nodes, weight, medium, &mut visit);
+        }
+    }
+
+    fn walk_family(
+        &self,
+        pairs: &Pairs,
+        sources: &Nodes,
+        weight: Weight,
+        medium: Medium,
+        visit: &mut impl FnMut(usize, usize, &PairBlocks),
+    ) {
         let mut scratch = Scratch::default();
+        let half_k2 = 0.5 * medium.k * medium.k;
         for pair in &pairs.list {
             let (e, f) = (&self.mesh.elements[pair.one], &self.mesh.elements[pair.two]);
             let mut block = scratch.moments(pair, &self.nodes, sources, medium);
             if let Some(index) = pair.near {
                 let s = &pairs.statics[index as usize];
-                let half_k2 = 0.5 * medium.k * medium.k;
                 let area = e.length_m * f.length_m;
                 for a in 0..=MAX_DEGREE {
                     for b in 0..=MAX_DEGREE {
@@ -95,90 +150,68 @@ impl Interaction {
             }
             let (t, u) = (e.tangent, f.tangent);
             let current = weight.horizontal * (t.x * u.x + t.y * u.y) + weight.vertical * (t.z * u.z);
-            let area = e.length_m * f.length_m;
-            let a = medium.magnetic() * current * area;
-            let p = medium.electric() * weight.potential * 4.0;
-            self.scatter(e, f, &combine(&block, a, p), pair.one != pair.two, z);
+            let blocks = PairBlocks { current: scaled(&block, current), potential: scaled(&block, weight.potential) };
+            visit(pair.one, pair.two, &blocks);
         }
     }
+}
 
-    /// Metal loss and jacket of one element.
-    fn add_local(&self, e: &Element, medium: Medium, z: &mut Matrix) {
-        let mut a = Complex64::ZERO;
-        let mut p = Complex64::ZERO;
-        if let Some(sigma) = e.conductivity_s_per_m {
-            a = internal_impedance(e.radius_m, sigma, medium.angular) * e.length_m;
-        }
-        if let Some(jacket) = e.jacket {
-            let elastance =
-                jacket_elastance(e.radius_m, e.radius_m + jacket.thickness_m, jacket.permittivity, medium.permittivity);
-            p = elastance / Complex64::new(0.0, medium.angular) * (4.0 / e.length_m);
-        }
-        if a != Complex64::ZERO || p != Complex64::ZERO {
-            let mut block = ZERO;
-            for (k, row) in block.iter_mut().enumerate() {
-                row[k] = Complex64::from(1.0 / (2.0 * k as f64 + 1.0));
-            }
-            self.scatter(e, e, &combine(&block, a, p), false, z);
-        }
+fn scaled(block: &Block, factor: Complex64) -> Block {
+    block.map(|row| row.map(|x| x * factor))
+}
+
+/// Metal loss and jacket of one element.
+fn add_local(e: &Element, medium: Medium, z: &mut Matrix) {
+    let mut a = Complex64::ZERO;
+    let mut p = Complex64::ZERO;
+    if let Some(sigma) = e.conductivity_s_per_m {
+        a = internal_impedance(e.radius_m, sigma, medium.angular) * e.length_m;
     }
+    if let Some(jacket) = e.jacket {
+        let elastance =
+            jacket_elastance(e.radius_m, e.radius_m + jacket.thickness_m, jacket.permittivity, medium.permittivity);
+        p = elastance / Complex64::new(0.0, medium.angular) * (4.0 / e.length_m);
+    }
+    if a != Complex64::ZERO || p != Complex64::ZERO {
+        let mut block = ZERO;
+        for (k, row) in block.iter_mut().enumerate() {
+            row[k] = Complex64::from(1.0 / (2.0 * k as f64 + 1.0));
+        }
+        scatter(e, e, &combine(&block, a, &block, p), false, z);
+    }
+}
 
-    /// Add an element block, given in Legendre coefficients, to the unknowns' matrix.
-    fn scatter(&self, e: &Element, f: &Element, block: &Block, twice: bool, z: &mut Matrix) {
-        for (u, x) in e.legendre_map() {
-            let row: [Complex64; MAX_DEGREE + 1] =
-                std::array::from_fn(|b| (0..=MAX_DEGREE).map(|a| block[a][b] * x[a]).sum());
-            for (v, y) in f.legendre_map() {
-                let value: Complex64 = (0..=MAX_DEGREE).map(|b| row[b] * y[b]).sum();
-                z[(u, v)] += value;
-                if twice {
-                    z[(v, u)] += value;
-                }
+/// Add an element block, given in Legendre coefficients, to the unknowns' matrix.
+fn scatter(e: &Element, f: &Element, block: &Block, twice: bool, z: &mut Matrix) {
+    for (u, x) in e.legendre_map() {
+        let row: Legendre = std::array::from_fn(|b| (0..=MAX_DEGREE).map(|a| block[a][b] * x[a]).sum());
+        for (v, y) in f.legendre_map() {
+            let value: Complex64 = (0..=MAX_DEGREE).map(|b| row[b] * y[b]).sum();
+            z[(u, v)] += value;
+            if twice {
+                z[(v, u)] += value;
             }
         }
     }
 }
 
-/// a · M + p · D M Dᵗ, D the derivative of Legendre polynomials: P1′ = P0, P2′ = 3 P1, P3′ = 5 P2 + P0.
-fn combine(m: &Block, a: Complex64, p: Complex64) -> Block {
-    let derive = |row: [Complex64; 4]| [Complex64::ZERO, row[0], row[1] * 3.0, row[2] * 5.0 + row[0]];
-    let rows = [derive(m[0]), derive(m[1]), derive(m[2])];
-    let column = |b: usize| derive([rows[0][b], rows[1][b], rows[2][b], Complex64::ZERO]);
+/// Derivative with respect to ξ of a Legendre series, of degree at most 3: P1′ = P0, P2′ = 3 P1, P3′ = 5 P2 + P0.
+fn derive(c: Legendre) -> Legendre {
+    [c[1] + c[3], c[2] * 3.0, c[3] * 5.0, Complex64::ZERO]
+}
+
+/// a · M + p · D N Dᵗ, D the transposed derivative.
+fn combine(m: &Block, a: Complex64, n: &Block, p: Complex64) -> Block {
+    let raise = |row: Legendre| [Complex64::ZERO, row[0], row[1] * 3.0, row[2] * 5.0 + row[0]];
+    let rows = [raise(n[0]), raise(n[1]), raise(n[2])];
     let mut out = ZERO;
     for b in 0..=MAX_DEGREE {
-        let d = column(b);
+        let d = raise([rows[0][b], rows[1][b], rows[2][b], Complex64::ZERO]);
         for k in 0..=MAX_DEGREE {
             out[k][b] = a * m[k][b] + p * d[k];
         }
     }
     out
-}
-
-/// The medium the elements of a pair lie in.
-#[derive(Debug, Clone, Copy)]
-struct Medium {
-    angular: f64,
-    /// Wavenumber, 1/m.
-    k: Complex64,
-    /// Relative permittivity.
-    permittivity: Complex64,
-}
-
-impl Medium {
-    fn air(frequency_hz: f64) -> Self {
-        let angular = 2.0 * PI * frequency_hz;
-        Self { angular, k: Complex64::from(angular / SPEED_OF_LIGHT_M_PER_S), permittivity: Complex64::ONE }
-    }
-
-    /// jωμ0/4π.
-    fn magnetic(&self) -> Complex64 {
-        Complex64::new(0.0, self.angular * MU_0_H_PER_M / (4.0 * PI))
-    }
-
-    /// 1/(jωε 4π).
-    fn electric(&self) -> Complex64 {
-        (Complex64::new(0.0, self.angular * EPSILON_0_F_PER_M * 4.0 * PI) * self.permittivity).inv()
-    }
 }
 
 /// Room for one pair's kernel values.

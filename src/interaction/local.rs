@@ -12,7 +12,7 @@ use std::f64::consts::PI;
 /// # Source
 /// Schelkunoff 1934; exact for a round wire with axially symmetric current.
 #[must_use]
-pub(super) fn internal_impedance(radius_m: f64, conductivity_s_per_m: f64, angular_per_s: f64) -> Complex64 {
+pub fn internal_impedance(radius_m: f64, conductivity_s_per_m: f64, angular_per_s: f64) -> Complex64 {
     let gamma = Complex64::new(0.0, angular_per_s * MU_0_H_PER_M * conductivity_s_per_m).sqrt();
     let x = gamma * radius_m;
     // the common scale factor e^{-Re x} of the scaled functions cancels in the ratio

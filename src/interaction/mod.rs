@@ -15,9 +15,11 @@ mod fill;
 pub mod kernel;
 mod line;
 mod local;
+mod medium;
 mod near;
 mod pairs;
 pub mod quadrature;
 
+pub use local::internal_impedance;
 pub use factor::{Factored, SingularMatrix};
-pub use fill::{Interaction, Matrix};
+pub use fill::{Interaction, Legendre, Matrix};
