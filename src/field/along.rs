@@ -107,9 +107,5 @@ fn metal_of(e: &Element, c: &Legendre, frequency_hz: f64) -> f64 {
 /// Distances on a conductor where other conductors join it.
 fn joins(layout: &Layout, conductor: usize) -> Vec<f64> {
     let at = layout.conductors[conductor].distances_m();
-    layout
-        .junctions
-        .iter()
-        .flat_map(|j| j.members.iter().filter(|m| m.0 == conductor).map(|m| at[m.1]))
-        .collect()
+    layout.junctions.iter().flat_map(|j| j.members.iter().filter(|m| m.0 == conductor).map(|m| at[m.1])).collect()
 }

@@ -140,13 +140,7 @@ impl FarField {
         let (n_theta, n_phi) = plane.at(self, (90.0 - bearing_deg).to_radians());
         let dbi = |u: f64| (10.0 * (4.0 * PI * u / input_w).max(1e-20).log10()).max(-200.0);
         let (v, h) = (self.intensity(n_theta), self.intensity(n_phi));
-        Pattern {
-            elevation_deg,
-            bearing_deg,
-            vertical_dbi: dbi(v),
-            horizontal_dbi: dbi(h),
-            total_dbi: dbi(v + h),
-        }
+        Pattern { elevation_deg, bearing_deg, vertical_dbi: dbi(v), horizontal_dbi: dbi(h), total_dbi: dbi(v + h) }
     }
 
     fn plane(&self, sin_elevation: f64) -> Plane {

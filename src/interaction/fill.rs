@@ -1,10 +1,10 @@
 //! The matrix at one frequency, and potentials from known charges, by one walk over all pairs.
 
-use super::kernel::outgoing_wave;
+use super::kernel::{PointPair, pair_block};
 use super::line::Line;
 use super::local::{internal_impedance, jacket_elastance};
 use super::medium::Medium;
-use super::pairs::{LARGEST_RULE, Nodes, Pair, Pairs};
+use super::pairs::{Nodes, Pairs};
 use crate::layout::EarthAt;
 use crate::mesh::{Element, MAX_DEGREE, Mesh};
 use faer::Mat;
@@ -40,10 +40,14 @@ pub(super) struct PairBlocks {
     pub(super) potential: Block,
 }
 
+/// How the unknowns enter the Legendre coefficients of an element's current.
+type UnknownMap = Vec<(usize, [f64; MAX_DEGREE + 1])>;
+
 /// A mesh with everything its matrices at all frequencies share.
 #[derive(Debug, Clone)]
 pub struct Interaction {
     mesh: Mesh,
+    maps: Vec<UnknownMap>,
     direct: Pairs,
     image: Option<Pairs>,
     nodes: Nodes,
@@ -59,9 +63,9 @@ impl Interaction {
         let direct = Pairs::of(&mesh, false, |_, _| true);
         let image = with_image.then(|| Pairs::of(&mesh, true, |_, _| true));
         let nodes = Nodes::of(&mesh.elements.iter().map(Line::of).collect::<Vec<_>>());
-        let image_nodes =
-            with_image.then(|| Nodes::of(&mesh.elements.iter().map(Line::mirrored).collect::<Vec<_>>()));
-        Self { mesh, direct, image, nodes, image_nodes }
+        let image_nodes = with_image.then(|| Nodes::of(&mesh.elements.iter().map(Line::mirrored).collect::<Vec<_>>()));
+        let maps = mesh.elements.iter().map(Element::legendre_map).collect();
+        Self { mesh, maps, direct, image, nodes, image_nodes }
     }
 
     /// The mesh.
@@ -80,10 +84,10 @@ impl Interaction {
             let (e, f) = (&self.mesh.elements[i], &self.mesh.elements[j]);
             let a = medium.magnetic() * (e.length_m * f.length_m);
             let p = medium.electric() * 4.0;
-            scatter(e, f, &combine(&blocks.current, a, &blocks.potential, p), i != j, &mut z);
+            scatter(&self.maps[i], &self.maps[j], &combine(&blocks.current, a, &blocks.potential, p), i != j, &mut z);
         });
-        for element in &self.mesh.elements {
-            add_local(element, medium, &mut z);
+        for (element, map) in self.mesh.elements.iter().zip(&self.maps) {
+            add_local(element, map, medium, &mut z);
         }
         z
     }
@@ -134,11 +138,20 @@ impl Interaction {
         medium: Medium,
         visit: &mut impl FnMut(usize, usize, &PairBlocks),
     ) {
-        let mut scratch = Scratch::default();
         let half_k2 = 0.5 * medium.k * medium.k;
         for pair in &pairs.list {
             let (e, f) = (&self.mesh.elements[pair.one], &self.mesh.elements[pair.two]);
-            let mut block = scratch.moments(pair, &self.nodes, sources, medium);
+            let (n, m) = (usize::from(pair.points.0), usize::from(pair.points.1));
+            let points = PointPair {
+                observers: &self.nodes.at[pair.one][n],
+                sources: &sources.at[pair.two][m],
+                left: &self.nodes.weighted[n],
+                right: &self.nodes.weighted[m],
+                offset_m2: pair.offset_m2,
+                rest_only: pair.near.is_some(),
+            };
+            let (re, im) = pair_block(&points, medium.k.re, -medium.k.im);
+            let mut block: Block = std::array::from_fn(|a| std::array::from_fn(|b| Complex64::new(re[a][b], im[a][b])));
             if let Some(index) = pair.near {
                 let s = &pairs.statics[index as usize];
                 let area = e.length_m * f.length_m;
@@ -161,7 +174,7 @@ fn scaled(block: &Block, factor: Complex64) -> Block {
 }
 
 /// Metal loss and jacket of one element.
-fn add_local(e: &Element, medium: Medium, z: &mut Matrix) {
+fn add_local(e: &Element, map: &UnknownMap, medium: Medium, z: &mut Matrix) {
     let mut a = Complex64::ZERO;
     let mut p = Complex64::ZERO;
     if let Some(sigma) = e.conductivity_s_per_m {
@@ -177,19 +190,19 @@ fn add_local(e: &Element, medium: Medium, z: &mut Matrix) {
         for (k, row) in block.iter_mut().enumerate() {
             row[k] = Complex64::from(1.0 / (2.0 * k as f64 + 1.0));
         }
-        scatter(e, e, &combine(&block, a, &block, p), false, z);
+        scatter(map, map, &combine(&block, a, &block, p), false, z);
     }
 }
 
 /// Add an element block, given in Legendre coefficients, to the unknowns' matrix.
-fn scatter(e: &Element, f: &Element, block: &Block, twice: bool, z: &mut Matrix) {
-    for (u, x) in e.legendre_map() {
-        let row: Legendre = std::array::from_fn(|b| (0..=MAX_DEGREE).map(|a| block[a][b] * x[a]).sum());
-        for (v, y) in f.legendre_map() {
-            let value: Complex64 = (0..=MAX_DEGREE).map(|b| row[b] * y[b]).sum();
-            z[(u, v)] += value;
+fn scatter(one: &UnknownMap, two: &UnknownMap, block: &Block, twice: bool, z: &mut Matrix) {
+    for (v, y) in two {
+        let column: Legendre = std::array::from_fn(|a| (0..=MAX_DEGREE).map(|b| block[a][b] * y[b]).sum());
+        for (u, x) in one {
+            let value: Complex64 = (0..=MAX_DEGREE).map(|a| column[a] * x[a]).sum();
+            z[(*u, *v)] += value;
             if twice {
-                z[(v, u)] += value;
+                z[(*v, *u)] += value;
             }
         }
     }
@@ -212,60 +225,4 @@ fn combine(m: &Block, a: Complex64, n: &Block, p: Complex64) -> Block {
         }
     }
     out
-}
-
-/// Room for one pair's kernel values.
-struct Scratch {
-    squared: [f64; LARGEST_RULE * LARGEST_RULE],
-    re: [f64; LARGEST_RULE * LARGEST_RULE],
-    im: [f64; LARGEST_RULE * LARGEST_RULE],
-}
-
-impl Default for Scratch {
-    fn default() -> Self {
-        const N: usize = LARGEST_RULE * LARGEST_RULE;
-        Self { squared: [1.0; N], re: [0.0; N], im: [0.0; N] }
-    }
-}
-
-impl Scratch {
-    /// Mean over both elements of P_a P_b times e^{−jkR}/R (far) or e^{−jkR}/R − 1/R + k²R/2 (near).
-    fn moments(&mut self, pair: &Pair, observers: &Nodes, sources: &Nodes, medium: Medium) -> Block {
-        let (n, m) = (usize::from(pair.points.0), usize::from(pair.points.1));
-        let [x, y, z] = &observers.at[pair.one][n];
-        let [u, v, w] = &sources.at[pair.two][m];
-        for q in 0..n {
-            let row = &mut self.squared[q * m..(q + 1) * m];
-            for r in 0..m {
-                let (dx, dy, dz) = (x[q] - u[r], y[q] - v[r], z[q] - w[r]);
-                row[r] = dx * dx + dy * dy + dz * dz + pair.offset_m2;
-            }
-        }
-        let count = n * m;
-        outgoing_wave(&self.squared[..count], medium.k.re, -medium.k.im, &mut self.re, &mut self.im);
-        if pair.near.is_some() {
-            let half_k2 = 0.5 * medium.k * medium.k;
-            for i in 0..count {
-                let r = self.squared[i].sqrt();
-                self.re[i] += half_k2.re * r - 1.0 / r;
-                self.im[i] += half_k2.im * r;
-            }
-        }
-        let (left, right) = (&observers.weighted[n], &observers.weighted[m]);
-        let mut out = ZERO;
-        for q in 0..n {
-            let (re, im) = (&self.re[q * m..(q + 1) * m], &self.im[q * m..(q + 1) * m]);
-            for b in 0..=MAX_DEGREE {
-                let (mut sr, mut si) = (0.0, 0.0);
-                for r in 0..m {
-                    sr += re[r] * right[b][r];
-                    si += im[r] * right[b][r];
-                }
-                for a in 0..=MAX_DEGREE {
-                    out[a][b] += Complex64::new(sr * left[a][q], si * left[a][q]);
-                }
-            }
-        }
-        out
-    }
 }

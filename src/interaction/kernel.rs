@@ -20,41 +20,7 @@ pub fn instruction_set() -> &'static str {
     "baseline"
 }
 
-/// Replace squared distances by the kernel e^{−j(k − jα)R}/R.
-///
-/// # Inputs
-/// - `squared_m2`: R² in m², each > 0; k R must stay below 10⁵
-/// - `k_per_m`, `alpha_per_m`: the wavenumber is k − jα, α ≥ 0
-///
-/// # Output
-/// `re`, `im`: real and imaginary part, 1/m; same length as `squared_m2`.
-pub fn outgoing_wave(squared_m2: &[f64], k_per_m: f64, alpha_per_m: f64, re: &mut [f64], im: &mut [f64]) {
-    #[cfg(target_arch = "x86_64")]
-    {
-        if std::is_x86_feature_detected!("avx512f") {
-            // SAFETY: the processor has AVX-512F, checked on the line above.
-            return unsafe { wave_avx512(squared_m2, k_per_m, alpha_per_m, re, im) };
-        }
-        if std::is_x86_feature_detected!("avx2") && std::is_x86_feature_detected!("fma") {
-            // SAFETY: the processor has AVX2 and FMA, checked on the line above.
-            return unsafe { wave_avx2(squared_m2, k_per_m, alpha_per_m, re, im) };
-        }
-    }
-    wave::<false>(squared_m2, k_per_m, alpha_per_m, re, im);
-}
-
-#[cfg(target_arch = "x86_64")]
-#[target_feature(enable = "avx512f")]
-fn wave_avx512(squared: &[f64], k: f64, alpha: f64, re: &mut [f64], im: &mut [f64]) {
-    wave::<true>(squared, k, alpha, re, im);
-}
-
-#[cfg(target_arch = "x86_64")]
-#[target_feature(enable = "avx2,fma")]
-fn wave_avx2(squared: &[f64], k: f64, alpha: f64, re: &mut [f64], im: &mut [f64]) {
-    wave::<true>(squared, k, alpha, re, im);
-}
-
+/// Squared distances to e^{−j(k − jα)R}/R.
 #[inline(always)]
 fn wave<const FMA: bool>(squared: &[f64], k: f64, alpha: f64, re: &mut [f64], im: &mut [f64]) {
     let n = squared.len().min(re.len()).min(im.len());
@@ -73,6 +39,104 @@ fn wave<const FMA: bool>(squared: &[f64], k: f64, alpha: f64, re: &mut [f64], im
             im[i] *= decay;
         }
     }
+}
+
+/// Points on each of two elements with their weights, and how far apart they count.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct PointPair<'a> {
+    /// x, y, z of the points on the first element, m.
+    pub(super) observers: &'a [Vec<f64>; 3],
+    /// The same on the second.
+    pub(super) sources: &'a [Vec<f64>; 3],
+    /// Weight times P_0..P_3 at each point of the first element.
+    pub(super) left: &'a [[f64; 4]],
+    /// The same of the second.
+    pub(super) right: &'a [[f64; 4]],
+    /// Added to every squared distance, m².
+    pub(super) offset_m2: f64,
+    /// Take the static part 1/R − k²R/2 out.
+    pub(super) rest_only: bool,
+}
+
+/// Real and imaginary parts of a 4 × 4 block of moments.
+pub(super) type SplitBlock = ([[f64; 4]; 4], [[f64; 4]; 4]);
+
+/// Most points on one element.
+pub(super) const MOST_POINTS: usize = 8;
+const ROOM: usize = MOST_POINTS * MOST_POINTS;
+
+/// Σ_q Σ_r left_a right_b e^{−j(k − jα)R}/R for a pair of elements, 1/m; with `rest_only` less Σ (1/R − k²R/2).
+pub(super) fn pair_block(pair: &PointPair, k_per_m: f64, alpha_per_m: f64) -> SplitBlock {
+    #[cfg(target_arch = "x86_64")]
+    {
+        if std::is_x86_feature_detected!("avx512f") {
+            // SAFETY: the processor has AVX-512F, checked on the line above.
+            return unsafe { pair_avx512(pair, k_per_m, alpha_per_m) };
+        }
+        if std::is_x86_feature_detected!("avx2") && std::is_x86_feature_detected!("fma") {
+            // SAFETY: the processor has AVX2 and FMA, checked on the line above.
+            return unsafe { pair_avx2(pair, k_per_m, alpha_per_m) };
+        }
+    }
+    pair_loop::<false>(pair, k_per_m, alpha_per_m)
+}
+
+#[cfg(target_arch = "x86_64")]
+#[target_feature(enable = "avx512f")]
+fn pair_avx512(pair: &PointPair, k: f64, alpha: f64) -> SplitBlock {
+    pair_loop::<true>(pair, k, alpha)
+}
+
+#[cfg(target_arch = "x86_64")]
+#[target_feature(enable = "avx2,fma")]
+fn pair_avx2(pair: &PointPair, k: f64, alpha: f64) -> SplitBlock {
+    pair_loop::<true>(pair, k, alpha)
+}
+
+#[inline(always)]
+fn pair_loop<const FMA: bool>(pair: &PointPair, k: f64, alpha: f64) -> SplitBlock {
+    let (n, m) = (pair.left.len().min(MOST_POINTS), pair.right.len().min(MOST_POINTS));
+    let [x, y, z] = pair.observers;
+    let [u, v, w] = pair.sources;
+    let (u, v, w) = (&u[..m], &v[..m], &w[..m]);
+    let (mut squared, mut re, mut im) = ([1.0; ROOM], [0.0; ROOM], [0.0; ROOM]);
+    for q in 0..n {
+        let row = &mut squared[q * m..(q + 1) * m];
+        for r in 0..m {
+            let (dx, dy, dz) = (x[q] - u[r], y[q] - v[r], z[q] - w[r]);
+            row[r] = dx * dx + dy * dy + dz * dz + pair.offset_m2;
+        }
+    }
+    // whole vectors: the padding holds R = 1 and is not summed
+    let count = (n * m).next_multiple_of(8).min(ROOM);
+    wave::<FMA>(&squared[..count], k, alpha, &mut re[..count], &mut im[..count]);
+    if pair.rest_only {
+        // (k − jα)²/2
+        let (half_re, half_im) = (0.5 * (k * k - alpha * alpha), -k * alpha);
+        for i in 0..count {
+            let r = squared[i].sqrt();
+            re[i] += half_re * r - 1.0 / r;
+            im[i] += half_im * r;
+        }
+    }
+    let (mut out_re, mut out_im) = ([[0.0; 4]; 4], [[0.0; 4]; 4]);
+    for q in 0..n {
+        let (mut sum_re, mut sum_im) = ([0.0; 4], [0.0; 4]);
+        for r in 0..m {
+            let (a, b, weights) = (re[q * m + r], im[q * m + r], &pair.right[r]);
+            for i in 0..4 {
+                sum_re[i] = mul_add::<FMA>(a, weights[i], sum_re[i]);
+                sum_im[i] = mul_add::<FMA>(b, weights[i], sum_im[i]);
+            }
+        }
+        for a in 0..4 {
+            for b in 0..4 {
+                out_re[a][b] = mul_add::<FMA>(pair.left[q][a], sum_re[b], out_re[a][b]);
+                out_im[a][b] = mul_add::<FMA>(pair.left[q][a], sum_im[b], out_im[a][b]);
+            }
+        }
+    }
+    (out_re, out_im)
 }
 
 /// Cosine and sine of many angles, any sign, |angle| < 10⁵; all slices of one length.
@@ -183,7 +247,7 @@ mod tests {
         let r: Vec<f64> = (1..50).map(|i| f64::from(i) * 0.3).collect();
         let squared: Vec<f64> = r.iter().map(|r| r * r).collect();
         let (mut re, mut im) = (vec![0.0; r.len()], vec![0.0; r.len()]);
-        outgoing_wave(&squared, 0.7, 0.2, &mut re, &mut im);
+        wave::<false>(&squared, 0.7, 0.2, &mut re, &mut im);
         for (i, r) in r.iter().enumerate() {
             let want = num_complex::Complex64::new(-0.2 * r, -0.7 * r).exp() / r;
             assert!((want.re - re[i]).abs() < 1e-14 && (want.im - im[i]).abs() < 1e-14);

@@ -20,6 +20,6 @@ mod near;
 mod pairs;
 pub mod quadrature;
 
-pub use local::internal_impedance;
 pub use factor::{Factored, SingularMatrix};
 pub use fill::{Interaction, Legendre, Matrix};
+pub use local::internal_impedance;

@@ -1,8 +1,9 @@
 //! Every pair of elements with what does not depend on frequency: how it is integrated, and its static moments.
 
+use super::kernel::MOST_POINTS;
 use super::line::{Line, Tubes, clearance, tubes};
 use super::near::{Static, moments};
-use super::quadrature::gauss;
+use super::quadrature::{gauss, legendre};
 use crate::mesh::{Element, Mesh};
 
 /// A pair (one, two) of elements, `two` possibly as its mirror image.
@@ -23,8 +24,6 @@ pub(crate) struct Pair {
 pub(crate) struct Pairs {
     pub(crate) list: Vec<Pair>,
     pub(crate) statics: Vec<Static>,
-    /// `two` stands for its mirror image in height 0.
-    pub(crate) mirrored: bool,
 }
 
 /// Nearer than this many lengths of the longer element: static part in closed form.
@@ -52,7 +51,7 @@ impl Pairs {
                 list.push(Pair { near, ..pair.0 });
             }
         }
-        Self { list, statics, mirrored }
+        Self { list, statics }
     }
 }
 
@@ -102,12 +101,12 @@ fn far_points(e: &Element, gap: f64) -> u8 {
 pub(crate) struct Nodes {
     /// For each element and rule size (index = points): coordinates.
     pub(crate) at: Vec<Vec<[Vec<f64>; 3]>>,
-    /// For each rule size: rows a of w_q P_a(ξ_q) / 2.
-    pub(crate) weighted: Vec<[Vec<f64>; 4]>,
+    /// For each rule size: w_q P_a(ξ_q) / 2 at each point q, a = 0..=3.
+    pub(crate) weighted: Vec<Vec<[f64; 4]>>,
 }
 
 /// Largest rule used on a pair.
-pub(crate) const LARGEST_RULE: usize = 8;
+const LARGEST_RULE: usize = MOST_POINTS;
 
 impl Nodes {
     pub(crate) fn of(lines: &[Line]) -> Self {
@@ -125,13 +124,8 @@ impl Nodes {
         let weighted = (0..=LARGEST_RULE)
             .map(|n| {
                 let rule = gauss(n.max(1));
-                std::array::from_fn(|a| {
-                    rule.nodes
-                        .iter()
-                        .zip(&rule.weights)
-                        .map(|(x, w)| 0.5 * w * super::quadrature::legendre(*x)[a])
-                        .collect()
-                })
+                let at = |(x, w): (&f64, &f64)| legendre(*x).map(|p| 0.5 * w * p);
+                rule.nodes.iter().zip(&rule.weights).map(at).collect()
             })
             .collect();
         Self { at, weighted }

@@ -88,9 +88,9 @@ fn earth_outcome(earth: Earth) -> EarthOutcome {
         Earth::Soil(Soil::Constant { permittivity, conductivity_s_per_m }) => {
             ("soil", Some(permittivity), Some(conductivity_s_per_m))
         }
-        Earth::Soil(
-            Soil::LongmireSmith { conductivity_s_per_m } | Soil::AlipioVisacro { conductivity_s_per_m },
-        ) => ("soil", None, Some(conductivity_s_per_m)),
+        Earth::Soil(Soil::LongmireSmith { conductivity_s_per_m } | Soil::AlipioVisacro { conductivity_s_per_m }) => {
+            ("soil", None, Some(conductivity_s_per_m))
+        }
     };
     EarthOutcome { kind: kind.to_string(), permittivity, conductivity_s_per_m }
 }
@@ -113,8 +113,8 @@ impl At<'_> {
         let state = Chain::of(self.layout).at(f).state(feed_ohm, self.layout.operation.power_w)?;
         // with 1 V (peak) at the gap the feed takes ½ Re Y; everything is linear in the voltage
         let voltage_peak_v = (2.0 * state.feed_w / currents[0].re).sqrt();
-        let solution = Solution::new(fine.mesh(), &model.unknowns(&parts, &currents))
-            .scaled(Complex64::from(voltage_peak_v));
+        let solution =
+            Solution::new(fine.mesh(), &model.unknowns(&parts, &currents)).scaled(Complex64::from(voltage_peak_v));
         let port_currents = currents * Complex64::from(voltage_peak_v);
         let conductors = self.conductors(fine, &solution);
         let difference = feed_ohm - second_ohm;
@@ -220,8 +220,7 @@ impl At<'_> {
         let earth_w = 0.0;
         let metal_w = solution.metal_w(mesh, f);
         let in_parts: f64 = chokes.iter().chain(&inline).map(|p| p.dissipated_w).sum();
-        let accounted =
-            radiated_w + earth_w + metal_w + state.line_w + state.transformer_w + in_parts;
+        let accounted = radiated_w + earth_w + metal_w + state.line_w + state.transformer_w + in_parts;
         PowerOutcome {
             input_w,
             radiated_w,

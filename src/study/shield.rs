@@ -12,10 +12,8 @@ pub(super) fn outcome(layout: &Layout, conductors: &[ConductorOutcome]) -> Optio
     let entry = entry(layout, coax, conductors);
     let end = end_kind(layout, coax);
     let largest = points.iter().max_by(|a, b| a.current_a.norm().total_cmp(&b.current_a.norm()))?;
-    let highest = points
-        .iter()
-        .filter_map(|p| p.voltage_v.map(|v| (v, p.distance_m)))
-        .max_by(|a, b| a.0.total_cmp(&b.0));
+    let highest =
+        points.iter().filter_map(|p| p.voltage_v.map(|v| (v, p.distance_m))).max_by(|a, b| a.0.total_cmp(&b.0));
     let near_end = points.iter().filter(|p| p.distance_m >= last.distance_m - 1.0);
     Some(ShieldOutcome {
         entry_at_m: coax.entry_m,
