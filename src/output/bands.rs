@@ -78,6 +78,15 @@ pub(super) fn edge_word(edge: BandEdge) -> &'static str {
     }
 }
 
+/// An edge as the JSON has it.
+pub(super) fn edge_name(edge: BandEdge) -> &'static str {
+    match edge {
+        BandEdge::Low => "low",
+        BandEdge::Middle => "middle",
+        BandEdge::High => "high",
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

@@ -3,7 +3,7 @@
 /// What stands under every result about a station at power.
 pub(super) const STATION: [&str; 6] = [
     "High voltage stands at the ends of the wire and at the feed point whenever you transmit: out of reach of people and animals.",
-    "A bare feed point, counterpoise or hot shield burns at far lower currents than those shown; insulate what can be touched.",
+    "A bare feed point, counterpoise or hot shield can burn whoever touches it; insulate what can be reached.",
     "Voltages here are the conductor's potential, a guide to insulation and burns; no meter reads them as such.",
     "Keep every wire, mast and rope away from power lines, also if it falls, also while it is being put up.",
     "Lightning: bond and protect the station as the local code asks; no choke and no low standing-wave ratio does that.",

@@ -4,12 +4,16 @@
 //! Computes no physics: what is not in an outcome is not shown. Every file is written whole or not at all.
 //! Neighbours: [`crate::study`] fills the outcomes, [`crate::cli`] decides what is written where.
 
+pub mod csv;
 pub mod pictures;
+pub mod table;
+pub mod touchstone;
 
 mod bands;
 mod cautions;
 mod figures;
 mod whole;
+mod worst;
 
 #[cfg(test)]
 pub(crate) mod sample;
