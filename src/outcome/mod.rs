@@ -3,6 +3,10 @@
 //! Currents and voltages are RMS phasors at the operating power, the phase of the feed-gap voltage as reference.
 //! A complex number is serialised as `[re, im]`.
 
+pub mod cut;
+pub mod joint;
+pub mod place;
+
 use crate::layout::{BandEdge, Warning};
 use num_complex::Complex64;
 use serde::{Deserialize, Serialize};
