@@ -1,3 +1,7 @@
-//! The `braidwise` command.
+//! The `braidwise` command: arguments in, exit status out.
 
-fn main() {}
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    braidwise::cli::run()
+}

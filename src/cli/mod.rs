@@ -1,1 +1,42 @@
-//! To come.
+//! The command line: what was typed becomes calls of the library; no physics here.
+//!
+//! One file per command; `flags` holds what they share, `load` reads the station, `stop` the exit statuses and Ctrl-C.
+
+mod check;
+mod flags;
+mod load;
+mod predict;
+mod stop;
+
+use clap::{Parser, Subcommand};
+use std::process::ExitCode;
+
+/// Where the current on an end-fed wire's coax goes, and what to do about it.
+#[derive(Debug, Parser)]
+#[command(name = "braidwise", version, propagate_version = true)]
+struct Cli {
+    #[command(subcommand)]
+    command: Command,
+}
+
+#[derive(Debug, Subcommand)]
+enum Command {
+    /// Read and judge station files and say what would be computed; solves nothing
+    Check(check::Check),
+    /// Feed point, current on the outside of the coax and power budget on every band
+    Predict(predict::Predict),
+}
+
+/// Run the program on its arguments.
+#[must_use]
+pub fn run() -> ExitCode {
+    stop::on_interrupt();
+    let done = match Cli::parse().command {
+        Command::Check(check) => check.run(),
+        Command::Predict(predict) => predict.run(),
+    };
+    match done {
+        Ok(()) => ExitCode::SUCCESS,
+        Err(stop) => stop.report(),
+    }
+}

@@ -3,9 +3,10 @@
 use super::kernel::{PointPair, pair_block};
 use super::line::Line;
 use super::local::{internal_impedance, jacket_elastance};
-use super::medium::Medium;
 use super::pairs::{Nodes, Pairs};
-use crate::layout::EarthAt;
+use super::rest;
+use super::surroundings::{Family, Surroundings};
+use crate::halfspace::Region;
 use crate::mesh::{Element, MAX_DEGREE, Mesh};
 use faer::Mat;
 use num_complex::Complex64;
@@ -20,17 +21,6 @@ pub type Legendre = [Complex64; MAX_DEGREE + 1];
 pub(super) type Block = [Legendre; MAX_DEGREE + 1];
 
 pub(super) const ZERO: Block = [[Complex64::ZERO; MAX_DEGREE + 1]; MAX_DEGREE + 1];
-
-/// What one family of source lines (the conductors themselves, or their images) contributes.
-#[derive(Debug, Clone, Copy)]
-struct Weight {
-    /// On the horizontal components of the vector potential.
-    horizontal: Complex64,
-    /// On the vertical component.
-    vertical: Complex64,
-    /// On the scalar potential.
-    potential: Complex64,
-}
 
 /// The kernels of a pair in a form both the matrix and the potentials can use.
 pub(super) struct PairBlocks {
@@ -48,8 +38,10 @@ type UnknownMap = Vec<(usize, [f64; MAX_DEGREE + 1])>;
 pub struct Interaction {
     mesh: Mesh,
     maps: Vec<UnknownMap>,
-    direct: Pairs,
-    image: Option<Pairs>,
+    /// Pairs both above, both below and across the surface.
+    direct: [Pairs; 3],
+    /// Mirrored pairs, both above and both below.
+    image: Option<[Pairs; 2]>,
     nodes: Nodes,
     image_nodes: Option<Nodes>,
 }
@@ -60,8 +52,9 @@ impl Interaction {
     /// `with_image`: the earth is perfect or soil, so that mirror images occur.
     #[must_use]
     pub fn new(mesh: Mesh, with_image: bool) -> Self {
-        let direct = Pairs::of(&mesh, false, |_, _| true);
-        let image = with_image.then(|| Pairs::of(&mesh, true, |_, _| true));
+        let pairs = |mirrored, region| Pairs::of(&mesh, mirrored, |e, f| region_of(e, f) == region);
+        let direct = [Region::Above, Region::Below, Region::Across].map(|region| pairs(false, region));
+        let image = with_image.then(|| [Region::Above, Region::Below].map(|region| pairs(true, region)));
         let nodes = Nodes::of(&mesh.elements.iter().map(Line::of).collect::<Vec<_>>());
         let image_nodes = with_image.then(|| Nodes::of(&mesh.elements.iter().map(Line::mirrored).collect::<Vec<_>>()));
         let maps = mesh.elements.iter().map(Element::legendre_map).collect();
@@ -76,18 +69,18 @@ impl Interaction {
 
     /// The interaction matrix at a frequency, symmetric, ohm; shape (unknowns, unknowns).
     #[must_use]
-    pub fn fill(&self, frequency_hz: f64, earth: EarthAt) -> Matrix {
+    pub fn fill(&self, earth: &Surroundings) -> Matrix {
         let n = self.mesh.unknowns;
         let mut z = Mat::zeros(n, n);
-        let medium = Medium::air(frequency_hz);
-        self.walk(frequency_hz, earth, |i, j, blocks| {
+        let medium = earth.air();
+        self.walk(earth, |i, j, blocks| {
             let (e, f) = (&self.mesh.elements[i], &self.mesh.elements[j]);
             let a = medium.magnetic() * (e.length_m * f.length_m);
             let p = medium.electric() * 4.0;
             scatter(&self.maps[i], &self.maps[j], &combine(&blocks.current, a, &blocks.potential, p), i != j, &mut z);
         });
         for (element, map) in self.mesh.elements.iter().zip(&self.maps) {
-            add_local(element, map, medium, &mut z);
+            add_local(element, map, earth, &mut z);
         }
         z
     }
@@ -97,14 +90,14 @@ impl Interaction {
     /// # Inputs
     /// - `currents`: Legendre coefficients of each element's current, A
     #[must_use]
-    pub fn potentials(&self, frequency_hz: f64, earth: EarthAt, currents: &[Legendre]) -> Vec<Legendre> {
-        let medium = Medium::air(frequency_hz);
+    pub fn potentials(&self, earth: &Surroundings, currents: &[Legendre]) -> Vec<Legendre> {
+        let medium = earth.air();
         // Φ = 1/(4πε0) ∫ K_Φ q ds', q = −(1/jω) dI/ds, so the factor is −1/(jωε0 4π)
         let factor = -medium.electric();
         let elements = &self.mesh.elements;
         let charge: Vec<Legendre> = currents.iter().map(|c| derive(*c).map(|x| x * 2.0)).collect();
         let mut out = vec![[Complex64::ZERO; MAX_DEGREE + 1]; elements.len()];
-        self.walk(frequency_hz, earth, |i, j, blocks| {
+        self.walk(earth, |i, j, blocks| {
             for a in 0..=MAX_DEGREE {
                 let scale = factor * (2.0 * a as f64 + 1.0);
                 for b in 0..=MAX_DEGREE {
@@ -119,14 +112,25 @@ impl Interaction {
     }
 
     /// Hand every pair (i ≤ j) with its kernels, all images included, to a function. A pair may come in several parts.
-    pub(super) fn walk(&self, frequency_hz: f64, earth: EarthAt, mut visit: impl FnMut(usize, usize, &PairBlocks)) {
-        let one = Complex64::ONE;
-        let medium = Medium::air(frequency_hz);
-        let weight = Weight { horizontal: one, vertical: one, potential: one };
-        self.walk_family(&self.direct, &self.nodes, weight, medium, &mut visit);
-        if let (EarthAt::Perfect, Some(image), Some(nodes)) = (earth, &self.image, &self.image_nodes) {
-            let weight = Weight { horizontal: -one, vertical: one, potential: -one };
-            self.walk_family(image, nodes, weight, medium, &mut visit);
+    pub(super) fn walk(&self, earth: &Surroundings, mut visit: impl FnMut(usize, usize, &PairBlocks)) {
+        for family in earth.families() {
+            let place = match family.region {
+                Region::Above => 0,
+                Region::Below => 1,
+                Region::Across => 2,
+            };
+            match (family.mirrored, &self.image, &self.image_nodes) {
+                (false, ..) => self.walk_family(&self.direct[place], &self.nodes, &family, &mut visit),
+                (true, Some(image), Some(nodes)) => self.walk_family(&image[place], nodes, &family, &mut visit),
+                (true, ..) => debug_assert!(false, "an earth with images needs an interaction prepared with them"),
+            }
+        }
+        let Some(soil) = earth.soil() else { return };
+        for (pairs, region) in self.direct.iter().zip([Region::Above, Region::Below, Region::Across]) {
+            for pair in &pairs.list {
+                let (e, f) = (&self.mesh.elements[pair.one], &self.mesh.elements[pair.two]);
+                visit(pair.one, pair.two, &rest::blocks(e, f, soil, region));
+            }
         }
     }
 
@@ -134,11 +138,11 @@ impl Interaction {
         &self,
         pairs: &Pairs,
         sources: &Nodes,
-        weight: Weight,
-        medium: Medium,
+        family: &Family,
         visit: &mut impl FnMut(usize, usize, &PairBlocks),
     ) {
-        let half_k2 = 0.5 * medium.k * medium.k;
+        let (k, weight) = (family.k, family.weight);
+        let half_k2 = 0.5 * k * k;
         for pair in &pairs.list {
             let (e, f) = (&self.mesh.elements[pair.one], &self.mesh.elements[pair.two]);
             let (n, m) = (usize::from(pair.points.0), usize::from(pair.points.1));
@@ -150,7 +154,7 @@ impl Interaction {
                 offset_m2: pair.offset_m2,
                 rest_only: pair.near.is_some(),
             };
-            let (re, im) = pair_block(&points, medium.k.re, -medium.k.im);
+            let (re, im) = pair_block(&points, k.re, -k.im);
             let mut block: Block = std::array::from_fn(|a| std::array::from_fn(|b| Complex64::new(re[a][b], im[a][b])));
             if let Some(index) = pair.near {
                 let s = &pairs.statics[index as usize];
@@ -169,20 +173,34 @@ impl Interaction {
     }
 }
 
+/// Which sides of the surface the two elements lie on.
+fn region_of(e: &Element, f: &Element) -> Region {
+    match (e.below, f.below) {
+        (false, false) => Region::Above,
+        (true, true) => Region::Below,
+        _ => Region::Across,
+    }
+}
+
 fn scaled(block: &Block, factor: Complex64) -> Block {
     block.map(|row| row.map(|x| x * factor))
 }
 
 /// Metal loss and jacket of one element.
-fn add_local(e: &Element, map: &UnknownMap, medium: Medium, z: &mut Matrix) {
+fn add_local(e: &Element, map: &UnknownMap, earth: &Surroundings, z: &mut Matrix) {
+    let medium = earth.air();
     let mut a = Complex64::ZERO;
     let mut p = Complex64::ZERO;
     if let Some(sigma) = e.conductivity_s_per_m {
         a = internal_impedance(e.radius_m, sigma, medium.angular) * e.length_m;
     }
     if let Some(jacket) = e.jacket {
-        let elastance =
-            jacket_elastance(e.radius_m, e.radius_m + jacket.thickness_m, jacket.permittivity, medium.permittivity);
+        let elastance = jacket_elastance(
+            e.radius_m,
+            e.radius_m + jacket.thickness_m,
+            jacket.permittivity,
+            earth.permittivity(e.below),
+        );
         p = elastance / Complex64::new(0.0, medium.angular) * (4.0 / e.length_m);
     }
     if a != Complex64::ZERO || p != Complex64::ZERO {

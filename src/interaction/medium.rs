@@ -11,14 +11,12 @@ pub(crate) struct Medium {
     pub(crate) angular: f64,
     /// Wavenumber k − jα, 1/m.
     pub(crate) k: Complex64,
-    /// Relative permittivity, complex.
-    pub(crate) permittivity: Complex64,
 }
 
 impl Medium {
     pub(crate) fn air(frequency_hz: f64) -> Self {
         let angular = 2.0 * PI * frequency_hz;
-        Self { angular, k: Complex64::from(angular / SPEED_OF_LIGHT_M_PER_S), permittivity: Complex64::ONE }
+        Self { angular, k: Complex64::from(angular / SPEED_OF_LIGHT_M_PER_S) }
     }
 
     /// jωμ0/4π, ohm per metre.

@@ -19,7 +19,10 @@ mod medium;
 mod near;
 mod pairs;
 pub mod quadrature;
+mod rest;
+mod surroundings;
 
 pub use factor::{Factored, SingularMatrix};
 pub use fill::{Interaction, Legendre, Matrix};
 pub use local::internal_impedance;
+pub use surroundings::Surroundings;

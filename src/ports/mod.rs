@@ -3,8 +3,7 @@
 //! Takes an [`Interaction`] at one frequency; gives a [`PortModel`]. Every lumped part lives outside the interaction matrix, in series
 //! with a port, so changing a choke never refills or refactors anything.
 
-use crate::interaction::{Factored, Interaction, SingularMatrix};
-use crate::layout::EarthAt;
+use crate::interaction::{Factored, Interaction, SingularMatrix, Surroundings};
 use crate::mesh::Mesh;
 use faer::Mat;
 use nalgebra::{DMatrix, DVector};
@@ -24,8 +23,8 @@ impl PortModel {
     ///
     /// # Errors
     /// [`SingularMatrix`] when the matrix cannot be factored.
-    pub fn solve(interaction: &Interaction, frequency_hz: f64, earth: EarthAt) -> Result<Self, SingularMatrix> {
-        let factored = Factored::new(interaction.fill(frequency_hz, earth))?;
+    pub fn solve(interaction: &Interaction, earth: &Surroundings) -> Result<Self, SingularMatrix> {
+        let factored = Factored::new(interaction.fill(earth))?;
         Self::from_factored(interaction.mesh(), &factored)
     }
 

@@ -2,7 +2,8 @@
 
 use super::shield;
 use crate::field::{FarField, Solution};
-use crate::interaction::{Interaction, SingularMatrix};
+use crate::halfspace::HalfSpaceError;
+use crate::interaction::{Interaction, SingularMatrix, Surroundings};
 use crate::layout::{Earth, EarthAt, FrequencyPoint, Layout, PartKind, Soil};
 use crate::mesh::{Density, Mesh};
 use crate::network::{self, Chain, ChainError, ChainState};
@@ -44,6 +45,9 @@ pub enum Failure {
         /// What.
         source: SingularMatrix,
     },
+    /// The soil's constants cannot be.
+    #[error(transparent)]
+    Soil(#[from] HalfSpaceError),
     /// No power can flow.
     #[error(transparent)]
     Chain(#[from] ChainError),
@@ -67,7 +71,7 @@ pub fn predict(layout: &Layout, options: &Options) -> Result<Prediction, Failure
     );
     let frequencies = points
         .par_iter()
-        .map(|point| At { layout, point, earth: layout.earth.at(point.frequency_hz) }.outcome(&fine, &coarse))
+        .map(|point| At::new(layout, point)?.outcome(&fine, &coarse))
         .collect::<Result<Vec<_>, _>>()?;
     Ok(Prediction {
         braidwise: env!("CARGO_PKG_VERSION").to_string(),
@@ -99,10 +103,15 @@ fn earth_outcome(earth: Earth) -> EarthOutcome {
 struct At<'a> {
     layout: &'a Layout,
     point: &'a FrequencyPoint,
-    earth: EarthAt,
+    earth: Surroundings,
 }
 
-impl At<'_> {
+impl<'a> At<'a> {
+    fn new(layout: &'a Layout, point: &'a FrequencyPoint) -> Result<Self, Failure> {
+        let earth = Surroundings::new(point.frequency_hz, layout.earth.at(point.frequency_hz))?;
+        Ok(Self { layout, point, earth })
+    }
+
     fn outcome(&self, fine: &Interaction, coarse: &Interaction) -> Result<FrequencyOutcome, Failure> {
         let f = self.point.frequency_hz;
         let parts: Vec<Complex64> = self.layout.parts.iter().map(|p| network::impedance(&p.law, f)).collect();
@@ -151,14 +160,14 @@ impl At<'_> {
         parts: &[Complex64],
     ) -> Result<(PortModel, DVector<Complex64>), Failure> {
         let frequency_hz = self.point.frequency_hz;
-        let model = PortModel::solve(interaction, frequency_hz, self.earth)
-            .map_err(|source| Failure::Singular { frequency_hz, source })?;
+        let model =
+            PortModel::solve(interaction, &self.earth).map_err(|source| Failure::Singular { frequency_hz, source })?;
         let currents = model.loaded_currents(parts);
         Ok((model, currents))
     }
 
     fn soil(&self) -> Option<SoilOutcome> {
-        match self.earth {
+        match self.earth.earth() {
             EarthAt::Soil { permittivity, conductivity_s_per_m } => {
                 Some(SoilOutcome { permittivity, conductivity_s_per_m })
             }
@@ -169,7 +178,7 @@ impl At<'_> {
     fn conductors(&self, interaction: &Interaction, solution: &Solution) -> Vec<ConductorOutcome> {
         let f = self.point.frequency_hz;
         let step_m = (SPEED_OF_LIGHT_M_PER_S / f / 100.0).min(0.1);
-        let potentials = interaction.potentials(f, self.earth, &solution.currents);
+        let potentials = interaction.potentials(&self.earth, &solution.currents);
         let rms = std::f64::consts::FRAC_1_SQRT_2;
         (0..self.layout.conductors.len())
             .map(|c| ConductorOutcome {
@@ -216,7 +225,7 @@ impl At<'_> {
         };
         let (chokes, inline) = (of_kind(PartKind::Choke), of_kind(PartKind::Inline));
         let input_w = self.layout.operation.power_w;
-        let radiated_w = FarField::new(mesh, solution, f, self.earth).radiated_w();
+        let radiated_w = FarField::new(mesh, solution, f, self.earth.earth()).radiated_w();
         let earth_w = 0.0;
         let metal_w = solution.metal_w(mesh, f);
         let in_parts: f64 = chokes.iter().chain(&inline).map(|p| p.dissipated_w).sum();

@@ -1,0 +1,25 @@
+//! `braidwise check`.
+
+use super::flags::StationArgs;
+use super::load::load;
+use super::stop::Stop;
+use clap::Args;
+use std::io::Write;
+use std::path::PathBuf;
+
+/// Arguments of `check`.
+#[derive(Debug, Args)]
+pub(super) struct Check {
+    /// Station files (TOML)
+    #[arg(required_unless_present = "schema")]
+    files: Vec<PathBuf>,
+    /// Try a value without editing the file (repeatable)
+    #[arg(long = "set", value_name = "PATH=VALUE")]
+    sets: Vec<String>,
+    /// Print the JSON Schema of the station file, for editors that complete and check it
+    #[arg(long)]
+    schema: bool,
+    /// One JSON document on standard output, nothing else
+    #[arg(long)]
+    json: bool,
+}

@@ -1,0 +1,73 @@
+//! What soil adds to a pair beyond e^{−jkR}/R: smooth kernels, integrated by plain product rules.
+
+use super::fill::{Block, PairBlocks, ZERO};
+use super::line::{Line, clearance};
+use super::quadrature::{gauss, legendre};
+use super::surroundings::SoilRest;
+use crate::halfspace::Region;
+use crate::mesh::{Element, MAX_DEGREE};
+
+/// Fewest and most points on an element.
+const POINTS: (usize, usize) = (3, 24);
+
+/// Means over a pair of the soil's rest.
+pub(super) fn blocks(e: &Element, f: &Element, soil: &SoilRest, region: Region) -> PairBlocks {
+    let other = if region == Region::Across { Line::of(f) } else { Line::mirrored(f) };
+    let gap = clearance(&Line::of(e), &other);
+    let crossed = e.tangent.z.abs() * f.tangent.xy().norm() + f.tangent.z.abs() * e.tangent.xy().norm() > 1e-9;
+    let (n, m) = (points(e, gap, soil, crossed), points(f, gap, soil, crossed));
+    let (one, two) = (gauss(n), gauss(m));
+    let mut out = PairBlocks { current: ZERO, potential: ZERO };
+    for (xi, w) in one.nodes.iter().zip(&one.weights) {
+        let p = e.at(*xi);
+        let left = legendre(*xi).map(|x| 0.5 * w * x);
+        let mut current = [num_complex::Complex64::ZERO; MAX_DEGREE + 1];
+        let mut potential = current;
+        for (eta, v) in two.nodes.iter().zip(&two.weights) {
+            let q = f.at(*eta);
+            let right = legendre(*eta).map(|x| 0.5 * v * x);
+            let d = (p - q).xy();
+            let rho = d.norm();
+            let k = soil.rest(region, rho, p.z, q.z);
+            let (t, u) = (e.tangent, f.tangent);
+            let mut c = k.xx * (t.x * u.x + t.y * u.y) + k.zz * (t.z * u.z);
+            if rho > 0.0 {
+                let toward = d / rho;
+                // K_zx = p_rho cos φ, K_xz = −p_rho cos φ, φ from source to observer
+                c += k.p_rho * (t.z * toward.dot(&u.xy()) - toward.dot(&t.xy()) * u.z);
+            }
+            for b in 0..=MAX_DEGREE {
+                current[b] += c * right[b];
+                potential[b] += k.phi * right[b];
+            }
+        }
+        add(&mut out.current, &left, &current);
+        add(&mut out.potential, &left, &potential);
+    }
+    out
+}
+
+fn add(block: &mut Block, left: &[f64; 4], row: &[num_complex::Complex64; 4]) {
+    for (line, l) in block.iter_mut().zip(left) {
+        for (cell, r) in line.iter_mut().zip(row) {
+            *cell += r * l;
+        }
+    }
+}
+
+/// Points for an element: more where the pair is close against its length (the rest has logarithms of second order, and the crossed
+/// terms a bounded kink), and where it is long against the wavelength or skin depth in the soil.
+fn points(e: &Element, gap: f64, soil: &SoilRest, crossed: bool) -> usize {
+    let ratio = gap / e.length_m;
+    let close = match ratio {
+        r if r > 4.0 => 0,
+        r if r > 1.0 => 1,
+        r if r > 0.3 => 2,
+        _ => 3,
+    };
+    let k = soil.wavenumber().norm();
+    // beyond a few skin depths only the wave in the air is left
+    let turns = if gap * k < 8.0 { k * e.length_m } else { (k * e.length_m).min(1.0) };
+    let crossing = if crossed { 3 * close } else { 0 };
+    (e.degree + 1 + close + crossing + turns.ceil() as usize).clamp(POINTS.0, POINTS.1)
+}
