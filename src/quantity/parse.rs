@@ -76,7 +76,8 @@ const CAPACITANCE: Kind =
 const INDUCTANCE: Kind =
     Kind { what: "inductance", example: "\"3.3 uH\"", bases: &["H"], plain: &[], m_is_mega: false };
 const CURRENT: Kind = Kind { what: "current", example: "\"20 mA\"", bases: &["A"], plain: &[], m_is_mega: false };
-const DECIBEL: Kind = Kind { what: "loss in dB", example: "\"4.6 dB\"", bases: &[], plain: &[("dB", 1.0)], m_is_mega: false };
+const DECIBEL: Kind =
+    Kind { what: "loss in dB", example: "\"4.6 dB\"", bases: &[], plain: &[("dB", 1.0)], m_is_mega: false };
 const ANGLE: Kind = Kind {
     what: "angle",
     example: "20 or \"20 deg\"",
@@ -179,7 +180,10 @@ impl Kind {
             if after.starts_with(',') {
                 return Err(Misread {
                     reason: format!("`{text}` has a comma"),
-                    mend: format!("write a point, not a comma, and nothing between thousands: \"{}\"", text.replace(',', ".")),
+                    mend: format!(
+                        "write a point, not a comma, and nothing between thousands: \"{}\"",
+                        text.replace(',', ".")
+                    ),
                 });
             }
             let Ok(number) = rest[..digits].parse::<f64>() else {
@@ -189,11 +193,17 @@ impl Kind {
             let unit_end = after
                 .char_indices()
                 .find(|(at, c)| {
-                    c.is_whitespace() || (c.is_ascii_digit() && !ends_in_power(&after[..*at], *c)) || "+-.,".contains(*c)
+                    c.is_whitespace()
+                        || (c.is_ascii_digit() && !ends_in_power(&after[..*at], *c))
+                        || "+-.,".contains(*c)
                 })
                 .map_or(after.len(), |(at, _)| at);
             // A prime stands directly before the inches: 16'3".
-            let unit_end = if after.starts_with(['\'', '′', '’']) { after.chars().next().map_or(1, char::len_utf8) } else { unit_end };
+            let unit_end = if after.starts_with(['\'', '′', '’']) {
+                after.chars().next().map_or(1, char::len_utf8)
+            } else {
+                unit_end
+            };
             parts.push((number, plain_unit(&after[..unit_end])));
             rest = after[unit_end..].trim_start();
         }
@@ -250,7 +260,9 @@ pub fn length_m(text: &str) -> Result<f64, Misread> {
         [(feet, foot), (inches, inch)] => {
             let factors = (LENGTH.factor(foot), LENGTH.factor(inch));
             if factors != (Some(0.3048), Some(0.0254)) {
-                return Err(LENGTH.misread(format!("`{text}` is more than one length; only feet and inches go together")));
+                return Err(
+                    LENGTH.misread(format!("`{text}` is more than one length; only feet and inches go together"))
+                );
             }
             if *inches < 0.0 || *inches >= 12.0 {
                 return Err(LENGTH.misread(format!("`{text}`: inches behind feet run from 0 to below 12")));
@@ -300,8 +312,10 @@ fn gauge(number: &str) -> Option<f64> {
 /// # Errors
 /// [`Misread`] when it is not two numbers with a colon between them.
 pub fn ratio(text: &str) -> Result<f64, Misread> {
-    let misread =
-        || Misread { reason: format!("`{text}` is not a ratio"), mend: "write \"49:1\", the antenna side first".to_owned() };
+    let misread = || Misread {
+        reason: format!("`{text}` is not a ratio"),
+        mend: "write \"49:1\", the antenna side first".to_owned(),
+    };
     let (top, bottom) = text.split_once(':').ok_or_else(misread)?;
     let number = |t: &str| {
         let t = t.trim();
@@ -382,7 +396,9 @@ mod tests {
     #[test]
     fn gauges_follow_astm_b258() {
         // Table values of ASTM B258, mils: 14 AWG 64.1, 4/0 460.0, 36 AWG 5.0.
-        for (text, mils, tolerance) in [("14 AWG", 64.1, 0.05), ("4/0 AWG", 460.0, 0.05), ("AWG 36", 5.0, 1e-9), ("0000awg", 460.0, 0.05)] {
+        for (text, mils, tolerance) in
+            [("14 AWG", 64.1, 0.05), ("4/0 AWG", 460.0, 0.05), ("AWG 36", 5.0, 1e-9), ("0000awg", 460.0, 0.05)]
+        {
             let got = wire_diameter_m(text).unwrap() / 2.54e-5;
             assert!((got - mils).abs() <= tolerance, "{text}: {got} mils");
         }
@@ -419,7 +435,21 @@ mod tests {
         assert!(length_m("41").unwrap_err().reason.contains("no unit"));
         assert!(length_m("7 MHz").unwrap_err().reason.contains("is a frequency, not a length"));
         assert!(length_m("7 furlongs").unwrap_err().reason.contains("`furlongs`"));
-        for text in ["", "ft", "- m", "1 m 2 m", "1 ft 13 in", "1 ft 2 in 3 in", "inf m", "NaN m", "1e999 m", "0x10 m", "é m", "1 é", "1.2.3 m"] {
+        for text in [
+            "",
+            "ft",
+            "- m",
+            "1 m 2 m",
+            "1 ft 13 in",
+            "1 ft 2 in 3 in",
+            "inf m",
+            "NaN m",
+            "1e999 m",
+            "0x10 m",
+            "é m",
+            "1 é",
+            "1.2.3 m",
+        ] {
             assert!(length_m(text).is_err(), "{text}");
         }
         for text in ["49", "49:", "a:b", "1:0", "49:1:1"] {
