@@ -4,6 +4,17 @@
 //! radials drawn out as conductors, and every place (feed, choke, inline part, entry) resolved to a
 //! distance along a conductor.
 
+mod body;
+mod crossings;
+mod cut;
+mod doubts;
+mod heights;
+mod joins;
+mod parts;
+mod place;
+mod surface;
+mod terminals;
+
 use nalgebra::Vector3;
 
 /// A point or direction in space, metres: east, north, up.
