@@ -2,6 +2,8 @@
 
 use super::flags::StationArgs;
 use super::load::load;
+use crate::quantity::{engineering, metres_and_feet};
+use crate::station;
 use super::stop::Stop;
 use clap::Args;
 use std::io::Write;
@@ -22,4 +24,16 @@ pub(super) struct Check {
     /// One JSON document on standard output, nothing else
     #[arg(long)]
     json: bool,
+}
+
+impl Check {
+    pub(super) fn run(&self) -> Result<(), Stop> {
+        let mut out = std::io::stdout().lock();
+        if self.schema {
+            let text = serde_json::to_string_pretty(&station::schema()).map_err(|e| Stop::Could(e.to_string()))?;
+            writeln!(out, "{text}")?;
+            return Ok(());
+        }
+        Ok(())
+    }
 }

@@ -5,7 +5,7 @@ use super::stop::Stop;
 use crate::layout::Layout;
 use crate::outcome::place::LimitsOutcome;
 use crate::output::References;
-use crate::station::{Document, Embedded, Station};
+use crate::station::{Document, Embedded, Refused, Station};
 
 /// A station read and placed.
 pub(super) struct Loaded {
@@ -29,7 +29,7 @@ pub(super) fn load(args: &StationArgs) -> Result<Loaded, Stop> {
     let sets = args.sets.iter().map(|s| set(s)).collect::<Result<Vec<_>, _>>()?;
     let document = Document::parse(&text, &name)?.with(&sets)?;
     let station = document.station(&Embedded)?;
-    let layout = Layout::place(&station)?;
+    let layout = Layout::place(&station).map_err(|faults| Refused { sources: station.sources.clone(), faults })?;
     Ok(Loaded { document, station, layout })
 }
 

@@ -4,7 +4,17 @@
 //! radials drawn out as conductors, and every place (feed, choke, inline part, entry) resolved to a
 //! distance along a conductor.
 
+mod body;
+mod crossings;
+mod cut;
+mod doubts;
 mod earth;
+mod heights;
+mod joins;
+mod parts;
+mod place;
+mod surface;
+mod terminals;
 
 use nalgebra::Vector3;
 

@@ -19,7 +19,8 @@ mod worst;
 pub(crate) mod sample;
 
 use crate::outcome::place::LimitsOutcome;
-use std::path::PathBuf;
+use std::io::Write;
+use std::path::{Path, PathBuf};
 
 /// Units of length in what a person reads. Files and JSON are always in metres.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
@@ -89,4 +90,15 @@ pub enum OutputError {
         /// The reason.
         reason: String,
     },
+}
+
+/// Writes a file whole or not at all: `fill` gets a temporary file of the same folder, which takes the file's place at the end.
+///
+/// # Errors
+/// What `fill` returns, or [`OutputError::File`] when the folder or the disk refuses.
+pub fn whole_file(
+    path: &Path,
+    fill: impl FnOnce(&mut dyn Write) -> Result<(), OutputError>,
+) -> Result<(), OutputError> {
+    whole::write_with(path, |file| fill(file))
 }
