@@ -9,11 +9,13 @@ pub(super) fn points(m: usize) -> Vec<f64> {
 
 /// Row k, column i: the matrix that turns values at [`points`] into Chebyshev coefficients.
 pub(super) fn analysis(m: usize) -> Vec<f64> {
+    // cos of every multiple of π/2m; the angles of the matrix are k(2i+1) of them.
+    let cosines: Vec<f64> = (0..4 * m).map(|j| (0.5 * PI * j as f64 / m as f64).cos()).collect();
     let mut matrix = vec![0.0; m * m];
     for k in 0..m {
         let scale = if k == 0 { 1.0 } else { 2.0 } / m as f64;
         for i in 0..m {
-            matrix[k * m + i] = scale * (PI * k as f64 * (i as f64 + 0.5) / m as f64).cos();
+            matrix[k * m + i] = scale * cosines[k * (2 * i + 1) % (4 * m)];
         }
     }
     matrix

@@ -83,10 +83,7 @@ impl Leaves {
                 (false, false)
             } else {
                 let lead = dropped.0.max(dropped.1);
-                (
-                    dropped.0 > 0.25 * lead && part.level.0 < DEEPEST,
-                    dropped.1 > 0.25 * lead && part.level.1 < DEEPEST,
-                )
+                (dropped.0 > 0.25 * lead && part.level.0 < DEEPEST, dropped.1 > 0.25 * lead && part.level.1 < DEEPEST)
             };
             if split_rho || split_zeta {
                 todo.extend(children(part, split_rho, split_zeta));
@@ -184,7 +181,9 @@ impl<'a> Strips<'a> {
                     let out = &mut strip[(lane * SEEN + k) * n..(lane * SEEN + k + 1) * n];
                     for i in 0..m {
                         let a = matrix[k * m + i];
-                        for (o, c) in out.iter_mut().zip(&patch.coefficients[(lane * m + i) * n..(lane * m + i + 1) * n]) {
+                        for (o, c) in
+                            out.iter_mut().zip(&patch.coefficients[(lane * m + i) * n..(lane * m + i + 1) * n])
+                        {
                             *o += a * c;
                         }
                     }
@@ -221,7 +220,7 @@ fn dropped(seen: &Seen) -> (f64, f64) {
         for k in 0..SEEN {
             for l in 0..SEEN {
                 if k + l > DEGREE {
-                    let size = pair[0][k][l].hypot(pair[1][k][l]);
+                    let size = pair[0][k][l].abs().max(pair[1][k][l].abs());
                     if k >= l {
                         rho += size;
                     }

@@ -3,8 +3,7 @@
 //! Over a rectangle the spectral sum is a matrix product: weights times e^{−uζ} on one side, Bessel functions of λρ
 //! on the other. The two Hankel branches are conjugates of each other, so that the Bessel side stays real.
 
-use super::bessel::hankel_series;
-use super::bessel_fast::j01_fast;
+use super::bessel_fast::{hankel_fast, j01_fast};
 use super::chebyshev::{analysis, points};
 use super::panels::Fineness;
 use super::potentials::tilt;
@@ -31,25 +30,23 @@ pub(super) struct Patch {
     pub coefficients: Vec<f64>,
 }
 
-/// Left and right factors of the spectral sum.
-struct Factors {
-    /// One row per spectral term: J₀ and J₁ parts at every ρ.
-    bessel: Vec<[Vec<f64>; 2]>,
-    /// One row per spectral term: lanes × ζ.
-    spectral: Vec<Vec<f64>>,
-}
-
 impl Patch {
     /// Samples the remainders over `rectangle`; Q is multiplied by `q_scale`.
-    pub(super) fn sample(space: &HalfSpace, region: Region, rectangle: Rectangle, fineness: Fineness, q_scale: f64) -> Self {
-        let (rhos, zetas) = (spread(rectangle.rho_m, rectangle.points.0), spread(rectangle.zeta_m, rectangle.points.1));
-        let factors = Factors::new(space, region, rectangle, fineness, (&rhos, &zetas), q_scale);
-        let mut values = factors.product(rhos.len(), zetas.len());
+    pub(super) fn sample(
+        space: &HalfSpace,
+        region: Region,
+        rectangle: Rectangle,
+        fineness: Fineness,
+        q_scale: f64,
+    ) -> Self {
+        let mut sum = SpectralSum::new(space, region, rectangle, q_scale);
+        sum.run(fineness);
+        let (m, n) = rectangle.points;
+        let mut values = sum.by_lane();
         let slope = Weights::new(space, region).slope;
         let k = space.wavenumber_per_m(region);
-        let (m, n) = rectangle.points;
-        for (i, &rho) in rhos.iter().enumerate() {
-            for (j, &zeta) in zetas.iter().enumerate() {
+        for (i, &rho) in sum.rhos.iter().enumerate() {
+            for (j, &zeta) in sum.zetas.iter().enumerate() {
                 let closed = slope * tilt(k, rho, zeta);
                 values[(4 * m + i) * n + j] -= closed.re;
                 values[(5 * m + i) * n + j] -= closed.im;
@@ -79,139 +76,221 @@ fn spread(range: (f64, f64), count: usize) -> Vec<f64> {
 
 fn transform(values: &[f64], m: usize, n: usize) -> Vec<f64> {
     let (by_rho, by_zeta) = (analysis(m), analysis(n));
+    // Transposed, so that the inner loops below run along rows.
+    let turned: Vec<f64> = (0..n * n).map(|p| by_zeta[(p % n) * n + p / n]).collect();
     let mut out = vec![0.0; values.len()];
     let mut half = vec![0.0; m * n];
     for (from, to) in values.chunks_exact(m * n).zip(out.chunks_exact_mut(m * n)) {
         half.fill(0.0);
-        for k in 0..m {
-            for i in 0..m {
-                let a = by_rho[k * m + i];
-                for (h, v) in half[k * n..(k + 1) * n].iter_mut().zip(&from[i * n..(i + 1) * n]) {
-                    *h += a * v;
-                }
-            }
+        for (row, weights) in half.chunks_exact_mut(n).zip(by_rho.chunks_exact(m)) {
+            combine(row, weights, from);
         }
-        for k in 0..m {
-            for l in 0..n {
-                to[k * n + l] = by_zeta[l * n..(l + 1) * n].iter().zip(&half[k * n..(k + 1) * n]).map(|(a, h)| a * h).sum();
-            }
+        for (row, weights) in to.chunks_exact_mut(n).zip(half.chunks_exact(n)) {
+            combine(row, weights, &turned);
         }
     }
     out
 }
 
-impl Factors {
-    fn new(
-        space: &HalfSpace,
-        region: Region,
-        rectangle: Rectangle,
-        fineness: Fineness,
-        (rhos, zetas): (&[f64], &[f64]),
-        q_scale: f64,
-    ) -> Self {
-        let below = region == Region::Below;
-        let (up_m, down_m) = if below { (0.0, rectangle.zeta_m.1) } else { (rectangle.zeta_m.1, 0.0) };
-        let reach = Reach { region, rho_m: rectangle.rho_m, up_m, down_m, least_m: rectangle.zeta_m.0 };
-        let weights = Weights::new(space, region);
-        let path = nodes(space, reach, fineness);
-        let (mut bessel, mut spectral) = (Vec::with_capacity(path.len()), Vec::with_capacity(path.len()));
-        let column = |node: &Node| -> Vec<[Complex64; 3]> {
-            let s = Spectral::at(space, node);
-            let [h, q, p] = weights.reduced(&s);
-            let front = [node.weight * s.lambda * h, node.weight * s.lambda * q * q_scale, -node.weight * p];
-            let u = if below { s.u1 } else { s.u0 };
-            let real = u.im == 0.0;
-            zetas
-                .iter()
-                .map(|&zeta| {
-                    if real {
-                        let fall = (-u.re * zeta).exp();
-                        front.map(|f| f * fall)
-                    } else {
-                        let fall = Complex64::from_polar((-u.re * zeta).exp(), -u.im * zeta);
-                        front.map(|f| f * fall)
-                    }
-                })
-                .collect()
-        };
-        let standing = path.iter().filter(|n| n.wave == Wave::Standing);
-        for node in standing {
-            bessel.push(bessel_row(rhos, |rho| {
-                let (j0, j1) = j01_fast(node.lambda.re * rho);
-                (j0, j1)
-            }));
-            spectral.push(flatten(&column(node)));
+/// row += Σ weights[i] · (row i of `rows`).
+pub(super) fn combine(row: &mut [f64], weights: &[f64], rows: &[f64]) {
+    let n = row.len();
+    let (weights4, rows4) = (weights.chunks_exact(4), rows.chunks_exact(4 * n));
+    let (rest_weights, rest_rows) = (weights4.remainder(), rows4.remainder());
+    for (w, r) in weights4.zip(rows4) {
+        let (a, b, c, d) = (&r[..n], &r[n..2 * n], &r[2 * n..3 * n], &r[3 * n..4 * n]);
+        for (k, out) in row.iter_mut().enumerate() {
+            *out += w[0] * a[k] + w[1] * b[k] + (w[2] * c[k] + w[3] * d[k]);
         }
-        let outgoing = path.iter().filter(|n| n.wave == Wave::Outgoing);
-        let incoming = path.iter().filter(|n| n.wave == Wave::Incoming);
-        for (up, down) in outgoing.zip(incoming) {
-            let waves: Vec<(Complex64, Complex64)> = rhos.iter().map(|&rho| hankel(up.lambda * rho)).collect();
-            let (above, beneath) = (column(up), column(down));
-            let joined = |sign: f64, turn: Complex64| -> Vec<[Complex64; 3]> {
-                above.iter().zip(&beneath).map(|(a, b)| [0, 1, 2].map(|i| turn * (a[i] + sign * b[i]))).collect()
-            };
-            bessel.push([waves.iter().map(|w| w.0.re).collect(), waves.iter().map(|w| w.1.re).collect()]);
-            spectral.push(flatten(&joined(1.0, Complex64::new(1.0, 0.0))));
-            bessel.push([waves.iter().map(|w| w.0.im).collect(), waves.iter().map(|w| w.1.im).collect()]);
-            spectral.push(flatten(&joined(-1.0, Complex64::i())));
+    }
+    for (w, r) in rest_weights.iter().zip(rest_rows.chunks_exact(n)) {
+        for (out, r) in row.iter_mut().zip(r) {
+            *out += w * r;
         }
-        Self { bessel, spectral }
+    }
+}
+
+/// Terms summed at once: what fits the nearest cache.
+const BATCH: usize = 16;
+
+/// The sum over the path, batch by batch.
+struct SpectralSum<'a> {
+    space: &'a HalfSpace,
+    region: Region,
+    rectangle: Rectangle,
+    q_scale: f64,
+    weights: Weights,
+    rhos: Vec<f64>,
+    zetas: Vec<f64>,
+    /// `[rho][order][term]`: Bessel functions of order 0, then 1.
+    bessel: Vec<f64>,
+    /// `[term][lane][zeta]`.
+    spectral: Vec<f64>,
+    filled: usize,
+    /// `[rho][lane][zeta]`.
+    total: Vec<f64>,
+}
+
+impl<'a> SpectralSum<'a> {
+    fn new(space: &'a HalfSpace, region: Region, rectangle: Rectangle, q_scale: f64) -> Self {
+        let (m, n) = rectangle.points;
+        Self {
+            space,
+            region,
+            rectangle,
+            q_scale,
+            weights: Weights::new(space, region),
+            rhos: spread(rectangle.rho_m, m),
+            zetas: spread(rectangle.zeta_m, n),
+            bessel: vec![0.0; 2 * m * BATCH],
+            spectral: vec![0.0; LANES * n * BATCH],
+            filled: 0,
+            total: vec![0.0; LANES * m * n],
+        }
     }
 
-    /// Values `[lane][rho][zeta]`.
-    fn product(&self, m: usize, n: usize) -> Vec<f64> {
+    fn run(&mut self, fineness: Fineness) {
+        let (rho_m, zeta_m) = (self.rectangle.rho_m, self.rectangle.zeta_m);
+        let (up_m, down_m) = if self.region == Region::Below { (0.0, zeta_m.1) } else { (zeta_m.1, 0.0) };
+        let reach = Reach { region: self.region, rho_m, up_m, down_m, least_m: zeta_m.0 };
+        let path = nodes(self.space, reach, fineness);
+        let standing = path.iter().position(|n| n.wave != Wave::Standing).unwrap_or(path.len());
+        let (standing, branches) = path.split_at(standing);
+        let (outgoing, incoming) = branches.split_at(branches.len() / 2);
+        for node in standing {
+            self.standing(node);
+        }
+        let mut both = vec![0.0; 2 * LANES * self.zetas.len()];
+        for (up, down) in outgoing.iter().zip(incoming) {
+            self.branch(up, down, &mut both);
+        }
+        self.flush();
+    }
+
+    fn standing(&mut self, node: &Node) {
+        let term = self.filled;
+        for (i, rho) in self.rhos.iter().enumerate() {
+            let (j0, j1) = j01_fast(node.lambda.re * rho);
+            self.bessel[2 * i * BATCH + term] = j0;
+            self.bessel[(2 * i + 1) * BATCH + term] = j1;
+        }
+        let n = self.zetas.len();
+        let (front, u) = self.front(node);
+        fill(&mut self.spectral[term * LANES * n..(term + 1) * LANES * n], front, u, &self.zetas);
+        self.advance();
+    }
+
+    /// ½H⁽¹⁾ of one branch and its conjugate of the other: Σ and j·Δ of the spectral sides beside Re and Im.
+    fn branch(&mut self, up: &Node, down: &Node, both: &mut [f64]) {
+        let n = self.zetas.len();
+        if self.filled + 2 > BATCH {
+            self.flush();
+        }
+        let term = self.filled;
+        for (i, &rho) in self.rhos.iter().enumerate() {
+            let (h0, h1) = hankel_fast(up.lambda * rho);
+            for (order, h) in [h0, h1].into_iter().enumerate() {
+                self.bessel[(2 * i + order) * BATCH + term] = h.re;
+                self.bessel[(2 * i + order) * BATCH + term + 1] = h.im;
+            }
+        }
+        let (above, beneath) = both.split_at_mut(LANES * n);
+        for (node, side) in [(up, &mut *above), (down, &mut *beneath)] {
+            let (front, u) = self.front(node);
+            fill(side, front, u, &self.zetas);
+        }
+        let target = &mut self.spectral[term * LANES * n..(term + 2) * LANES * n];
+        let (sum, turned) = target.split_at_mut(LANES * n);
+        for lane in (0..LANES).step_by(2) {
+            for j in 0..n {
+                let (re, im) = (lane * n + j, (lane + 1) * n + j);
+                sum[re] = above[re] + beneath[re];
+                sum[im] = above[im] + beneath[im];
+                turned[re] = beneath[im] - above[im];
+                turned[im] = above[re] - beneath[re];
+            }
+        }
+        self.filled += 1;
+        self.advance();
+    }
+
+    /// Weighted spectral functions at a node, and the u that goes with ζ.
+    fn front(&self, node: &Node) -> ([Complex64; 3], Complex64) {
+        let s = Spectral::at(self.space, node);
+        let [h, q, p] = self.weights.reduced(&s);
+        let weight = node.weight * s.lambda;
+        let u = if self.region == Region::Below { s.u1 } else { s.u0 };
+        ([weight * h, weight * q * self.q_scale, -node.weight * p], u)
+    }
+
+    fn advance(&mut self) {
+        self.filled += 1;
+        if self.filled >= BATCH {
+            self.flush();
+        }
+    }
+
+    fn flush(&mut self) {
+        let n = self.zetas.len();
+        let (count, width) = (self.filled, LANES * n);
+        for (row, bessel) in self.total.chunks_exact_mut(width).zip(self.bessel.chunks_exact(2 * BATCH)) {
+            let (first, second) = row.split_at_mut(4 * n);
+            product(first, &bessel[..count], &self.spectral, width, 0);
+            product(second, &bessel[BATCH..BATCH + count], &self.spectral, width, 4 * n);
+        }
+        self.filled = 0;
+    }
+
+    /// The total as `[lane][rho][zeta]`.
+    fn by_lane(&self) -> Vec<f64> {
+        let (m, n) = self.rectangle.points;
         let mut out = vec![0.0; LANES * m * n];
-        let (first, second) = out.split_at_mut(4 * m * n);
-        for (bessel, spectral) in self.bessel.chunks(4).zip(self.spectral.chunks(4)) {
-            for lane in 0..LANES {
-                let (target, order) = if lane < 4 { (&mut *first, 0) } else { (&mut *second, 1) };
-                let base = (if lane < 4 { lane } else { lane - 4 }) * m * n;
-                for i in 0..m {
-                    let row = &mut target[base + i * n..base + (i + 1) * n];
-                    accumulate(row, bessel, spectral, (order, i, lane * n));
-                }
+        for (i, row) in self.total.chunks_exact(LANES * n).enumerate() {
+            for (lane, part) in row.chunks_exact(n).enumerate() {
+                out[(lane * m + i) * n..(lane * m + i + 1) * n].copy_from_slice(part);
             }
         }
         out
     }
 }
 
-/// row += Σ bessel[order][i] · spectral[from..], four terms at a time.
-fn accumulate(row: &mut [f64], bessel: &[[Vec<f64>; 2]], spectral: &[Vec<f64>], (order, i, from): (usize, usize, usize)) {
+/// row += Σ bessel[t] · spectral[t·width + from ..].
+fn product(row: &mut [f64], bessel: &[f64], spectral: &[f64], width: usize, from: usize) {
     let n = row.len();
-    if let ([a, b, c, d], [e, f, g, h]) = (bessel, spectral) {
-        let (a, b, c, d) = (a[order][i], b[order][i], c[order][i], d[order][i]);
-        let (e, f, g, h) = (&e[from..from + n], &f[from..from + n], &g[from..from + n], &h[from..from + n]);
+    let side = |t: usize| &spectral[t * width + from..t * width + from + n];
+    let whole = bessel.len() / 4 * 4;
+    for t in (0..whole).step_by(4) {
+        let (p, q, r, s) = (bessel[t], bessel[t + 1], bessel[t + 2], bessel[t + 3]);
+        let (a, b, c, d) = (side(t), side(t + 1), side(t + 2), side(t + 3));
         for (k, out) in row.iter_mut().enumerate() {
-            *out += a * e[k] + b * f[k] + (c * g[k] + d * h[k]);
+            *out += p * a[k] + q * b[k] + (r * c[k] + s * d[k]);
         }
-    } else {
-        for (b, s) in bessel.iter().zip(spectral) {
-            let b = b[order][i];
-            for (out, s) in row.iter_mut().zip(&s[from..from + n]) {
-                *out += b * s;
+    }
+    for t in whole..bessel.len() {
+        for (out, a) in row.iter_mut().zip(side(t)) {
+            *out += bessel[t] * a;
+        }
+    }
+}
+
+/// front · e^{−uζ} at every ζ, as lanes × ζ.
+fn fill(out: &mut [f64], front: [Complex64; 3], u: Complex64, zetas: &[f64]) {
+    let n = zetas.len();
+    for (j, &zeta) in zetas.iter().enumerate() {
+        let size = (-u.re * zeta).exp();
+        if u.im == 0.0 {
+            for (f, front) in front.iter().enumerate() {
+                out[2 * f * n + j] = front.re * size;
+                out[(2 * f + 1) * n + j] = front.im * size;
+            }
+        } else {
+            let (sin, cos) = (-u.im * zeta).sin_cos();
+            let fall = Complex64::new(size * cos, size * sin);
+            for (f, front) in front.iter().enumerate() {
+                let value = front * fall;
+                out[2 * f * n + j] = value.re;
+                out[(2 * f + 1) * n + j] = value.im;
             }
         }
     }
-}
-
-fn bessel_row(rhos: &[f64], f: impl Fn(f64) -> (f64, f64)) -> [Vec<f64>; 2] {
-    let both: Vec<(f64, f64)> = rhos.iter().map(|&rho| f(rho)).collect();
-    [both.iter().map(|b| b.0).collect(), both.iter().map(|b| b.1).collect()]
-}
-
-fn hankel(z: Complex64) -> (Complex64, Complex64) {
-    let turn = Complex64::from_polar((-z.im).exp(), z.re);
-    let (h0, h1) = hankel_series(z);
-    (h0 * turn, h1 * turn)
-}
-
-/// From one triple per ζ to lanes × ζ.
-fn flatten(column: &[[Complex64; 3]]) -> Vec<f64> {
-    let mut out = Vec::with_capacity(LANES * column.len());
-    for f in 0..3 {
-        out.extend(column.iter().map(|c| c[f].re));
-        out.extend(column.iter().map(|c| c[f].im));
-    }
-    out
 }
