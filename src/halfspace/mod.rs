@@ -29,13 +29,19 @@
 //! K_xx, K_Φ and P are continuous across the surface; K_zz steps by (n²−1)Q there, as E_z must.
 
 mod bessel;
+mod bessel_fast;
+mod chebyshev;
 mod dipole;
+mod leaves;
 mod panels;
+mod patch;
 mod potentials;
 mod rule;
+mod side_table;
 mod soil;
 mod spectrum;
 
 pub use dipole::DipoleField;
 pub use potentials::{ImageCoefficients, Potentials};
+pub use side_table::{Distances, SideTable};
 pub use soil::{HalfSpace, HalfSpaceError, Region};

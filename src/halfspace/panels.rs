@@ -72,7 +72,7 @@ pub(super) fn cut(
     let mut at = from;
     let least = 1e-11 * (to - from).abs();
     while at < to {
-        let near = singular.iter().map(|s| (s - at).norm()).fold(f64::INFINITY, f64::min);
+        let near = singular.iter().map(|s| (s - at).norm_sqr()).fold(f64::INFINITY, f64::min).sqrt();
         let step = (fineness.reach * near).min(longest(at)).max(least);
         at = if at + 1.2 * step >= to { to } else { at + step };
         ends.push(at);

@@ -122,7 +122,7 @@ impl HalfSpace {
 
 /// (e^{−jkζ} − e^{−jkR'})/ρ: what ∫ e^{−uζ} J₁(λρ) dλ = (e^{−jkζ} − e^{−jkR'}ζ/R')/ρ has beyond
 /// ρ/(R'(R'+ζ)) e^{−jkR'}.
-fn tilt(k: Complex64, rho_m: f64, zeta_m: f64) -> Complex64 {
+pub(super) fn tilt(k: Complex64, rho_m: f64, zeta_m: f64) -> Complex64 {
     if rho_m == 0.0 {
         return Complex64::new(0.0, 0.0);
     }

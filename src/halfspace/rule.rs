@@ -135,10 +135,13 @@ impl Path<'_> {
     /// λ = end ± jt up to t = `length`.
     fn branches(&mut self, end: f64, length: f64) {
         let (k0, k1) = (self.space.k0_per_m(), self.space.k1_per_m());
+        // Both branches get the same t, as tables pair them: singularities of either count for both.
+        let up = Complex64::i();
+        let mut singular: Vec<Complex64> =
+            self.singular.iter().flat_map(|p| [(p - end) / up, (p.conj() - end) / up]).collect();
+        singular.push(-end / up);
         for (sign, wave) in [(1.0, Wave::Outgoing), (-1.0, Wave::Incoming)] {
             let turn = Complex64::new(0.0, sign);
-            let mut singular: Vec<Complex64> = self.singular.iter().map(|p| (p - end) / turn).collect();
-            singular.push(-end / turn);
             let step = self.fineness.radians / (self.reach.rho_m.1 + self.reach.up_m + self.reach.down_m);
             let ends = cut(0.0, length, &singular, &self.fineness, |_| step);
             for pair in ends.windows(2) {
