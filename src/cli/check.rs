@@ -2,9 +2,9 @@
 
 use super::flags::StationArgs;
 use super::load::load;
+use super::stop::Stop;
 use crate::quantity::{engineering, metres_and_feet};
 use crate::station;
-use super::stop::Stop;
 use clap::Args;
 use std::io::Write;
 use std::path::PathBuf;

@@ -25,4 +25,4 @@ mod surroundings;
 pub use factor::{Factored, SingularMatrix};
 pub use fill::{Interaction, Legendre, Matrix};
 pub use local::internal_impedance;
-pub use surroundings::Surroundings;
+pub use surroundings::{Extent, Surroundings};

@@ -3,8 +3,8 @@
 //! Built once a frequency and soil, shared by every pair, every mesh of the same station and every study there.
 
 use super::medium::Medium;
-use crate::halfspace::{HalfSpace, HalfSpaceError, Potentials, Region};
-use crate::layout::EarthAt;
+use crate::halfspace::{Distances, HalfSpace, HalfSpaceError, Potentials, Region, SideTable};
+use crate::layout::{EarthAt, Layout};
 use num_complex::Complex64;
 
 /// What one family of source lines (the conductors themselves, or their images) contributes.
@@ -31,6 +31,66 @@ pub(crate) struct Family {
     pub(crate) weight: Weight,
 }
 
+/// Largest error of a table times the distance from the mirror point.
+const TABLE_TOLERANCE: f64 = 1e-5;
+/// Least horizontal distance a table resolves where conductors reach the surface, m.
+const LEAST_RHO_M: f64 = 4e-4;
+
+/// The space a station takes up: which distances the soil's tables must cover.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Extent {
+    /// Largest horizontal distance between two points, m.
+    pub rho_m: f64,
+    /// Lowest and highest point above the surface, m.
+    pub above_m: Option<(f64, f64)>,
+    /// Least and greatest depth of points below the surface, m.
+    pub below_m: Option<(f64, f64)>,
+}
+
+impl Extent {
+    /// The extent of a layout's conductors.
+    #[must_use]
+    pub fn of(layout: &Layout) -> Self {
+        let points = || layout.conductors.iter().flat_map(|c| &c.points);
+        let low = points().fold([f64::INFINITY; 2], |m, p| [m[0].min(p.x), m[1].min(p.y)]);
+        let high = points().fold([f64::NEG_INFINITY; 2], |m, p| [m[0].max(p.x), m[1].max(p.y)]);
+        let legs = || layout.conductors.iter().flat_map(|c| c.points.windows(2));
+        let widen = |range: Option<(f64, f64)>, z: f64| match range {
+            None => Some((z, z)),
+            Some((a, b)) => Some((a.min(z), b.max(z))),
+        };
+        let side = |sign: f64| {
+            legs()
+                .filter(|leg| sign * (leg[0].z + leg[1].z) > 0.0)
+                .flat_map(|leg| [leg[0].z * sign, leg[1].z * sign])
+                .fold(None, |range, z| widen(range, z.max(0.0)))
+        };
+        Self { rho_m: (high[0] - low[0]).hypot(high[1] - low[1]), above_m: side(1.0), below_m: side(-1.0) }
+    }
+
+    /// The smallest extent that holds both.
+    #[must_use]
+    pub fn union(self, other: Self) -> Self {
+        let join = |a: Option<(f64, f64)>, b: Option<(f64, f64)>| match (a, b) {
+            (Some(a), Some(b)) => Some((a.0.min(b.0), a.1.max(b.1))),
+            (a, b) => a.or(b),
+        };
+        Self {
+            rho_m: self.rho_m.max(other.rho_m),
+            above_m: join(self.above_m, other.above_m),
+            below_m: join(self.below_m, other.below_m),
+        }
+    }
+
+    /// Box of distances for one side of the surface.
+    fn distances(&self, side: Option<(f64, f64)>) -> Option<Distances> {
+        side.map(|(low, high)| {
+            let least_rho = if 2.0 * low < LEAST_RHO_M { LEAST_RHO_M } else { 0.0 };
+            Distances { rho_m: (least_rho, self.rho_m.max(2.0 * LEAST_RHO_M)), zeta_m: (2.0 * low, 2.0 * high) }
+        })
+    }
+}
+
 /// The earth at one frequency.
 #[derive(Debug, Clone)]
 pub struct Surroundings {
@@ -43,17 +103,22 @@ pub struct Surroundings {
 #[derive(Debug, Clone)]
 pub(crate) struct SoilRest {
     space: HalfSpace,
+    above: Option<SideTable>,
+    below: Option<SideTable>,
 }
 
 impl Surroundings {
-    /// Prepare the earth at a frequency.
+    /// Prepare the earth at a frequency; over soil, tables for all distances within the extent.
     ///
     /// # Errors
     /// [`HalfSpaceError`] for soil constants that no half-space can have.
-    pub fn new(frequency_hz: f64, earth: EarthAt) -> Result<Self, HalfSpaceError> {
+    pub fn new(frequency_hz: f64, earth: EarthAt, extent: &Extent) -> Result<Self, HalfSpaceError> {
         let soil = match earth {
             EarthAt::Soil { permittivity, conductivity_s_per_m } => {
-                Some(SoilRest { space: HalfSpace::new(frequency_hz, permittivity, conductivity_s_per_m)? })
+                let space = HalfSpace::new(frequency_hz, permittivity, conductivity_s_per_m)?;
+                let above = extent.distances(extent.above_m).map(|d| SideTable::above(&space, d, TABLE_TOLERANCE));
+                let below = extent.distances(extent.below_m).map(|d| SideTable::below(&space, d, TABLE_TOLERANCE));
+                Some(SoilRest { space, above, below })
             }
             _ => None,
         };
@@ -131,7 +196,18 @@ impl SoilRest {
 
     /// What is left of the four potentials beyond the families, the image of `p_rho` included, 1/m.
     pub(crate) fn rest(&self, region: Region, rho_m: f64, z_m: f64, z_source_m: f64) -> Potentials {
-        let mut rest = self.space.remainder(rho_m, z_m, z_source_m);
+        let table = match region {
+            Region::Above => &self.above,
+            Region::Below => &self.below,
+            Region::Across => &None,
+        };
+        let mut rest = match table {
+            Some(table) => {
+                let [xx, zz, phi, p_rho] = table.eval(rho_m, z_m.abs() + z_source_m.abs());
+                Potentials { xx, zz, phi, p_rho }
+            }
+            None => self.space.remainder(rho_m, z_m, z_source_m),
+        };
         let c = self.space.image_coefficients(region);
         let zeta = z_m.abs() + z_source_m.abs();
         let r = rho_m.hypot(zeta);

@@ -3,7 +3,7 @@
 use super::shield;
 use crate::field::{FarField, Solution};
 use crate::halfspace::HalfSpaceError;
-use crate::interaction::{Interaction, SingularMatrix, Surroundings};
+use crate::interaction::{Extent, Interaction, SingularMatrix, Surroundings};
 use crate::layout::{Earth, EarthAt, FrequencyPoint, Layout, PartKind, Soil};
 use crate::mesh::{Density, Mesh};
 use crate::network::{self, Chain, ChainError, ChainState};
@@ -69,9 +69,10 @@ pub fn predict(layout: &Layout, options: &Options) -> Result<Prediction, Failure
         || Interaction::new(Mesh::new(layout, highest, options.density, &[]), with_image),
         || Interaction::new(Mesh::new(layout, highest, second, &[]), with_image),
     );
+    let extent = Extent::of(layout);
     let frequencies = points
         .par_iter()
-        .map(|point| At::new(layout, point)?.outcome(&fine, &coarse))
+        .map(|point| At::new(layout, point, &extent)?.outcome(&fine, &coarse))
         .collect::<Result<Vec<_>, _>>()?;
     Ok(Prediction {
         braidwise: env!("CARGO_PKG_VERSION").to_string(),
@@ -107,8 +108,8 @@ struct At<'a> {
 }
 
 impl<'a> At<'a> {
-    fn new(layout: &'a Layout, point: &'a FrequencyPoint) -> Result<Self, Failure> {
-        let earth = Surroundings::new(point.frequency_hz, layout.earth.at(point.frequency_hz))?;
+    fn new(layout: &'a Layout, point: &'a FrequencyPoint, extent: &Extent) -> Result<Self, Failure> {
+        let earth = Surroundings::new(point.frequency_hz, layout.earth.at(point.frequency_hz), extent)?;
         Ok(Self { layout, point, earth })
     }
 
