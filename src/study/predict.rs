@@ -3,7 +3,7 @@
 use super::shield;
 use crate::field::{FarField, Solution};
 use crate::halfspace::HalfSpaceError;
-use crate::interaction::{Extent, Interaction, SingularMatrix, Surroundings};
+use crate::interaction::{Extent, Factored, Interaction, Legendre, SingularMatrix, Surroundings};
 use crate::layout::{Earth, EarthAt, FrequencyPoint, Layout, PartKind, Soil};
 use crate::mesh::{Density, Mesh};
 use crate::network::{self, Chain, ChainError, ChainState};
@@ -116,8 +116,13 @@ impl<'a> At<'a> {
     fn outcome(&self, fine: &Interaction, coarse: &Interaction) -> Result<FrequencyOutcome, Failure> {
         let f = self.point.frequency_hz;
         let parts: Vec<Complex64> = self.layout.parts.iter().map(|p| network::impedance(&p.law, f)).collect();
-        let (model, currents) = self.solve(fine, &parts)?;
-        let (_, coarse_currents) = self.solve(coarse, &parts)?;
+        let singular = |source| Failure::Singular { frequency_hz: f, source };
+        let (matrix, potentials) = fine.fill_with_potentials(&self.earth);
+        let factored = Factored::new(matrix).map_err(singular)?;
+        let model = PortModel::from_factored(fine.mesh(), &factored).map_err(singular)?;
+        let currents = model.loaded_currents(&parts);
+        let coarse_model = PortModel::solve(coarse, &self.earth).map_err(singular)?;
+        let coarse_currents = coarse_model.loaded_currents(&parts);
         let feed_ohm = currents[0].inv();
         let second_ohm = coarse_currents[0].inv();
         let state = Chain::of(self.layout).at(f).state(feed_ohm, self.layout.operation.power_w)?;
@@ -126,7 +131,7 @@ impl<'a> At<'a> {
         let solution =
             Solution::new(fine.mesh(), &model.unknowns(&parts, &currents)).scaled(Complex64::from(voltage_peak_v));
         let port_currents = currents * Complex64::from(voltage_peak_v);
-        let conductors = self.conductors(fine, &solution);
+        let conductors = self.conductors(fine.mesh(), &solution, &potentials.along(&solution.currents));
         let difference = feed_ohm - second_ohm;
         Ok(FrequencyOutcome {
             frequency_hz: f,
@@ -155,18 +160,6 @@ impl<'a> At<'a> {
         })
     }
 
-    fn solve(
-        &self,
-        interaction: &Interaction,
-        parts: &[Complex64],
-    ) -> Result<(PortModel, DVector<Complex64>), Failure> {
-        let frequency_hz = self.point.frequency_hz;
-        let model =
-            PortModel::solve(interaction, &self.earth).map_err(|source| Failure::Singular { frequency_hz, source })?;
-        let currents = model.loaded_currents(parts);
-        Ok((model, currents))
-    }
-
     fn soil(&self) -> Option<SoilOutcome> {
         match self.earth.earth() {
             EarthAt::Soil { permittivity, conductivity_s_per_m } => {
@@ -176,16 +169,15 @@ impl<'a> At<'a> {
         }
     }
 
-    fn conductors(&self, interaction: &Interaction, solution: &Solution) -> Vec<ConductorOutcome> {
+    fn conductors(&self, mesh: &Mesh, solution: &Solution, potentials: &[Legendre]) -> Vec<ConductorOutcome> {
         let f = self.point.frequency_hz;
         let step_m = (SPEED_OF_LIGHT_M_PER_S / f / 100.0).min(0.1);
-        let potentials = interaction.potentials(&self.earth, &solution.currents);
         let rms = std::f64::consts::FRAC_1_SQRT_2;
         (0..self.layout.conductors.len())
             .map(|c| ConductorOutcome {
                 name: self.layout.conductors[c].name.clone(),
                 points: solution
-                    .along(self.layout, interaction.mesh(), c, &potentials, step_m)
+                    .along(self.layout, mesh, c, potentials, step_m)
                     .into_iter()
                     .map(|s| PointOutcome {
                         distance_m: s.distance_m,
