@@ -2,7 +2,8 @@
 //!
 //! Takes the TOML text of section "The station file" of README and a [`Catalogue`]; gives a [`Station`], or a
 //! [`Refused`] with every fault found, each with line, column, reason and mend. The steps: [`source`] texts and places,
-//! `node` the document as a tree, `change` values set by path, `raw` the tables as written, `check` the tables as
+//! `node` the document as a tree, `path`, `change`, `protective` and
+//! `variant` values set by path, `raw` the tables as written, `check` the tables as
 //! meant. A [`Document`] is the file parsed once, for studies that set values many times.
 
 mod catalogue;
@@ -10,10 +11,13 @@ mod change;
 mod check;
 mod document;
 mod node;
+mod path;
+mod protective;
 mod raw;
 mod schema;
 mod source;
 mod types;
+mod variant;
 
 pub use catalogue::{Cable, Catalogue};
 pub use document::Document;

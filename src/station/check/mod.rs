@@ -14,7 +14,7 @@ mod points;
 
 use super::catalogue::Catalogue;
 use super::node::{Node, NodeKind};
-use super::raw::{PathPoint, RawStation, Read, Reader};
+use super::raw::{LengthUnit, PathPoint, RawStation, Read, Reader};
 use super::source::{Fault, Place, Sources, Written};
 use super::types::Station;
 
@@ -118,6 +118,7 @@ impl<'a> Check<'a> {
         let limits = self.limits(raw.limits);
         Some(Station {
             title: raw.title.map_or_else(String::new, |t| t.value),
+            in_feet: raw.unit.is_some_and(|u| u.value == LengthUnit::Foot),
             earth: earth?,
             points: points?,
             wires: wires.into_iter().collect::<Option<_>>()?,

@@ -15,7 +15,7 @@ mod scalars;
 pub(crate) use conductors::{RawCoax, RawJacket, RawLoss, RawRadials, RawRod, RawWire};
 pub(crate) use earth::RawEarth;
 pub(crate) use feed::{RawFeed, RawFeedAt, RawTransformer};
-pub(crate) use operation::{RawBody, RawLimits, RawOperation, RawRadio, RawStation};
+pub(crate) use operation::{RawBody, RawLimits, RawOperation, RawRadio, RawStation, RawVariant};
 pub(crate) use parts::{RawChoke, RawImpedance, RawInline, RawResonant};
 pub use points::{Coordinates, GRASS_M, Height, PathPoint};
 pub(crate) use points::{RawLocation, RawPoints};
@@ -75,7 +75,13 @@ impl<T: Read> Take for Written<T> {
         match table.get(key) {
             Some(node) => T::read(node, reader).map(|value| Written { value, place: Some(node.place) }),
             None => {
-                reader.fault(table.place, format!("`{key}` is missing here"), format!("add a line `{key} = …`"));
+                let whole_file = table.place.end == 0;
+                let (what, mend) = if whole_file {
+                    (format!("there is no [{key}]"), format!("add a table [{key}]"))
+                } else {
+                    (format!("`{key}` is missing here"), format!("add a line `{key} = …`"))
+                };
+                reader.fault(table.place, what, mend);
                 None
             }
         }
@@ -160,10 +166,15 @@ macro_rules! table {
         #[schemars(deny_unknown_fields, rename = $title)]
         pub(crate) struct $name { $($(#[doc = $doc])* pub(crate) $key: $kind,)* }
 
+        impl $name {
+            /// Every key of this table.
+            pub(crate) const KEYS: &'static [&'static str] = &[$(stringify!($key)),*];
+        }
+
         impl $crate::station::raw::Read for $name {
             fn read(node: &$crate::station::node::Node, reader: &mut $crate::station::raw::Reader) -> Option<Self> {
                 let example = concat!("a table with the keys ", $("`", stringify!($key), "` ",)*);
-                if !reader.keys(node, &[$(stringify!($key)),*], example.trim_end()) {
+                if !reader.keys(node, Self::KEYS, example.trim_end()) {
                     return None;
                 }
                 $(let $key = <$kind as $crate::station::raw::Take>::take(node, stringify!($key), reader);)*

@@ -5,6 +5,7 @@ use super::{
     RawRadials, RawRod, RawWire, Read, Reader, Resistance, Rows, table,
 };
 use crate::quantity;
+use crate::station::node::Entry;
 use crate::station::source::Written;
 use schemars::{JsonSchema, Schema, SchemaGenerator, json_schema};
 use std::borrow::Cow;
@@ -73,7 +74,7 @@ table! {
 
 /// `set` of a variant: paths and values, applied to the document before it is read.
 #[derive(Debug, Clone)]
-pub(crate) struct RawSettings;
+pub(crate) struct RawSettings(pub(crate) Vec<Entry>);
 
 impl Read for RawSettings {
     fn read(node: &Node, reader: &mut Reader) -> Option<Self> {
@@ -81,7 +82,7 @@ impl Read for RawSettings {
             reader.wrong_type(node, "a table of paths and values: { \"earth.soil\" = \"wet meadow\" }");
             return None;
         }
-        Some(RawSettings)
+        Some(RawSettings(node.entries().to_vec()))
     }
 }
 
