@@ -6,6 +6,8 @@
 //! `variant` values set by path, `raw` the tables as written, `check` the tables as
 //! meant. A [`Document`] is the file parsed once, for studies that set values many times.
 
+#[cfg(test)]
+mod behaviour;
 mod catalogue;
 mod change;
 mod check;

@@ -27,10 +27,9 @@ pub(super) fn document(nominal: &Document, name: &str) -> Result<Document, Refus
     let mut reader = Reader { unit_m: 1.0, faults: Vec::new() };
     let Some(raw) = RawVariant::read(row, &mut reader) else { return Err(refused(reader.faults)) };
     let mut faults = reader.faults;
-    let within = |p: Place| {
-        p.source == row.place.source && (row.place.start..=row.place.end.max(row.place.start)).contains(&p.start)
-    };
-    for setting in raw.set.iter().flat_map(|s| &s.value.0) {
+    let settings = raw.set.as_ref().map_or(&[][..], |s| s.value.0.as_slice());
+    let within = |p: Place| settings.iter().any(|s| s.value.place == p);
+    for setting in settings {
         let set = target(&changed.root, &setting.key, setting.place)
             .and_then(|target| change::set(&mut changed.root, &target, setting.place, setting.value.clone(), &within));
         faults.extend(set.err());

@@ -97,6 +97,26 @@ impl<T: Read> Take for Option<Written<T>> {
     }
 }
 
+/// A table the file must have; `None` with its faults collected where it is missing or cannot be read.
+#[derive(Debug, Clone)]
+pub(crate) struct Needed<T>(pub(crate) Option<Written<T>>);
+
+impl<T: Read> Take for Needed<T> {
+    fn take(table: &Node, key: &str, reader: &mut Reader) -> Option<Self> {
+        Some(Needed(<Written<T> as Take>::take(table, key, reader)))
+    }
+}
+
+/// A table or value the file may have; `None` also, with its faults collected, where it cannot be read.
+#[derive(Debug, Clone)]
+pub(crate) struct Welcome<T>(pub(crate) Option<Written<T>>);
+
+impl<T: Read> Take for Welcome<T> {
+    fn take(table: &Node, key: &str, reader: &mut Reader) -> Option<Self> {
+        Some(Welcome(<Option<Written<T>> as Take>::take(table, key, reader).flatten()))
+    }
+}
+
 /// Tables in double brackets; one that cannot be read is left out, with its faults collected.
 #[derive(Debug, Clone)]
 pub(crate) struct Rows<T>(pub(crate) Vec<Written<T>>);
@@ -106,7 +126,7 @@ impl<T: Read> Take for Rows<T> {
         let Some(node) = table.get(key) else { return Some(Rows(Vec::new())) };
         if !matches!(node.kind, NodeKind::List(_)) {
             reader.wrong_type(node, &format!("the table in double brackets, [[{key}]]: there may be several"));
-            return None;
+            return Some(Rows(Vec::new()));
         }
         let rows = node
             .items()
@@ -131,20 +151,26 @@ impl<T: Read> Read for Vec<Written<T>> {
     }
 }
 
-impl<T: schemars::JsonSchema> schemars::JsonSchema for Written<T> {
-    fn schema_name() -> Cow<'static, str> {
-        T::schema_name()
-    }
-    fn schema_id() -> Cow<'static, str> {
-        T::schema_id()
-    }
-    fn inline_schema() -> bool {
-        T::inline_schema()
-    }
-    fn json_schema(generator: &mut schemars::SchemaGenerator) -> schemars::Schema {
-        T::json_schema(generator)
-    }
+/// The schema of what is wrapped.
+macro_rules! schema_of_inner {
+    ($($wrapper:ident),*) => {$(
+        impl<T: schemars::JsonSchema> schemars::JsonSchema for $wrapper<T> {
+            fn schema_name() -> Cow<'static, str> {
+                T::schema_name()
+            }
+            fn schema_id() -> Cow<'static, str> {
+                T::schema_id()
+            }
+            fn inline_schema() -> bool {
+                T::inline_schema()
+            }
+            fn json_schema(generator: &mut schemars::SchemaGenerator) -> schemars::Schema {
+                T::json_schema(generator)
+            }
+        }
+    )*};
 }
+schema_of_inner!(Written, Needed, Welcome);
 
 impl<T: schemars::JsonSchema> schemars::JsonSchema for Rows<T> {
     fn schema_name() -> Cow<'static, str> {
