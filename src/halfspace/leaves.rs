@@ -1,7 +1,8 @@
 //! A patch cut into rectangles with one short polynomial each.
 
 use super::chebyshev::{monomials, restriction};
-use super::patch::{LANES, Patch};
+use super::patch::Patch;
+use super::spectral_sum::LANES;
 
 /// Total degree of a leaf's polynomial.
 pub(super) const DEGREE: usize = 5;

@@ -28,6 +28,8 @@
 //!
 //! K_xx, K_Φ and P are continuous across the surface; K_zz steps by (n²−1)Q there, as E_z must.
 
+mod across_leaves;
+mod across_table;
 mod bessel;
 mod bessel_fast;
 mod chebyshev;
@@ -39,8 +41,11 @@ mod potentials;
 mod rule;
 mod side_table;
 mod soil;
+mod spectral_sum;
 mod spectrum;
+mod tensor;
 
+pub use across_table::{AcrossDistances, AcrossTable};
 pub use dipole::DipoleField;
 pub use potentials::{ImageCoefficients, Potentials};
 pub use side_table::{Distances, SideTable};
