@@ -152,8 +152,8 @@ fn build_box(space: &HalfSpace, sides: Sides, tolerance: f64) -> AcrossLeaves {
         let width = sides[axis].1 - sides[axis].0;
         let half = 0.5 * width / (0.75 * near);
         let rate = (half.recip() + (half.recip().powi(2) + 1.0).sqrt()).ln();
-        let speed = if axis == 2 { k1.norm().min(digits / width) } else { air };
-        (4.0 + 0.42 * digits / rate.max(0.6) + 0.4 * speed * width).ceil().clamp(5.0, 60.0) as usize
+        let (speed, turns) = if axis == 2 { (k1.norm().min(digits / width), 0.6) } else { (air, 0.45) };
+        (4.0 + 0.42 * digits / rate.max(0.6) + turns * speed * width).ceil().clamp(5.0, 60.0) as usize
     });
     let allowed = 0.1 * tolerance / far;
     loop {
@@ -182,6 +182,7 @@ fn sample(space: &HalfSpace, sides: Sides, count: [usize; 3], fineness: Fineness
         up_m: sides[1].1 + sides[2].1,
         down_m: sides[2].1,
         least_m: sides[1].0 + sides[2].0,
+        from_k0: false,
     };
     let columns = heights.len() * depths.len();
     let fill = |node: &Node, out: &mut [f64]| {

@@ -38,7 +38,7 @@ impl Patch {
         let (rhos, zetas) = (spread(rho_m, m), spread(zeta_m, n));
         let below = region == Region::Below;
         let (up_m, down_m) = if below { (0.0, zeta_m.1) } else { (zeta_m.1, 0.0) };
-        let reach = Reach { region, rho_m, up_m, down_m, least_m: zeta_m.0 };
+        let reach = Reach { region, rho_m, up_m, down_m, least_m: zeta_m.0, from_k0: false };
         let weights = Weights::new(space, region);
         let fill = |node: &Node, out: &mut [f64]| {
             let s = Spectral::at(space, node);
@@ -56,7 +56,13 @@ impl Patch {
                 values[(5 * m + i) * n + j] -= closed.im;
             }
         }
-        Self { rectangle, coefficients: transform(&values, m, n) }
+        Self::from_values(rectangle, &values)
+    }
+
+    /// From values `[lane][rho][zeta]` at the Chebyshev points.
+    pub(super) fn from_values(rectangle: Rectangle, values: &[f64]) -> Self {
+        let (m, n) = rectangle.points;
+        Self { rectangle, coefficients: transform(values, m, n) }
     }
 
     /// The largest of the last two coefficients each way, summed over the other way: how well it is resolved.
@@ -92,7 +98,7 @@ fn transform(values: &[f64], m: usize, n: usize) -> Vec<f64> {
 }
 
 /// row += Σ weights[i] · (row i of `rows`).
-fn combine(row: &mut [f64], weights: &[f64], rows: &[f64]) {
+pub(super) fn combine(row: &mut [f64], weights: &[f64], rows: &[f64]) {
     let n = row.len();
     let (weights4, rows4) = (weights.chunks_exact(4), rows.chunks_exact(4 * n));
     let (rest_weights, rest_rows) = (weights4.remainder(), rows4.remainder());

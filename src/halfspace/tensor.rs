@@ -1,6 +1,7 @@
 //! Chebyshev coefficients over a box of three variables, and their restriction to half of it.
 
 use super::chebyshev::{analysis, restriction};
+use super::patch::combine;
 use super::spectral_sum::LANES;
 
 /// Values or coefficients `[lane][first][second][third]`.
@@ -33,13 +34,16 @@ impl Tensor {
         size[axis] = to;
         let outer = self.data.len() / (from * inner);
         let mut data = vec![0.0; outer * to * inner];
+        if inner == 1 {
+            let turned: Vec<f64> = (0..from * to).map(|p| matrix[(p % to) * from + p / to]).collect();
+            for (source, target) in self.data.chunks_exact(from).zip(data.chunks_exact_mut(to)) {
+                combine(target, source, &turned);
+            }
+            return Self { size, data };
+        }
         for (source, target) in self.data.chunks_exact(from * inner).zip(data.chunks_exact_mut(to * inner)) {
             for (row, weights) in target.chunks_exact_mut(inner).zip(matrix.chunks_exact(from)) {
-                for (weight, values) in weights.iter().zip(source.chunks_exact(inner)) {
-                    for (out, value) in row.iter_mut().zip(values) {
-                        *out += weight * value;
-                    }
-                }
+                combine(row, weights, source);
             }
         }
         Self { size, data }
@@ -58,15 +62,16 @@ impl Tensor {
         let [a, b, c] = self.size;
         for lane in self.data.chunks_exact(a * b * c) {
             let mut sums = [0.0; 3];
-            for (place, value) in lane.iter().enumerate() {
-                let index = [place / (b * c), place / c % b, place % c];
-                if index.iter().sum::<usize>() > degree {
-                    let highest = index.iter().max().copied().unwrap_or(0);
-                    for (sum, i) in sums.iter_mut().zip(index) {
-                        if i == highest {
-                            *sum += value.abs();
-                        }
-                    }
+            for (i, layer) in lane.chunks_exact(b * c).enumerate() {
+                for (j, row) in layer.chunks_exact(c).enumerate() {
+                    let from = (degree + 1).saturating_sub(i + j).min(c);
+                    let most = i.max(j);
+                    // Up to degree `most` in the last variable one of the first two leads, beyond it the last.
+                    let turn = (most + 1).clamp(from, c);
+                    let inner: f64 = row[from..turn].iter().map(|v| v.abs()).sum();
+                    let outer: f64 = row[turn..].iter().map(|v| v.abs()).sum();
+                    sums[if i >= j { 0 } else { 1 }] += inner;
+                    sums[2] += outer;
                 }
             }
             for (w, s) in worst.iter_mut().zip(sums) {
