@@ -99,9 +99,10 @@ impl HalfSpace {
             least_m: zeta_m,
             from_k0: true,
         };
-        let weights = LossWeights::new(self);
+        let space = self.not_lossless();
+        let weights = LossWeights::new(&space);
         let mut sum = [0.0; 4];
-        for node in nodes(self, reach, FINE) {
+        for node in nodes(&space, reach, FINE) {
             let (values, u0) = weights.at(&node);
             let scale = node.weight * (-u0 * zeta_m).exp() * bessel_at(&node, rho_m).0;
             for (total, value) in sum.iter_mut().zip(values) {
@@ -134,5 +135,155 @@ impl HalfSpace {
         let k0 = self.k0_per_m();
         let front = ETA_0_OHM * k0 * k0 / (32.0 * PI * PI);
         front * ((1.0 - te.norm_sqr()) * across.norm_sqr() + (1.0 - tm.norm_sqr()) * along.norm_sqr())
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    #![allow(clippy::unwrap_used)]
+    use super::*;
+    use crate::quantity::{EPSILON_0_F_PER_M, MU_0_H_PER_M};
+
+    /// A straight uniform current of 1 A between two points, with the charges at its ends.
+    struct Rod {
+        ends: [[f64; 3]; 2],
+        points: Vec<([f64; 3], f64)>,
+        moment: [f64; 3],
+    }
+
+    impl Rod {
+        fn new(ends: [[f64; 3]; 2]) -> Self {
+            let moment = [0, 1, 2].map(|i| ends[1][i] - ends[0][i]);
+            let points = super::super::panels::gauss(8)
+                .iter()
+                .map(|&(x, w)| ([0, 1, 2].map(|i| ends[0][i] + 0.5 * (1.0 + x) * moment[i]), 0.5 * w))
+                .collect();
+            Self { ends, points, moment }
+        }
+
+        /// Charge over 1/(jω): out of the first end, into the second.
+        fn charges(&self) -> [([f64; 3], f64); 2] {
+            [(self.ends[0], -1.0), (self.ends[1], 1.0)]
+        }
+
+        /// ∫ e^{+jk·r} of the current.
+        fn spectrum(&self, k: [f64; 3]) -> Complex64 {
+            self.points.iter().map(|(r, w)| Complex64::from_polar(*w, k[0] * r[0] + k[1] * r[1] + k[2] * r[2])).sum()
+        }
+    }
+
+    fn apart(a: [f64; 3], b: [f64; 3]) -> f64 {
+        (a[0] - b[0]).hypot(a[1] - b[1])
+    }
+
+    /// Imaginary parts of K_xx, K_zz, K_Φ, finite where the points coincide.
+    fn imaginary(space: &HalfSpace, a: [f64; 3], b: [f64; 3]) -> [f64; 3] {
+        let rho = apart(a, b);
+        let (rest, parts) = (space.remainder(rho, a[2], b[2]), space.image_coefficients(Region::Above));
+        let (k, r) = (space.k0_per_m(), rho.hypot(a[2] - b[2]));
+        let direct = if k * r < 1e-6 { -k } else { -(k * r).sin() / r };
+        let far = rho.hypot(a[2] + b[2]);
+        let image = Complex64::from_polar(1.0 / far, -k * far);
+        [
+            direct + (rest.xx + parts.image.xx * image).im,
+            direct + (rest.zz + parts.image.zz * image).im,
+            direct + (rest.phi + parts.image.phi * image).im,
+        ]
+    }
+
+    fn input_w(space: &HalfSpace, rod: &Rod) -> f64 {
+        let omega = space.omega();
+        let flat = rod.moment[0].powi(2) + rod.moment[1].powi(2);
+        let (mut currents, mut charges) = (0.0, 0.0);
+        for (a, u) in &rod.points {
+            for (b, v) in &rod.points {
+                let [xx, zz, _] = imaginary(space, *a, *b);
+                currents += u * v * (flat * xx + rod.moment[2].powi(2) * zz);
+            }
+        }
+        for (a, u) in rod.charges() {
+            for (b, v) in rod.charges() {
+                charges += u * v * imaginary(space, a, b)[2] / (omega * omega);
+            }
+        }
+        0.5 * omega * (charges / (4.0 * PI * EPSILON_0_F_PER_M) - MU_0_H_PER_M / (4.0 * PI) * currents)
+    }
+
+    fn evanescent_w(space: &HalfSpace, rod: &Rod) -> f64 {
+        let omega = space.omega();
+        let flat = rod.moment[0].powi(2) + rod.moment[1].powi(2);
+        let kernels = |a: [f64; 3], b: [f64; 3]| space.loss_kernels(apart(a, b), a[2] + b[2]);
+        let mut sum = 0.0;
+        for (a, u) in &rod.points {
+            for (b, v) in &rod.points {
+                let k = kernels(*a, *b);
+                sum += MU_0_H_PER_M / (4.0 * PI) * u * v * (flat * k.across + rod.moment[2].powi(2) * k.up);
+            }
+            for (b, v) in rod.charges() {
+                // q = v/(jω), so Im(J_z q*) = J_z v/ω.
+                sum -= ETA_0_OHM / (2.0 * PI) * u * rod.moment[2] * kernels(*a, b).up_charge * v / omega;
+            }
+        }
+        for (a, u) in rod.charges() {
+            for (b, v) in rod.charges() {
+                sum += u * v / (omega * omega) * kernels(a, b).charge / (4.0 * PI * EPSILON_0_F_PER_M);
+            }
+        }
+        0.5 * omega * sum
+    }
+
+    /// Radiated and plane-wave earth power, by directions.
+    fn by_directions_w(space: &HalfSpace, rod: &Rod) -> [f64; 2] {
+        let k0 = space.k0_per_m();
+        let mut sums = [0.0; 2];
+        let rings = 48;
+        for panel in 0..4 {
+            for &(x, w) in super::super::panels::gauss(20) {
+                // cos θ = s² crowds the directions towards the horizon, where the pseudo-Brewster angle of good ground is.
+                let s = 0.25 * (f64::from(panel) + 0.5 * (1.0 + x));
+                let theta = (s * s).acos();
+                let weight = 0.125 * w * 2.0 * s * 2.0 * PI / f64::from(rings);
+                for i in 0..rings {
+                    let phi = 2.0 * PI * f64::from(i) / f64::from(rings);
+                    let k = [k0 * theta.sin() * phi.cos(), k0 * theta.sin() * phi.sin(), k0 * theta.cos()];
+                    let (up, down) = (rod.spectrum(k), rod.spectrum([k[0], k[1], -k[2]]));
+                    let moment = rod.moment.map(|m| down * m);
+                    sums[1] += weight * space.downward_power_w_per_sr(theta, phi, moment);
+                    let (te, tm) = space.plane_wave_reflection(theta);
+                    let along = rod.moment[0] * phi.cos() + rod.moment[1] * phi.sin();
+                    let across = rod.moment[1] * phi.cos() - rod.moment[0] * phi.sin();
+                    let horizontal = across * (up + te * down);
+                    let vertical =
+                        along * theta.cos() * (up - tm * down) - rod.moment[2] * theta.sin() * (up + tm * down);
+                    let front = ETA_0_OHM * k0 * k0 / (32.0 * PI * PI);
+                    sums[0] += weight * front * (horizontal.norm_sqr() + vertical.norm_sqr());
+                }
+            }
+        }
+        sums
+    }
+
+    #[test]
+    fn input_is_radiation_plus_earth_loss() {
+        for (f, e, s) in [(1.8e6, 70.0, 5.0), (7.1e6, 13.0, 5e-3), (2.84e7, 3.0, 1e-4), (1.41e7, 5.0, 0.0)] {
+            let space = HalfSpace::new(f, e, s).unwrap();
+            for ends in [
+                [[0.0, 0.0, 0.4], [0.0, 0.0, 0.6]],
+                [[0.0, 0.0, 0.003], [0.3, 0.1, 0.003]],
+                [[0.0, 0.0, 3.0], [0.3, 0.1, 3.0]],
+                [[0.0, 0.0, 0.3], [0.2, 0.0, 0.5]],
+            ] {
+                let rod = Rod::new(ends);
+                let input = input_w(&space, &rod);
+                let [radiated, plane] = by_directions_w(&space, &rod);
+                let evanescent = evanescent_w(&space, &rod);
+                let gap = input - radiated - plane - evanescent;
+                assert!(
+                    gap.abs() < 1e-6 * input && radiated > 0.0 && plane >= 0.0 && evanescent > 0.0,
+                    "{f} {e} {s} {ends:?}: in {input:e} sky {radiated:e} plane {plane:e} near {evanescent:e} gap {:e}",
+                    gap / input
+                );
+            }
+        }
     }
 }
