@@ -8,6 +8,12 @@ mod axes;
 mod drawing;
 mod font;
 mod paint;
+mod placer;
+mod site;
+mod site_key;
+mod site_view;
+mod site_wires;
+mod symbols;
 
 #[cfg(test)]
 mod checks;
@@ -22,8 +28,7 @@ use std::path::{Path, PathBuf};
 /// # Errors
 /// [`OutputError`] of the first picture that could not be drawn or written.
 pub fn write_all_prediction(prediction: &Prediction, folder: &Path, units: Units) -> Result<Vec<PathBuf>, OutputError> {
-    let _ = units;
-    let mut paths = Vec::new();
+    let mut paths = paint::write_both(&site::drawing(prediction, units)?, folder, "site")?;
     paths.extend(paint::write_both(&along::drawing(prediction)?, folder, "along-the-coax")?);
     Ok(paths)
 }
