@@ -5,9 +5,11 @@
 
 mod along;
 mod axes;
+mod curve;
 mod drawing;
 mod font;
 mod paint;
+mod pattern;
 mod placer;
 mod site;
 mod site_key;
@@ -20,17 +22,52 @@ mod checks;
 
 use super::OutputError;
 use crate::outcome::Prediction;
-use crate::output::Units;
+use crate::outcome::curve::CurveOutcome;
+use crate::outcome::pattern::PatternOutcome;
+use crate::output::{References, Units};
 use std::path::{Path, PathBuf};
 
-/// Draws every picture of a prediction into a folder, which is made if it is not there.
+/// Draws every picture of a prediction into a folder, which is made if it is not there: the site, current and voltage along
+/// the coax (where there is one), impedance and match over the predicted frequencies.
 ///
 /// # Errors
 /// [`OutputError`] of the first picture that could not be drawn or written.
-pub fn write_all_prediction(prediction: &Prediction, folder: &Path, units: Units) -> Result<Vec<PathBuf>, OutputError> {
-    let mut paths = paint::write_both(&site::drawing(prediction, units)?, folder, "site")?;
-    paths.extend(paint::write_both(&along::drawing(prediction)?, folder, "along-the-coax")?);
+pub fn write_all_prediction(
+    prediction: &Prediction,
+    references: &References,
+    folder: &Path,
+    units: Units,
+) -> Result<Vec<PathBuf>, OutputError> {
+    let mut paths = write(folder, "site", &site::drawing(prediction, units)?)?;
+    if prediction.frequencies.iter().any(|f| f.shield.is_some()) {
+        paths.extend(write(folder, "along-the-coax", &along::drawing(prediction)?)?);
+    }
+    let limit = references.limits.map(|l| l.swr);
+    let curve = CurveOutcome::of(prediction, references.radio_impedance_ohm, limit);
+    paths.extend(write_curve(&curve, folder)?);
     Ok(paths)
+}
+
+/// Draws impedance and standing-wave ratio against frequency ("match").
+///
+/// # Errors
+/// [`OutputError`] when there is no point or the files cannot be written.
+pub fn write_curve(curve: &CurveOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
+    write(folder, "match", &curve::drawing(curve)?)
+}
+
+/// Draws a radiation pattern ("pattern-14.175-MHz").
+///
+/// # Errors
+/// [`OutputError`] when there is no cut or the files cannot be written.
+pub fn write_pattern(pattern: &PatternOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
+    let name = format!("pattern-{}-MHz", super::figures::megahertz(pattern.frequency_hz));
+    write(folder, &name, &pattern::drawing(pattern)?)
+}
+
+fn write(folder: &Path, name: &str, drawing: &drawing::Drawing) -> Result<Vec<PathBuf>, OutputError> {
+    std::fs::create_dir_all(folder).map_err(|source| OutputError::File { path: folder.to_path_buf(), source })?;
+    paint::write_both(drawing, folder, name)
 }
 
 #[cfg(test)]
@@ -53,7 +90,11 @@ mod tests {
     #[test]
     fn every_picture_of_a_prediction_is_written_twice() {
         let (folder, _keep) = folder();
-        let paths = write_all_prediction(&sample::prediction(), &folder, Units::Metres).unwrap();
+        let references = References { impedance_ratio: Some(49.0), ..References::default() };
+        let mut paths = write_all_prediction(&sample::prediction(), &references, &folder, Units::Metres).unwrap();
+        paths.extend(write_curve(&sample::curve(), &folder.join("run")).unwrap());
+        paths.extend(write_pattern(&sample::pattern(), &folder).unwrap());
+        assert_eq!(paths.len(), 10);
         for path in &paths {
             assert!(std::fs::metadata(path).unwrap().len() > 2_000, "{}", path.display());
         }
