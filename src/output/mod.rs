@@ -17,6 +17,8 @@ mod worst;
 
 #[cfg(test)]
 pub(crate) mod sample;
+#[cfg(test)]
+pub(crate) mod sample_studies;
 
 use crate::outcome::place::LimitsOutcome;
 use std::path::PathBuf;

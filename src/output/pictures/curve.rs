@@ -3,9 +3,9 @@
 //! Frequencies that run on are drawn on one axis with the bands in grey. Frequencies that lie only within bands are
 //! drawn band beside band, each on its own stretch of the axis, because one axis would squeeze every band to a line.
 
-use super::axes::{Frame, Scale, run_of};
-use super::drawing::{Anchor, Area, Drawing, EM, PATTERNS, Pattern, SMALL, fitted};
-use crate::outcome::curve::{CurveOutcome, CurvePoint};
+use super::axes::{Frame, Scale, run_of, tick_text};
+use super::drawing::{Anchor, Area, Drawing, EM, PATTERNS, Pattern, SMALL, Words};
+use crate::outcome::curve::{CurveBand, CurveOutcome, CurvePoint};
 use crate::output::{OutputError, figures};
 
 /// Left and right edge of the boxes.
@@ -19,7 +19,6 @@ const MARKED_BELOW: usize = 8;
 
 /// A run of frequencies with its share of the axis.
 struct Stretch<'a> {
-    name: String,
     x: Scale,
     points: Vec<&'a CurvePoint>,
 }
@@ -63,7 +62,7 @@ pub(super) fn drawing(curve: &CurveOutcome) -> Result<Drawing, OutputError> {
         }
         drawing.write([EDGES[1], top - 8.0], SMALL, Anchor::End, format!("dotted: limit {}", figures::swr(limit)));
     }
-    below_axis(&mut drawing, &stretches, bottom);
+    below_axis(&mut drawing, curve, &stretches, bottom);
     Ok(drawing)
 }
 
@@ -77,15 +76,15 @@ fn stretches(curve: &CurveOutcome) -> Vec<Stretch<'_>> {
     if !apart {
         let spare = if last > first { 0.0 } else { 0.005 * first };
         let x = Scale::linear([(first - spare) / 1e6, (last + spare) / 1e6], EDGES[0], EDGES[1]);
-        return vec![Stretch { name: String::new(), x, points: curve.points.iter().collect() }];
+        return vec![Stretch { x, points: curve.points.iter().collect() }];
     }
     let wide = (EDGES[1] - EDGES[0] + GUTTER) / curve.bands.len() as f64;
-    let stretch = |(index, band): (usize, &crate::outcome::curve::CurveBand)| {
+    let stretch = |(index, band): (usize, &CurveBand)| {
         let start = EDGES[0] + wide * index as f64;
         let spare = if band.to_hz > band.from_hz { 0.0 } else { 0.005 * band.from_hz };
         let run = [(band.from_hz - spare) / 1e6, (band.to_hz + spare) / 1e6];
         let points = curve.points.iter().filter(|p| in_band(p) == Some(index)).collect();
-        Stretch { name: band.name.clone(), x: Scale::linear(run, start, start + wide - GUTTER), points }
+        Stretch { x: Scale::linear(run, start, start + wide - GUTTER), points }
     };
     curve.bands.iter().enumerate().map(stretch).collect()
 }
@@ -108,16 +107,12 @@ fn boxes(drawing: &mut Drawing, curve: &CurveOutcome, stretches: &[Stretch], y: 
                 drawing.line(&[[stretch.x.start, y.at(tick)], [stretch.x.end, y.at(tick)]], 0.7, 0.86);
             }
         }
-        for tick in frame.x.ticks(tick_count(stretches.len())) {
+        for tick in ticks(stretch, stretches.len()) {
             let x = frame.x.at(tick);
             drawing.line(&[[x, y.start], [x, y.start + 6.0]], 1.25, 0.0);
         }
         frame.outline(drawing);
     }
-}
-
-fn tick_count(stretches: usize) -> usize {
-    (12 / stretches).max(2)
 }
 
 fn draw_line(
@@ -158,33 +153,47 @@ fn zero(drawing: &mut Drawing, stretches: &[Stretch], y: Scale) {
 fn key(drawing: &mut Drawing, y: f64) {
     for (x, pattern, said) in [(860.0, PATTERNS[0], "resistance"), (1012.0, PATTERNS[4], "reactance")] {
         drawing.patterned(&[[x, y], [x + 46.0, y]], 2.0, 0.0, pattern);
-        drawing.words(super::drawing::Words::centred([x + 54.0, y], SMALL, Anchor::Start, said));
+        drawing.words(Words::centred([x + 54.0, y], SMALL, Anchor::Start, said));
     }
 }
 
-fn below_axis(drawing: &mut Drawing, stretches: &[Stretch], bottom: f64) {
-    let mut end = f64::NEG_INFINITY;
+/// Ticks of a stretch: round frequencies on one axis; the edges where bands stand beside each other.
+fn ticks(stretch: &Stretch, stretches: usize) -> Vec<f64> {
+    if stretches == 1 { stretch.x.ticks(12) } else { vec![stretch.x.from, stretch.x.to] }
+}
+
+fn below_axis(drawing: &mut Drawing, curve: &CurveOutcome, stretches: &[Stretch], bottom: f64) {
     for stretch in stretches {
-        let ticks = stretch.x.ticks(tick_count(stretches.len()));
-        for tick in &ticks {
-            let words = super::drawing::Words::new(
-                [stretch.x.at(*tick), bottom + 21.0],
-                SMALL,
-                Anchor::Middle,
-                super::axes::tick_text(*tick, &ticks),
-            );
-            if words.extent().left > end + 6.0 {
-                end = words.extent().right;
-                drawing.words(words);
-            }
-        }
-        let middle = 0.5 * (stretch.x.start + stretch.x.end);
-        for [top, _] in BOXES.iter().take(if stretch.name.is_empty() { 0 } else { 1 }) {
-            let name = fitted(&stretch.name, EM, stretch.x.end - stretch.x.start);
-            drawing.write([middle, top - 34.0], EM, Anchor::Middle, name);
+        let ticks = ticks(stretch, stretches.len());
+        for (index, tick) in ticks.iter().enumerate() {
+            let (anchor, text) = match (stretches.len(), index) {
+                (1, _) => (Anchor::Middle, tick_text(*tick, &ticks)),
+                (_, 0) => (Anchor::Start, figures::megahertz(1e6 * tick)),
+                _ => (Anchor::End, figures::megahertz(1e6 * tick)),
+            };
+            drawing.write([stretch.x.at(*tick), bottom + 21.0], SMALL, anchor, text);
         }
     }
     drawing.write([0.5 * (EDGES[0] + EDGES[1]), bottom + 44.0], EM, Anchor::Middle, "frequency, MHz");
+    band_names(drawing, curve, stretches);
+}
+
+/// Above the first box: each band over its stretch or its grey, where there is room.
+fn band_names(drawing: &mut Drawing, curve: &CurveOutcome, stretches: &[Stretch]) {
+    let y = BOXES[0][0] - 34.0;
+    let mut end = f64::NEG_INFINITY;
+    for (index, band) in curve.bands.iter().enumerate() {
+        let x = match stretches {
+            [one] => 0.5 * (one.x.at(band.from_hz / 1e6) + one.x.at(band.to_hz / 1e6)),
+            many => 0.5 * (many[index].x.start + many[index].x.end),
+        };
+        let words = Words::new([x, y], EM, Anchor::Middle, band.name.as_str());
+        let area = words.extent();
+        if (EDGES[0]..=EDGES[1]).contains(&x) && area.left > end + 4.0 && area.right < 1195.0 {
+            end = area.right;
+            drawing.words(words);
+        }
+    }
 }
 
 #[cfg(test)]

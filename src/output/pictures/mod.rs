@@ -8,8 +8,10 @@ mod axes;
 mod curve;
 mod drawing;
 mod font;
+mod map;
 mod paint;
 mod pattern;
+mod place_maps;
 mod placer;
 mod site;
 mod site_key;
@@ -24,6 +26,7 @@ use super::OutputError;
 use crate::outcome::Prediction;
 use crate::outcome::curve::CurveOutcome;
 use crate::outcome::pattern::PatternOutcome;
+use crate::outcome::place::PlaceOutcome;
 use crate::output::{References, Units};
 use std::path::{Path, PathBuf};
 
@@ -65,6 +68,27 @@ pub fn write_pattern(pattern: &PatternOutcome, folder: &Path) -> Result<Vec<Path
     write(folder, &name, &pattern::drawing(pattern)?)
 }
 
+/// Draws every picture of a placement study into a folder.
+///
+/// # Errors
+/// [`OutputError`] when the arrays do not fit their axes or the files cannot be written.
+pub fn write_all_place(place: &PlaceOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
+    let mut paths = Vec::new();
+    for (index, choke) in place.chokes.iter().enumerate() {
+        let name = format!("shield-current-{}", file_name(&choke.name));
+        paths.extend(write(folder, &name, &place_maps::current(place, index))?);
+    }
+    let picked = place.picks.first().and_then(|p| place.chokes.iter().position(|c| c.name == p.choke)).unwrap_or(0);
+    paths.extend(write(folder, "volts", &place_maps::volts(place, picked))?);
+    paths.extend(write(folder, "watts", &place_maps::watts(place, picked))?);
+    Ok(paths)
+}
+
+/// A name that every file system takes.
+fn file_name(name: &str) -> String {
+    name.chars().map(|c| if c.is_alphanumeric() || c == '.' { c } else { '-' }).collect()
+}
+
 fn write(folder: &Path, name: &str, drawing: &drawing::Drawing) -> Result<Vec<PathBuf>, OutputError> {
     std::fs::create_dir_all(folder).map_err(|source| OutputError::File { path: folder.to_path_buf(), source })?;
     paint::write_both(drawing, folder, name)
@@ -74,7 +98,7 @@ fn write(folder: &Path, name: &str, drawing: &drawing::Drawing) -> Result<Vec<Pa
 mod tests {
     #![allow(clippy::unwrap_used)]
     use super::*;
-    use crate::output::sample;
+    use crate::output::{sample, sample_studies};
 
     /// Set `BRAIDWISE_PICTURES` to a folder to look at the pictures of the samples.
     fn folder() -> (PathBuf, Option<tempfile::TempDir>) {
@@ -85,6 +109,13 @@ mod tests {
                 (folder.path().to_path_buf(), Some(folder))
             }
         }
+    }
+
+    #[test]
+    fn every_picture_of_a_placement_is_written_twice() {
+        let (folder, _keep) = folder();
+        let paths = write_all_place(&sample_studies::place(), &folder.join("place")).unwrap();
+        assert_eq!(paths.len(), 10);
     }
 
     #[test]
