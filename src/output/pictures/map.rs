@@ -11,7 +11,7 @@ const FLOOR: f64 = 1e-9;
 /// Height of one strip of shading.
 const STRIP: f64 = 2.0;
 /// Contour lines shorter than this carry no number.
-const NUMBERED_FROM: f64 = 46.0;
+const NUMBERED_FROM: f64 = 24.0;
 
 /// Values over two axes, `values[row of y][column of x]`, as logarithms; `None` where there is no value.
 pub(super) struct Grid {
@@ -69,18 +69,28 @@ const DARKEST: f64 = 0.36;
 const MOST: usize = 6;
 
 impl Levels {
-    /// Steps of 1, 2 and 5 that the values reach, the limit always among them, at most six.
+    /// Round steps that the values reach, the limit always among them, at most six.
     pub(super) fn new(values: impl Iterator<Item = f64>, limit: Option<f64>) -> Self {
         let finite = values.filter(|v| v.is_finite() && *v > 0.0);
         let (low, high) = finite.fold((f64::INFINITY, 0.0_f64), |(l, h), v| (l.min(v), h.max(v)));
-        let mut steps: Vec<f64> = match limit {
-            // Multiples of the limit, one half below it: what matters is how far beyond it a place is.
-            Some(limit) => [0.25, 0.5, 1.0, 2.0, 5.0, 10.0, 20.0, 50.0, 100.0].map(|m| m * limit).to_vec(),
-            None => (-4..=5).flat_map(|p| [1.0, 2.0, 5.0].map(|s| s * 10f64.powi(p))).collect(),
+        let reached = |mut steps: Vec<f64>| {
+            steps.retain(|s| limit == Some(*s) || (*s > low && *s < high));
+            steps
         };
-        steps.retain(|s| limit == Some(*s) || (*s > low && *s < high));
+        let mut steps = match limit {
+            // Multiples of the limit, some below it: what matters is how far beyond it a place is.
+            Some(limit) => reached([0.25, 0.5, 1.0, 2.0, 5.0, 10.0, 20.0, 50.0, 100.0].map(|m| m * limit).to_vec()),
+            None => {
+                let decades = |each: &[f64]| {
+                    reached((-4..=5).flat_map(|p| each.iter().map(move |s| s * 10f64.powi(p))).collect())
+                };
+                let fine = [&[1.0, 2.0, 5.0][..], &[1.0, 3.0], &[1.0]].map(decades);
+                let [first, second, third] = fine;
+                [first, second].into_iter().find(|steps| steps.len() <= MOST).unwrap_or(third)
+            }
+        };
         while steps.len() > MOST {
-            let drop = if limit.is_some_and(|l| steps[0] < 0.5 * l) || limit.is_none() { 0 } else { steps.len() - 1 };
+            let drop = if limit.is_none_or(|l| steps[0] < 0.5 * l) { 0 } else { steps.len() - 1 };
             steps.remove(drop);
         }
         Self { values: steps, limit }

@@ -11,6 +11,7 @@ mod font;
 mod map;
 mod paint;
 mod pattern;
+mod place_choice;
 mod place_maps;
 mod placer;
 mod site;
@@ -73,7 +74,7 @@ pub fn write_pattern(pattern: &PatternOutcome, folder: &Path) -> Result<Vec<Path
 /// # Errors
 /// [`OutputError`] when the arrays do not fit their axes or the files cannot be written.
 pub fn write_all_place(place: &PlaceOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
-    let mut paths = Vec::new();
+    let mut paths = write(folder, "choice", &place_choice::drawing(place)?)?;
     for (index, choke) in place.chokes.iter().enumerate() {
         let name = format!("shield-current-{}", file_name(&choke.name));
         paths.extend(write(folder, &name, &place_maps::current(place, index))?);
@@ -115,7 +116,7 @@ mod tests {
     fn every_picture_of_a_placement_is_written_twice() {
         let (folder, _keep) = folder();
         let paths = write_all_place(&sample_studies::place(), &folder.join("place")).unwrap();
-        assert_eq!(paths.len(), 10);
+        assert_eq!(paths.len(), 12);
     }
 
     #[test]

@@ -37,7 +37,11 @@ pub(super) fn current(place: &PlaceOutcome, choke: usize) -> Drawing {
         "Current on the outside of the coax going on into the shack, RMS, with {} at each place",
         choke_name(place, choke)
     );
-    let say = Say { value: &figures::amperes, limit: Some(place.limits.entry_current_a), key: "current" };
+    let say = Say {
+        value: &|v| figures::round(&figures::amperes(v)),
+        limit: Some(place.limits.entry_current_a),
+        key: "current",
+    };
     picture(place, choke, &below, nominal_and_worst(place, values, choke), &say)
 }
 
@@ -48,7 +52,13 @@ pub(super) fn volts(place: &PlaceOutcome, choke: usize) -> Drawing {
         Panel { title: "outside of the coax at the radio".into(), values: worst(&place.end_voltage_v, choke) },
         Panel { title: "across the choke".into(), values: worst(&optional(&place.choke_v), choke) },
     ];
-    picture(place, choke, &below, panels, &Say { value: &figures::volts, limit: None, key: "voltage" })
+    picture(
+        place,
+        choke,
+        &below,
+        panels,
+        &Say { value: &|v| figures::round(&figures::volts(v)), limit: None, key: "voltage" },
+    )
 }
 
 /// Watts the choke turns into heat, nominal and worst over the variants.
@@ -59,7 +69,13 @@ pub(super) fn watts(place: &PlaceOutcome, choke: usize) -> Drawing {
         figures::watts(place.power_w)
     );
     let panels = nominal_and_worst(place, &optional(&place.choke_w), choke);
-    picture(place, choke, &below, panels, &Say { value: &figures::watts, limit: None, key: "heat" })
+    picture(
+        place,
+        choke,
+        &below,
+        panels,
+        &Say { value: &|v| figures::round(&figures::watts(v)), limit: None, key: "heat" },
+    )
 }
 
 fn choke_name(place: &PlaceOutcome, choke: usize) -> String {
