@@ -182,11 +182,23 @@ fn number(spots: &[Spot], text: String, area: Area, taken: &[Area]) -> Option<Wo
         return None;
     }
     [0.5, 0.35, 0.65, 0.2, 0.8].into_iter().find_map(|part| {
-        let spot = spots[((spots.len() - 1) as f64 * part).round() as usize];
+        let spot = along(spots, long * part);
         let words = Words::centred(spot, SMALL - 1.0, Anchor::Middle, text.clone()).grounded();
         let extent = words.extent().grown(2.0);
         (area.holds(&extent) && !taken.iter().any(|t| t.meets(&extent))).then_some(words)
     })
+}
+
+/// The spot at a distance along a line.
+fn along(spots: &[Spot], mut distance: f64) -> Spot {
+    for pair in spots.windows(2) {
+        let long = (pair[1][0] - pair[0][0]).hypot(pair[1][1] - pair[0][1]);
+        if distance <= long && long > 0.0 {
+            return [0, 1].map(|i| pair[0][i] + distance / long * (pair[1][i] - pair[0][i]));
+        }
+        distance -= long;
+    }
+    spots[spots.len() - 1]
 }
 
 /// Where the grid crosses a level (marching squares; a saddle is cut by its mean), joined into lines.

@@ -8,6 +8,8 @@ mod axes;
 mod curve;
 mod drawing;
 mod font;
+mod joint_maps;
+mod length_curves;
 mod map;
 mod paint;
 mod pattern;
@@ -26,6 +28,8 @@ mod checks;
 use super::OutputError;
 use crate::outcome::Prediction;
 use crate::outcome::curve::CurveOutcome;
+use crate::outcome::cut::CutOutcome;
+use crate::outcome::joint::LengthByPlaceOutcome;
 use crate::outcome::pattern::PatternOutcome;
 use crate::outcome::place::PlaceOutcome;
 use crate::output::{References, Units};
@@ -85,6 +89,30 @@ pub fn write_all_place(place: &PlaceOutcome, folder: &Path) -> Result<Vec<PathBu
     Ok(paths)
 }
 
+/// Draws every picture of a length study into a folder: curves over one length, a map over two.
+///
+/// # Errors
+/// [`OutputError`] when there is nothing to draw or the files cannot be written.
+pub fn write_all_cut(cut: &CutOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
+    if cut.second_lengths_m.is_some() {
+        return write(folder, "two-lengths", &joint_maps::lengths(cut)?);
+    }
+    let mut paths = Vec::new();
+    for (index, drawing) in length_curves::drawings(cut)?.iter().enumerate() {
+        let name = if index == 0 { "length".to_string() } else { format!("length-{}", index + 1) };
+        paths.extend(write(folder, &name, drawing)?);
+    }
+    Ok(paths)
+}
+
+/// Draws the joint map of coax length and choke place ("length-and-place").
+///
+/// # Errors
+/// [`OutputError`] when there is nothing to draw or the files cannot be written.
+pub fn write_length_by_place(joint: &LengthByPlaceOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
+    write(folder, "length-and-place", &joint_maps::length_by_place(joint)?)
+}
+
 /// A name that every file system takes.
 fn file_name(name: &str) -> String {
     name.chars().map(|c| if c.is_alphanumeric() || c == '.' { c } else { '-' }).collect()
@@ -117,6 +145,16 @@ mod tests {
         let (folder, _keep) = folder();
         let paths = write_all_place(&sample_studies::place(), &folder.join("place")).unwrap();
         assert_eq!(paths.len(), 12);
+    }
+
+    #[test]
+    fn every_picture_of_lengths_is_written_twice() {
+        let (folder, _keep) = folder();
+        let folder = folder.join("cut");
+        let mut paths = write_all_cut(&sample_studies::cut(), &folder).unwrap();
+        paths.extend(write_all_cut(&sample_studies::cut_two(), &folder).unwrap());
+        paths.extend(write_length_by_place(&sample_studies::joint(), &folder).unwrap());
+        assert_eq!(paths.len(), 6);
     }
 
     #[test]
