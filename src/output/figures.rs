@@ -75,12 +75,9 @@ pub(super) fn watts(value_w: f64) -> String {
 
 /// A round value without the zeros behind its point: "25.0 mA" is "25 mA".
 pub(super) fn round(said: &str) -> String {
-    match said.split_once(' ') {
-        Some((number, unit)) if number.contains('.') => {
-            format!("{} {unit}", number.trim_end_matches('0').trim_end_matches('.'))
-        }
-        _ => said.to_string(),
-    }
+    let (number, unit) = said.split_once(' ').map_or((said, String::new()), |(n, unit)| (n, format!(" {unit}")));
+    let short = if number.contains('.') { number.trim_end_matches('0').trim_end_matches('.') } else { number };
+    format!("{short}{unit}")
 }
 
 /// Resistance and reactance, "2450 + j120".
@@ -208,7 +205,10 @@ mod tests {
         assert_eq!(distance(3.048, Units::Feet), "10.0 ft");
         assert_eq!(megahertz(7_100_000.0), "7.1");
         assert_eq!(megahertz(14_175_000.0), "14.175");
-        assert_eq!([round("25.0 mA"), round("0.250 A"), round("100 V")], ["25 mA", "0.25 A", "100 V"]);
+        assert_eq!(
+            [round("25.0 mA"), round("0.250 A"), round("100 V"), round("2.00")],
+            ["25 mA", "0.25 A", "100 V", "2"]
+        );
         assert_eq!(swr(f64::INFINITY), "over 100");
         assert_eq!(decibels(0.5), "-3.0 dB");
         assert_eq!(decibels(0.0), MISSING);

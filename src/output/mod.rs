@@ -5,7 +5,9 @@
 //! Neighbours: [`crate::study`] fills the outcomes, [`crate::cli`] decides what is written where.
 
 pub mod csv;
+pub mod cut_text;
 pub mod pictures;
+pub mod place_text;
 pub mod table;
 pub mod touchstone;
 

@@ -77,7 +77,7 @@ pub(super) fn length_by_place(joint: &LengthByPlaceOutcome) -> Result<Drawing, O
     Ok(drawing(&Joint {
         station: &joint.station,
         below: format!(
-            "Choke \"{}\" along coax of every length; nothing is drawn where the place lies beyond the end",
+            "Choke \"{}\" along coax of every length; hatched: the place would lie beyond the end",
             joint.choke
         ),
         titles: ["length of the coax".into(), "place of the choke".into()],

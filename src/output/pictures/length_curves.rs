@@ -66,6 +66,7 @@ fn drawing(cut: &CutOutcome, groups: &[Group]) -> Drawing {
         let lines: Vec<&[(f64, Option<f64>)]> = curves.iter().map(|c| c[index].as_slice()).collect();
         panel(&mut drawing, cut, Frame { x, y }, titles[index], (&lines, limits[index], index == 3));
     }
+    present(&mut drawing, cut, x);
     let first = Frame { x, y: Scale::linear([0.0, 1.0], BOXES[0][1], BOXES[0][0]) };
     first.feet_above(&mut drawing, "feet", 12);
     let last = Frame { x, y: Scale::linear([0.0, 1.0], BOXES[3][1], BOXES[3][0]) };
@@ -126,17 +127,16 @@ fn panel(
         }
     }
     frame.outline(drawing);
-    present(drawing, cut, frame);
 }
 
-/// The length the file has, a short stroke from above.
-fn present(drawing: &mut Drawing, cut: &CutOutcome, frame: Frame) {
-    let x = frame.x.at(cut.present_length_m);
-    if (frame.x.start..=frame.x.end).contains(&x) && frame.y.end < BOXES[0][0] + 1.0 {
-        drawing.line(&[[x, frame.y.end], [x, frame.y.end + 16.0]], 2.4, 0.0);
-        let at = [x + 6.0, frame.y.end + 14.0];
-        let words = Words::new(at, SMALL, if x > 1000.0 { Anchor::End } else { Anchor::Start }, "now");
-        drawing.words(words.grounded());
+/// The length the file has, between the first two boxes.
+fn present(drawing: &mut Drawing, cut: &CutOutcome, x: Scale) {
+    let across = x.at(cut.present_length_m);
+    let [from, to] = [BOXES[0][1], BOXES[1][0]];
+    if (x.start..=x.end).contains(&across) {
+        drawing.line(&[[across, from], [across, to]], 2.4, 0.0);
+        let (side, anchor) = if across > 1000.0 { (-7.0, Anchor::End) } else { (7.0, Anchor::Start) };
+        drawing.words(Words::centred([across + side, 0.5 * (from + to)], SMALL, anchor, "length now"));
     }
 }
 

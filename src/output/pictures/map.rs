@@ -65,6 +65,8 @@ pub(super) struct Levels {
 
 /// Darkest grey, light enough for a number on white ground in it.
 const DARKEST: f64 = 0.36;
+/// Two greys beside each other differ by no more than this: one level alone is no reason for black.
+const WIDEST_STEP: f64 = 0.24;
 /// Levels at most.
 const MOST: usize = 6;
 
@@ -104,14 +106,18 @@ impl Levels {
     /// Grey of a class.
     pub(super) fn grey(&self, class: usize) -> f64 {
         let white = self.limit.map_or(0, |l| self.values.iter().filter(|v| **v < l).count());
-        let steps = (self.values.len() - white).max(1) as f64;
-        1.0 - (1.0 - DARKEST) * class.saturating_sub(white) as f64 / steps
+        let step = ((1.0 - DARKEST) / (self.values.len() - white).max(1) as f64).min(WIDEST_STEP);
+        1.0 - step * class.saturating_sub(white) as f64
     }
 }
 
-/// Shades a frame.
+/// Shades a frame; where there is no value it is hatched.
 pub(super) fn shade(drawing: &mut Drawing, frame: &Frame, grid: &Grid, levels: &Levels) {
     let area = frame.area();
+    let holes = grid.values.iter().flatten().any(Option::is_none);
+    if holes {
+        hatch(drawing, area);
+    }
     let strips = (area.height() / STRIP).round().max(1.0) as usize;
     let high = area.height() / strips as f64;
     for strip in 0..strips {
@@ -122,10 +128,22 @@ pub(super) fn shade(drawing: &mut Drawing, frame: &Frame, grid: &Grid, levels: &
         };
         for (class, left, right) in runs(&grid.x, &row, frame, levels) {
             let grey = levels.grey(class);
-            if grey < 1.0 {
+            if grey < 1.0 || holes {
                 drawing.rectangle(Area::new(left, top, right, top + high), grey);
             }
         }
+    }
+}
+
+/// Oblique hair lines over an area.
+fn hatch(drawing: &mut Drawing, area: Area) {
+    const STEP: f64 = 12.0;
+    let mut x = area.left - area.height();
+    while x < area.right {
+        for piece in clipped(&[[x, area.bottom], [x + area.height(), area.top]], area) {
+            drawing.line(&piece, 0.8, 0.7);
+        }
+        x += STEP;
     }
 }
 
@@ -356,7 +374,7 @@ mod tests {
         let below = levels.values.iter().position(|v| *v == 0.02).unwrap_or(0);
         assert_eq!(levels.grey(below), 1.0);
         assert!(levels.grey(below + 1) < 0.95);
-        assert!((levels.grey(levels.values.len()) - DARKEST).abs() < 1e-12);
+        assert!(levels.grey(levels.values.len()) >= DARKEST - 1e-12);
         assert!(Levels::new([0.5, 40.0].into_iter(), None).values.len() <= MOST);
     }
 }

@@ -81,11 +81,11 @@ pub fn write_all_place(place: &PlaceOutcome, folder: &Path) -> Result<Vec<PathBu
     let mut paths = write(folder, "choice", &place_choice::drawing(place)?)?;
     for (index, choke) in place.chokes.iter().enumerate() {
         let name = format!("shield-current-{}", file_name(&choke.name));
-        paths.extend(write(folder, &name, &place_maps::current(place, index))?);
+        paths.extend(write(folder, &name, &place_maps::current(place, index)?)?);
     }
     let picked = place.picks.first().and_then(|p| place.chokes.iter().position(|c| c.name == p.choke)).unwrap_or(0);
-    paths.extend(write(folder, "volts", &place_maps::volts(place, picked))?);
-    paths.extend(write(folder, "watts", &place_maps::watts(place, picked))?);
+    paths.extend(write(folder, "volts", &place_maps::volts(place, picked)?)?);
+    paths.extend(write(folder, "watts", &place_maps::watts(place, picked)?)?);
     Ok(paths)
 }
 

@@ -3,9 +3,10 @@
 use super::axes::{Frame, Scale};
 use super::drawing::{Anchor, Area, Drawing, EM, PATTERNS, SMALL, Words, fitted};
 use super::map;
-use crate::outcome::place::{OverPlace, PlaceOutcome, WorstCase};
+use crate::outcome::place::{OverPlace, PlaceOutcome};
 use crate::output::OutputError;
-use crate::output::figures::{self, FEET_PER_METRE};
+use crate::output::figures::FEET_PER_METRE;
+use crate::output::place_text::worst_words;
 
 /// Left and right edge of the boxes.
 const EDGES: [f64; 2] = [104.0, 1164.0];
@@ -180,13 +181,6 @@ fn list(drawing: &mut Drawing, place: &PlaceOutcome, top: f64) {
     }
 }
 
-/// "SWR 1.82 of 2.00 at 14 MHz, wet".
-fn worst_words(worst: &WorstCase) -> String {
-    let [value, limit] = [worst.value, worst.limit].map(|v| figures::quantity(&worst.quantity, v));
-    let name = figures::quantity_name(&worst.quantity);
-    format!("{name} {value} of {limit} at {} MHz, {}", figures::megahertz(worst.frequency_hz), worst.variant)
-}
-
 #[cfg(test)]
 mod tests {
     #![allow(clippy::unwrap_used)]
@@ -202,7 +196,7 @@ mod tests {
             drawing
                 .texts()
                 .iter()
-                .any(|(text, _)| text.starts_with("current into the shack 82.0 mA of 100 mA at 7 MHz, wet"))
+                .any(|(text, _)| text.starts_with("current into the shack 82 mA of 100 mA at 7 MHz, wet"))
         );
     }
 

@@ -4,6 +4,7 @@ use super::axes::{Frame, Scale, tick_text};
 use super::drawing::{Anchor, Area, Drawing, EM, SMALL, Words};
 use super::map::{self, Grid, Levels};
 use crate::outcome::place::{OverPlace, PlaceOutcome, PlacePick};
+use crate::output::OutputError;
 use crate::output::bands::{self, Group};
 use crate::output::figures::{self, FEET_PER_METRE};
 
@@ -31,7 +32,10 @@ struct Say<'a> {
 }
 
 /// Current going on into the shack with one choke, nominal and worst over the variants.
-pub(super) fn current(place: &PlaceOutcome, choke: usize) -> Drawing {
+///
+/// # Errors
+/// All three: [`OutputError::Misfit`] when an array does not fit its axes.
+pub(super) fn current(place: &PlaceOutcome, choke: usize) -> Result<Drawing, OutputError> {
     let values = &optional(&place.entry_current_a);
     let below = format!(
         "Current on the outside of the coax going on into the shack, RMS, with {} at each place",
@@ -46,7 +50,7 @@ pub(super) fn current(place: &PlaceOutcome, choke: usize) -> Drawing {
 }
 
 /// Volts of the shield at the radio and across the choke, worst over the variants.
-pub(super) fn volts(place: &PlaceOutcome, choke: usize) -> Drawing {
+pub(super) fn volts(place: &PlaceOutcome, choke: usize) -> Result<Drawing, OutputError> {
     let below = format!("Voltage, RMS, worst of all variants, with {} at each place", choke_name(place, choke));
     let panels = vec![
         Panel { title: "outside of the coax at the radio".into(), values: worst(&place.end_voltage_v, choke) },
@@ -62,7 +66,7 @@ pub(super) fn volts(place: &PlaceOutcome, choke: usize) -> Drawing {
 }
 
 /// Watts the choke turns into heat, nominal and worst over the variants.
-pub(super) fn watts(place: &PlaceOutcome, choke: usize) -> Drawing {
+pub(super) fn watts(place: &PlaceOutcome, choke: usize) -> Result<Drawing, OutputError> {
     let below = format!(
         "Heat in {} at each place, of {} into the line",
         choke_name(place, choke),
@@ -115,7 +119,21 @@ fn worst(values: &OverPlace<Option<f64>>, choke: usize) -> Plane {
     most
 }
 
-fn picture(place: &PlaceOutcome, choke: usize, below: &str, panels: Vec<Panel>, say: &Say) -> Drawing {
+fn picture(
+    place: &PlaceOutcome,
+    choke: usize,
+    below: &str,
+    panels: Vec<Panel>,
+    say: &Say,
+) -> Result<Drawing, OutputError> {
+    for panel in &panels {
+        let fits = panel.values.len() == place.frequencies_hz.len()
+            && panel.values.iter().all(|row| row.len() == place.places_m.len());
+        if !fits || place.places_m.len() < 2 {
+            let reason = "the array has not one value for every frequency and at least two places".into();
+            return Err(OutputError::Misfit { what: format!("the map of {}", say.key), reason });
+        }
+    }
     let groups = bands::of_axes(&place.frequencies_hz, &place.bands);
     let high = heights(&groups);
     let tall = high.iter().sum::<f64>() + ROWS[2] * (groups.len().saturating_sub(1)) as f64;
@@ -136,7 +154,7 @@ fn picture(place: &PlaceOutcome, choke: usize, below: &str, panels: Vec<Panel>, 
     }
     axes(&mut drawing, x, bottom);
     map::key(&mut drawing, [EDGES[0], bottom + 118.0], &levels, say.value, say.key);
-    drawing
+    Ok(drawing)
 }
 
 fn heights(groups: &[Group]) -> Vec<f64> {
@@ -243,6 +261,7 @@ fn axes(drawing: &mut Drawing, x: Scale, bottom: f64) {
 
 #[cfg(test)]
 mod tests {
+    #![allow(clippy::unwrap_used)]
     use super::super::checks;
     use super::*;
     use crate::output::sample_studies;
@@ -251,11 +270,21 @@ mod tests {
     fn every_map_is_clear_and_names_its_bands() {
         let place = sample_studies::place();
         for drawing in [current(&place, 2), volts(&place, 0), watts(&place, 1)] {
+            let drawing = drawing.unwrap();
             checks::texts_are_clear(&drawing);
             for said in ["80 m", "40 m", "30 m", "entry", "join"] {
                 assert!(drawing.texts().iter().filter(|(text, _)| *text == said).count() >= 2, "{said}");
             }
         }
+    }
+
+    #[test]
+    fn an_array_that_does_not_fit_is_refused_not_drawn() {
+        let mut place = sample_studies::place();
+        place.entry_current_a[0][1][3].pop();
+        assert!(current(&place, 1).is_err());
+        assert!(current(&place, 0).is_ok());
+        assert!(current(&place, 9).is_err());
     }
 
     #[test]
