@@ -3,8 +3,10 @@
 //! Currents and voltages are RMS phasors at the operating power, the phase of the feed-gap voltage as reference.
 //! A complex number is serialised as `[re, im]`.
 
+pub mod curve;
 pub mod cut;
 pub mod joint;
+pub mod pattern;
 pub mod place;
 
 use crate::layout::{BandEdge, Warning};
