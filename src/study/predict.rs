@@ -151,7 +151,7 @@ impl<'a> At<'a> {
             },
             shield: shield::outcome(self.layout, &conductors),
             joints: shield::joints(self.layout, &conductors),
-            power: self.power(fine.mesh(), &solution, &state, &parts, &port_currents),
+            power: self.power(fine, &solution, &state, &parts, &port_currents),
             conductors,
             discretisation: DiscretisationOutcome {
                 resistance_ohm: ERROR_OVER_DIFFERENCE * difference.re.abs(),
@@ -193,7 +193,7 @@ impl<'a> At<'a> {
 
     fn power(
         &self,
-        mesh: &Mesh,
+        interaction: &Interaction,
         solution: &Solution,
         state: &ChainState,
         parts: &[Complex64],
@@ -218,11 +218,22 @@ impl<'a> At<'a> {
         };
         let (chokes, inline) = (of_kind(PartKind::Choke), of_kind(PartKind::Inline));
         let input_w = self.layout.operation.power_w;
-        let radiated_w = FarField::new(mesh, solution, f, self.earth.earth()).radiated_w();
-        let earth_w = 0.0;
+        let mesh = interaction.mesh();
+        let far = FarField::new(mesh, solution, f, self.earth.earth());
+        let radiated_w = far.radiated_w();
         let metal_w = solution.metal_w(mesh, f);
         let in_parts: f64 = chokes.iter().chain(&inline).map(|p| p.dissipated_w).sum();
-        let accounted = radiated_w + earth_w + metal_w + state.line_w + state.transformer_w + in_parts;
+        let rest_w = input_w - radiated_w - metal_w - state.line_w - state.transformer_w - in_parts;
+        let (earth_w, unaccounted_w) =
+            match (self.earth.earth(), interaction.near_field_loss_w(&self.earth, &solution.currents)) {
+                (EarthAt::Soil { .. }, Some(near_w)) => {
+                    let earth_w = near_w + far.downward_w();
+                    (earth_w, Some(rest_w - earth_w))
+                }
+                // with conductors below the surface the earth's share is what remains
+                (EarthAt::Soil { .. }, None) => (rest_w, None),
+                _ => (0.0, Some(rest_w)),
+            };
         PowerOutcome {
             input_w,
             radiated_w,
@@ -232,7 +243,7 @@ impl<'a> At<'a> {
             transformer_w: state.transformer_w,
             chokes,
             inline,
-            unaccounted_w: Some(input_w - accounted),
+            unaccounted_w,
         }
     }
 }
