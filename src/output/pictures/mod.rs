@@ -24,6 +24,8 @@ mod symbols;
 
 #[cfg(test)]
 mod checks;
+#[cfg(test)]
+mod hard_cases;
 
 use super::OutputError;
 use crate::outcome::Prediction;
