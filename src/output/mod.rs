@@ -13,6 +13,7 @@ pub mod touchstone;
 
 mod bands;
 mod cautions;
+mod csv_studies;
 mod figures;
 mod whole;
 mod worst;
