@@ -1,0 +1,3 @@
+//! Values from outside the project, the source named beside each check.
+
+mod halfspace;
