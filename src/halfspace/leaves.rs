@@ -11,7 +11,7 @@ pub(super) const TERMS: usize = (DEGREE + 1) * (DEGREE + 2) / 2;
 /// Chebyshev coefficients looked at each way when a leaf is judged.
 const SEEN: usize = DEGREE + 3;
 /// Halvings each way at most.
-const DEEPEST: u32 = 6;
+const DEEPEST: u32 = 7;
 
 /// One rectangle: x = (ρ − `rho_m`)·`per_rho`, y = (ζ − `zeta_m`)·`per_zeta`, both in [−1, 1]; coefficients of
 /// x^i y^j row by row of j.
