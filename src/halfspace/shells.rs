@@ -220,10 +220,10 @@ impl Task<'_> {
         let allowed = 0.1 * self.tolerance / far;
         loop {
             let patch = sample(Rectangle { rho_m: rho, zeta_m: zeta, points }, fineness);
-            let (by_rho, by_zeta) = patch.tail();
+            let [by_rho, by_zeta, _] = patch.coefficients.tail();
             let settled = (by_rho < allowed || points.0 >= 160, by_zeta < allowed || points.1 >= 160);
             if settled == (true, true) {
-                return Leaves::cut(&patch, |rho, zeta| 0.8 * self.tolerance / rho.hypot(zeta));
+                return Leaves::cut(patch, |rho, zeta| 0.8 * self.tolerance / rho.hypot(zeta));
             }
             let more = |tail: f64| (2.0 + (tail / allowed).max(1.0).ln()).min(40.0) as usize;
             points.0 += if settled.0 { 0 } else { more(by_rho) };
