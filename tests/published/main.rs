@@ -4,4 +4,5 @@
 
 mod catalogue;
 mod catalogue_soil_models;
+mod halfspace;
 mod network;
