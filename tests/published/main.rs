@@ -5,3 +5,4 @@
 mod catalogue;
 mod catalogue_soil_models;
 mod network;
+mod rational;
