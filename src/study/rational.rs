@@ -20,6 +20,8 @@ const RIVALS: usize = 3;
 const SAFETY: f64 = 2.0;
 /// The fewest samples that let a curve be held against others.
 const FEWEST_SAMPLES: usize = 6;
+/// Closest that a place may lie to a sample, the range being −1 .. 1: a resonance narrower than this is not resolved.
+const CLOSEST: f64 = 2.5e-4;
 /// Samples are met to this part of the tolerance: looser fits agree with each other by chance, tighter ones chase noise.
 const FIT_TIGHTER: f64 = 0.05;
 
@@ -204,22 +206,25 @@ fn compare(fit: &Barycentric, rivals: &[Barycentric], points: &[f64], measure: &
     sorted.sort_by(f64::total_cmp);
     let mut places: Vec<f64> = sorted
         .windows(2)
+        .filter(|pair| pair[1] - pair[0] > 2.0 * CLOSEST)
         .flat_map(|pair| {
             let (from, step) = (pair[0], (pair[1] - pair[0]) / (PLACES_BETWEEN + 1) as f64);
             (1..=PLACES_BETWEEN).map(move |i| from + step * i as f64)
         })
         .collect();
-    for pole in rivals.iter().chain([fit]).flat_map(Barycentric::poles) {
-        // Never on a pole itself: a sample there would dwarf all others.
-        let beside = pole.im.abs().max(5e-4);
+    let poles = fit.poles();
+    for pole in rivals.iter().flat_map(Barycentric::poles).chain(poles.iter().copied()) {
+        let beside = pole.im.abs().max(2.0 * CLOSEST);
         for place in [pole.re - beside, pole.re + beside] {
-            if place.abs() < 1.0 && beside < 0.2 && points.iter().all(|t| (t - place).abs() > 1e-6) {
+            if place.abs() < 1.0 && beside < 0.2 && points.iter().all(|t| (t - place).abs() > CLOSEST) {
                 places.push(place);
             }
         }
     }
     places
         .into_iter()
+        // Never on a pole of the line itself: a sample there would dwarf all others.
+        .filter(|t| poles.iter().all(|pole| (pole - t).norm() > CLOSEST))
         .map(|t| {
             let value = fit.eval(t);
             (t, rivals.iter().map(|rival| measure.deviation(&value, &rival.eval(t))).fold(0.0, f64::max))
