@@ -6,3 +6,4 @@ mod catalogue;
 mod catalogue_soil_models;
 mod halfspace;
 mod network;
+mod rational;
