@@ -3,11 +3,12 @@
 use super::flags::{Length, StationArgs};
 use super::load::{load, references};
 use super::stop::Stop;
-use crate::layout::FrequencyPoint;
+use crate::layout::{BandEdge, FrequencyPoint};
 use crate::mesh::Density;
+use crate::outcome::Prediction;
 use crate::output;
 use crate::quantity;
-use crate::study::{Options, predict};
+use crate::study::{Options, pattern, predict_variants};
 use clap::Args;
 use num_complex::Complex64;
 use std::io::Write;
@@ -30,6 +31,9 @@ pub(super) struct Predict {
     /// Draw the site, the coax and the curves into a folder (SVG and PNG)
     #[arg(long, value_name = "DIR")]
     plots: Option<PathBuf>,
+    /// Radiation pattern at the middle of every band (in --json; drawn with --plots)
+    #[arg(long)]
+    pattern: bool,
     /// Units of length in tables and pictures
     #[arg(long, value_enum, default_value_t)]
     units: Length,
@@ -54,7 +58,12 @@ impl Predict {
         }
         let loaded = load(&self.station)?;
         let options = Options { density: Density { factor: self.density }, frequencies: self.curve()? };
-        let prediction = predict(&loaded.layout, &options)?;
+        let mut prediction = predict_variants(&loaded.layout, &loaded.variants, &options)?;
+        if self.pattern || self.plots.is_some() {
+            for frequency_hz in pattern_frequencies(&prediction) {
+                prediction.patterns.push(pattern(&loaded.layout, frequency_hz)?);
+            }
+        }
         if let Some(path) = &self.csv {
             output::whole_file(path, |w| output::csv::prediction(&prediction, w))?;
         }
@@ -65,6 +74,17 @@ impl Predict {
                 .map(|f| (f.frequency_hz, Complex64::new(f.radio.resistance_ohm, f.radio.reactance_ohm)))
                 .collect();
             output::whole_file(path, |w| output::touchstone::s1p(&points, loaded.layout.radio.impedance_ohm, w))?;
+        }
+        if let Some(folder) = &self.plots {
+            let references = references(&loaded.layout);
+            let mut drawn =
+                output::pictures::write_all_prediction(&prediction, &references, folder, self.units.into())?;
+            for pattern in &prediction.patterns {
+                drawn.extend(output::pictures::write_pattern(pattern, folder)?);
+            }
+            for path in drawn {
+                eprintln!("drew {}", path.display());
+            }
         }
         if self.json {
             let text = serde_json::to_string(&prediction).map_err(|e| Stop::Could(e.to_string()))?;
@@ -90,4 +110,19 @@ impl Predict {
         let point = |n: usize| FrequencyPoint { frequency_hz: low + step * n as f64, band: None, edge: None };
         Ok(Some((0..self.points).map(point).collect()))
     }
+}
+
+/// One frequency a band: its middle, or the first that was asked for.
+fn pattern_frequencies(prediction: &Prediction) -> Vec<f64> {
+    let mut out: Vec<(Option<&str>, f64)> = Vec::new();
+    for f in &prediction.frequencies {
+        let room = out.len() < 12;
+        match out.iter_mut().find(|(band, _)| band.is_some() && *band == f.band.as_deref()) {
+            Some(known) if f.edge == Some(BandEdge::Middle) => known.1 = f.frequency_hz,
+            Some(_) => {}
+            None if f.band.is_some() || room => out.push((f.band.as_deref(), f.frequency_hz)),
+            None => {}
+        }
+    }
+    out.into_iter().map(|(_, frequency_hz)| frequency_hz).collect()
 }

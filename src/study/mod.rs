@@ -1,17 +1,14 @@
-<<<<<<< HEAD
 //! Questions asked of a station: one prediction, or the same question many times.
 //!
-//! A study never touches a kernel: it goes through [`crate::ports`], [`crate::field`] and [`crate::network`].
-
-mod predict;
-mod shield;
-
-pub use predict::{Failure, Options, predict};
-=======
-//! One question asked many times over a station.
-//!
-//! Takes the solver's port models and the [`crate::network`]; gives curves and tables for [`crate::outcome`].
+//! Takes a placed station; gives plain outcomes. A study never touches a kernel: it goes through [`crate::ports`], [`crate::field`] and
+//! [`crate::network`].
 
 mod barycentric;
+pub mod earthing;
+mod pattern;
+mod predict;
 pub mod rational;
->>>>>>> catalogue
+mod shield;
+
+pub use pattern::pattern;
+pub use predict::{Failure, Options, predict, predict_variants};

@@ -4,12 +4,12 @@ use super::shield;
 use crate::field::{FarField, Solution};
 use crate::halfspace::HalfSpaceError;
 use crate::interaction::{Extent, Factored, Interaction, Legendre, SingularMatrix, Surroundings};
-use crate::layout::{Earth, EarthAt, FrequencyPoint, Layout, PartKind, Soil};
+use crate::layout::{Earth, EarthAt, FrequencyPoint, Layout, PartKind, Soil, Warning};
 use crate::mesh::{Density, Mesh};
 use crate::network::{self, Chain, ChainError, ChainState};
 use crate::outcome::{
     ConductorOutcome, DiscretisationOutcome, EarthOutcome, FeedOutcome, FrequencyOutcome, PartOutcome, PointOutcome,
-    PowerOutcome, Prediction, RadioOutcome, Side, SoilOutcome,
+    PowerOutcome, Prediction, RadioOutcome, Side, SoilOutcome, VariantOutcome,
 };
 use crate::ports::PortModel;
 use crate::quantity::SPEED_OF_LIGHT_M_PER_S;
@@ -80,10 +80,68 @@ pub fn predict(layout: &Layout, options: &Options) -> Result<Prediction, Failure
         earth: earth_outcome(layout.earth),
         gap_m: layout.feed.gap_m,
         unknowns: fine.mesh().unknowns,
-        warnings: layout.warnings.clone(),
+        warnings: warnings(layout, points),
         frequencies,
         variants: Vec::new(),
+        patterns: Vec::new(),
     })
+}
+
+/// Predict a station and its variants; `variants` leaves the nominal station out.
+///
+/// # Errors
+/// [`Failure`] of the first that cannot be computed.
+pub fn predict_variants(
+    nominal: &Layout,
+    variants: &[(String, Layout)],
+    options: &Options,
+) -> Result<Prediction, Failure> {
+    let mut prediction = predict(nominal, options)?;
+    for (name, layout) in variants {
+        let varied = predict(layout, options)?;
+        for mut warning in varied.warnings {
+            if !prediction.warnings.contains(&warning) {
+                warning.about = format!("{} (variant {name})", warning.about);
+                prediction.warnings.push(warning);
+            }
+        }
+        prediction.variants.push(VariantOutcome { name: name.clone(), frequencies: varied.frequencies });
+    }
+    Ok(prediction)
+}
+
+/// A solved station at one frequency, at the operating power.
+pub(super) struct Solved {
+    pub(super) mesh: Mesh,
+    pub(super) solution: Solution,
+    pub(super) feed_w: f64,
+}
+
+/// Solve a station at one frequency on its default mesh.
+pub(super) fn solve_one(layout: &Layout, frequency_hz: f64) -> Result<Solved, Failure> {
+    let interaction =
+        Interaction::new(Mesh::new(layout, frequency_hz, Density::default(), &[]), layout.earth != Earth::None);
+    let earth = Surroundings::new(frequency_hz, layout.earth.at(frequency_hz), &Extent::of(layout))?;
+    let model = PortModel::solve(&interaction, &earth).map_err(|source| Failure::Singular { frequency_hz, source })?;
+    let parts: Vec<Complex64> = layout.parts.iter().map(|p| network::impedance(&p.law, frequency_hz)).collect();
+    let currents = model.loaded_currents(&parts);
+    let state = Chain::of(layout).at(frequency_hz).state(currents[0].inv(), layout.operation.power_w)?;
+    let scale = Complex64::from((2.0 * state.feed_w / currents[0].re).sqrt());
+    let solution = Solution::new(interaction.mesh(), &model.unknowns(&parts, &currents)).scaled(scale);
+    Ok(Solved { mesh: interaction.mesh().clone(), solution, feed_w: state.feed_w })
+}
+
+/// The station's warnings and those of its earth at the frequencies asked for, each once.
+fn warnings(layout: &Layout, points: &[FrequencyPoint]) -> Vec<Warning> {
+    let mut out = layout.warnings.clone();
+    for point in points {
+        for warning in layout.earth.warnings_at(point.frequency_hz) {
+            if !out.contains(&warning) {
+                out.push(warning);
+            }
+        }
+    }
+    out
 }
 
 fn earth_outcome(earth: Earth) -> EarthOutcome {
