@@ -42,7 +42,12 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
     Ok(())
 }
 
-fn feed(layout: &Layout, frequency_hz: f64, earth: EarthAt, full: bool) -> Result<Complex64, Box<dyn std::error::Error>> {
+fn feed(
+    layout: &Layout,
+    frequency_hz: f64,
+    earth: EarthAt,
+    full: bool,
+) -> Result<Complex64, Box<dyn std::error::Error>> {
     let interaction = Interaction::new(Mesh::new(layout, frequency_hz, Density::default(), &[]), true);
     let surroundings = if full {
         Surroundings::new(frequency_hz, earth, &Extent::of(layout))?

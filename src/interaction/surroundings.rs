@@ -225,8 +225,9 @@ impl SoilRest {
         self.space.k1_per_m()
     }
 
-    /// What is left of the four potentials beyond the families, the image of `p_rho` included, 1/m.
-    pub(crate) fn rest(&self, region: Region, rho_m: f64, z_m: f64, z_source_m: f64) -> Potentials {
+    /// What is left of the four potentials beyond the families, 1/m; with `crossed` the image of `p_rho` is included, without it `p_rho`
+    /// is of no use (only vertical with horizontal currents meet it).
+    pub(crate) fn rest(&self, region: Region, rho_m: f64, z_m: f64, z_source_m: f64, crossed: bool) -> Potentials {
         let zeta = z_m.abs() + z_source_m.abs();
         if self.reflected {
             return self.specular(rho_m, zeta);
@@ -243,9 +244,9 @@ impl SoilRest {
             Some([xx, zz, phi, p_rho]) => Potentials { xx, zz, phi, p_rho },
             None => self.space.remainder(rho_m, z_m, z_source_m),
         };
-        let c = self.space.image_coefficients(region);
-        let r = rho_m.hypot(zeta);
-        if r > 0.0 {
+        let r = (rho_m * rho_m + zeta * zeta).sqrt();
+        if crossed && r > 0.0 {
+            let c = self.space.image_coefficients(region);
             rest.p_rho += c.image.p_rho * (-Complex64::I * c.wavenumber_per_m * r).exp() * rho_m / (r * (r + zeta));
         }
         rest
