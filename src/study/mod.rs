@@ -6,5 +6,6 @@ mod place;
 mod predict;
 mod shield;
 
+pub use place::timing;
 pub use place::{Candidate, DEFAULT_RESISTANCES_OHM, PlaceFailure, PlaceOptions, place};
 pub use predict::{Failure, Options, predict};

@@ -8,6 +8,8 @@ use num_complex::Complex64;
 const STEP_M: f64 = 0.1;
 /// A meter keeps this far from the choke and from the ends of the line, m.
 const CLEAR_M: f64 = 0.3;
+/// And this far from the feed point, where the voltage is, m.
+const CLEAR_OF_FEED_M: f64 = 1.0;
 
 /// One place for each frequency, for the first pick or, where none is needed, the station as it is.
 ///
@@ -21,7 +23,7 @@ pub(super) fn places(outcome: &PlaceOutcome, prepared: &[Prepared], solved: &[Ve
     let reach = |x: f64| outcome.reachable_m.is_empty() || outcome.reachable_m.iter().any(|r| x >= r[0] && x <= r[1]);
     let at_m: Vec<f64> = (0..=count)
         .map(|n| (n as f64 * STEP_M * 1e3).round() / 1e3)
-        .filter(|x| *x >= CLEAR_M && *x <= end_m - CLEAR_M && reach(*x))
+        .filter(|x| *x >= CLEAR_OF_FEED_M.min(0.5 * end_m) && *x <= end_m - CLEAR_M && reach(*x))
         .filter(|x| pick.is_none_or(|p| (p.at_m - x).abs() >= CLEAR_M))
         .collect();
     (0..outcome.frequencies_hz.len())

@@ -1,7 +1,7 @@
 //! The coax as a choke sees it: where a gap fits, where the mesh gets ports, how to interpolate between them.
 //!
 //! The line is cut into *stretches* at everything that kinks what a choke does: ends, joins, bends, the entry, parts that stay.
-//! Within a stretch all port parameters are smooth in u(s) = s/h_max + [ln(1 + γ d/h₀) − ln(1 + γ d′/h₀)]/γ, with d and d′
+//! Within a stretch all port parameters are smooth in u(s) = s/h_max + [ln(1 + γ d/h₀) − ln(1 + γ d′/h₀′)]/γ, with d and d′
 //! the distances from the stretch's first and last place: logarithmic near its ends, where charge piles up, linear
 //! between. Ports stand at equal steps of u; between them polynomials in u of degree [`STENCIL`] − 1.
 
@@ -14,11 +14,13 @@ const JOIN_M: f64 = 1e-3;
 /// A bend below this angle is no feature, radians.
 const BEND_RADIANS: f64 = 0.05;
 /// Widest step between ports in wavelengths of the highest frequency. Set by the errors measured in tests/laws/place.rs.
-const WIDEST_WAVELENGTHS: f64 = 1.0 / 14.0;
+const WIDEST_WAVELENGTHS: f64 = 0.1;
 /// Steps grow by this much of the distance from a stretch's end.
 const GROWTH: f64 = 1.4;
-/// First step at a stretch's end in gap widths.
+/// First step at an end, a join, the entry or a part, in gap widths.
 const FIRST_STEP_GAPS: f64 = 2.0;
+/// First step at a mere bend, where little charge piles up, in gap widths.
+const BEND_STEP_GAPS: f64 = 8.0;
 /// Most ports that one interpolated value is taken from.
 const STENCIL: usize = 8;
 
@@ -36,19 +38,29 @@ pub(super) struct Stretch {
     scale: Scale,
 }
 
+/// Something that kinks what a choke does.
+#[derive(Debug, Clone, Copy)]
+struct Feature {
+    from_m: f64,
+    to_m: f64,
+    first_step_m: f64,
+}
+
 /// The coordinate u of a stretch.
 #[derive(Debug, Clone, Copy)]
 struct Scale {
     low_m: f64,
     high_m: f64,
     widest_m: f64,
-    first_m: f64,
+    /// First steps at the low and the high end.
+    first_m: [f64; 2],
 }
 
 impl Scale {
     fn at(&self, s: f64) -> f64 {
-        let log = |d: f64| (GROWTH * d.max(0.0) / self.first_m).ln_1p() / GROWTH;
-        (s - self.low_m) / self.widest_m + log(s - self.low_m) - log(self.high_m - s)
+        let log = |d: f64, first_m: f64| (GROWTH * d.max(0.0) / first_m).ln_1p() / GROWTH;
+        let [low, high] = self.first_m;
+        (s - self.low_m) / self.widest_m + log(s - self.low_m, low) - log(self.high_m - s, high)
     }
 
     /// Place with a wanted u, by bisection: u rises with s.
@@ -124,21 +136,25 @@ impl Line {
             let (a, b) = (shield.points[v] - shield.points[v - 1], shield.points[v + 1] - shield.points[v]);
             a.angle(&b) > BEND_RADIANS
         });
-        let mut features: Vec<(f64, f64)> = walls_m.iter().map(|&x| (x, x)).collect();
-        features.extend(bends.map(|v| (at[v], at[v])));
-        features.push((coax.entry_m, coax.entry_m));
-        features.extend(&taken_m);
-        features.sort_by(|a, b| a.0.total_cmp(&b.0));
+        let hard = |(from_m, to_m): (f64, f64)| Feature { from_m, to_m, first_step_m: FIRST_STEP_GAPS * gap_m };
+        let mut features: Vec<Feature> = walls_m.iter().map(|&x| hard((x, x))).collect();
+        features.push(hard((coax.entry_m, coax.entry_m)));
+        features.extend(taken_m.iter().map(|g| hard(*g)));
+        let bends = bends.map(|v| Feature { from_m: at[v], to_m: at[v], first_step_m: BEND_STEP_GAPS * gap_m });
+        features.extend(bends.collect::<Vec<_>>());
+        // stable: where a bend is at the entry or a join the finer one comes first and the stretches on both sides see it
+        features.sort_by(|a, b| a.from_m.total_cmp(&b.from_m));
+        features.dedup_by(|later, first| later.to_m == first.to_m && later.from_m == first.from_m);
         let mut line =
             Self { conductor: coax.conductor, gap_m, length_m, joins_m, stretches: Vec::new(), taken_m, walls_m };
         line.lay_ports(&features, shortest_wavelength_m);
         Some(line)
     }
 
-    fn lay_ports(&mut self, features: &[(f64, f64)], shortest_wavelength_m: f64) {
+    fn lay_ports(&mut self, features: &[Feature], shortest_wavelength_m: f64) {
         let mut first_node = 0;
         for pair in features.windows(2) {
-            let (from_m, to_m) = (pair[0].1, pair[1].0);
+            let (from_m, to_m) = (pair[0].to_m, pair[1].from_m);
             if to_m - from_m < self.gap_m * (1.0 - 1e-9) {
                 continue;
             }
@@ -147,7 +163,7 @@ impl Line {
                 low_m,
                 high_m,
                 widest_m: WIDEST_WAVELENGTHS * shortest_wavelength_m,
-                first_m: FIRST_STEP_GAPS * self.gap_m,
+                first_m: [pair[0].first_step_m, pair[1].first_step_m],
             };
             let (start, end) = (scale.at(low_m), scale.at(high_m));
             let mut steps = (end - start).ceil().max(1.0) as usize;

@@ -6,9 +6,12 @@
 
 mod answers;
 mod candidates;
+#[cfg(test)]
+mod checks;
 mod clamp;
 mod line;
 mod model;
+pub mod timing;
 mod verdict;
 mod words;
 

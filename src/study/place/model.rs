@@ -122,10 +122,22 @@ impl Model {
         parts_ohm: &[Complex64],
     ) -> Result<Self, SingularMatrix> {
         let ports = PortModel::solve(interaction, earth)?;
+        Ok(Self::reduce(&ports, interaction, earth, line, readings, parts_ohm))
+    }
+
+    /// Reduce solved ports.
+    pub(super) fn reduce(
+        ports: &PortModel,
+        interaction: &Interaction,
+        earth: &Surroundings,
+        line: &Line,
+        readings: &Readings,
+        parts_ohm: &[Complex64],
+    ) -> Self {
         let mesh = interaction.mesh();
         let nodes = line.node_count();
         let first = mesh.ports.len() - nodes;
-        let (y, currents) = with_parts(&ports, parts_ohm, first);
+        let (y, currents) = with_parts(ports, parts_ohm, first);
         let port = |n: usize| if n == 0 { 0 } else { first + n - 1 };
         let column = |n: usize| -> Vec<Complex64> { (0..mesh.unknowns).map(|u| currents[(u, port(n))]).collect() };
         let columns: Vec<Vec<Complex64>> = (0..=nodes).map(column).collect();
@@ -147,7 +159,7 @@ impl Model {
             })
             .collect();
         let coax = &mesh.elements[mesh.conductor_elements[line.conductor].clone()];
-        Ok(Self {
+        Self {
             feed_s: y[(0, 0)],
             own_s: (1..=nodes).map(|n| y[(port(n), port(n))]).collect(),
             to_feed_s: (1..=nodes).map(|n| y[(port(n), 0)]).collect(),
@@ -155,7 +167,7 @@ impl Model {
             profiles: columns.iter().map(|c| coax.iter().map(|e| e.legendre_current(c)).collect()).collect(),
             last_metre: readings.last_metre.clone(),
             edges: coax.iter().map(|e| (e.from_m, e.to_m)).collect(),
-        })
+        }
     }
 
     /// What 1 V at a place excites, interpolated between the ports.

@@ -1,0 +1,4 @@
+//! The binary as a person runs it.
+#![allow(clippy::unwrap_used)]
+
+mod place;
