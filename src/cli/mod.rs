@@ -5,6 +5,7 @@
 mod check;
 mod flags;
 mod load;
+mod place;
 mod predict;
 mod stop;
 
@@ -25,6 +26,8 @@ enum Command {
     Check(check::Check),
     /// Feed point, current on the outside of the coax and power budget on every band
     Predict(predict::Predict),
+    /// Where a choke goes along the coax: every place, candidate, band and variant, and the one to choose
+    Place(place::Place),
 }
 
 /// Run the program on its arguments.
@@ -34,6 +37,7 @@ pub fn run() -> ExitCode {
     let done = match Cli::parse().command {
         Command::Check(check) => check.run(),
         Command::Predict(predict) => predict.run(),
+        Command::Place(place) => place.run(),
     };
     match done {
         Ok(()) => ExitCode::SUCCESS,

@@ -100,8 +100,46 @@ impl Interaction {
         z
     }
 
+    /// Scalar potential along a few elements as rows over the unknowns, V/A: `rows[n][u]` are the Legendre coefficients on
+    /// `elements[n]` for 1 A in unknown `u`. Walks only the pairs that these elements are in.
+    #[must_use]
+    pub fn potential_rows(&self, earth: &Surroundings, elements: &[usize]) -> Vec<Vec<Legendre>> {
+        let factor = -earth.air().electric();
+        let mut rows = vec![vec![[Complex64::ZERO; MAX_DEGREE + 1]; self.mesh.unknowns]; elements.len()];
+        let mut add = |row: usize, source: usize, block: &dyn Fn(usize, usize) -> Complex64| {
+            for (unknown, factors) in &self.maps[source] {
+                let charge = derive(factors.map(Complex64::from)).map(|x| x * 2.0);
+                for a in 0..=MAX_DEGREE {
+                    let sum: Complex64 = (0..=MAX_DEGREE).map(|b| block(a, b) * charge[b]).sum();
+                    rows[row][*unknown][a] += factor * (2.0 * a as f64 + 1.0) * sum;
+                }
+            }
+        };
+        self.walk_some(earth, &|i, j| elements.contains(&i) || elements.contains(&j), |i, j, blocks| {
+            for (row, &element) in elements.iter().enumerate() {
+                if element == i {
+                    add(row, j, &|a, b| blocks.potential[a][b]);
+                }
+                if element == j && i != j {
+                    add(row, i, &|a, b| blocks.potential[b][a]);
+                }
+            }
+        });
+        rows
+    }
+
     /// Hand every pair (i ≤ j) with its kernels, all images included, to a function. A pair may come in several parts.
-    pub(super) fn walk(&self, earth: &Surroundings, mut visit: impl FnMut(usize, usize, &PairBlocks)) {
+    pub(super) fn walk(&self, earth: &Surroundings, visit: impl FnMut(usize, usize, &PairBlocks)) {
+        self.walk_some(earth, &|_, _| true, visit);
+    }
+
+    /// The same for the pairs that `keep` lets through.
+    fn walk_some(
+        &self,
+        earth: &Surroundings,
+        keep: &impl Fn(usize, usize) -> bool,
+        mut visit: impl FnMut(usize, usize, &PairBlocks),
+    ) {
         for family in earth.families() {
             let place = match family.region {
                 Region::Above => 0,
@@ -109,14 +147,14 @@ impl Interaction {
                 Region::Across => 2,
             };
             match (family.mirrored, &self.image, &self.image_nodes) {
-                (false, ..) => self.walk_family(&self.direct[place], &self.nodes, &family, &mut visit),
-                (true, Some(image), Some(nodes)) => self.walk_family(&image[place], nodes, &family, &mut visit),
+                (false, ..) => self.walk_family(&self.direct[place], &self.nodes, &family, keep, &mut visit),
+                (true, Some(image), Some(nodes)) => self.walk_family(&image[place], nodes, &family, keep, &mut visit),
                 (true, ..) => debug_assert!(false, "an earth with images needs an interaction prepared with them"),
             }
         }
         let Some(soil) = earth.soil() else { return };
         for (pairs, region) in self.direct.iter().zip([Region::Above, Region::Below, Region::Across]) {
-            for pair in &pairs.list {
+            for pair in pairs.list.iter().filter(|p| keep(p.one, p.two)) {
                 let (e, f) = (&self.mesh.elements[pair.one], &self.mesh.elements[pair.two]);
                 visit(pair.one, pair.two, &rest::blocks(e, f, soil, region));
             }
@@ -128,11 +166,12 @@ impl Interaction {
         pairs: &Pairs,
         sources: &Nodes,
         family: &Family,
+        keep: &impl Fn(usize, usize) -> bool,
         visit: &mut impl FnMut(usize, usize, &PairBlocks),
     ) {
         let (k, weight) = (family.k, family.weight);
         let half_k2 = 0.5 * k * k;
-        for pair in &pairs.list {
+        for pair in pairs.list.iter().filter(|p| keep(p.one, p.two)) {
             let (e, f) = (&self.mesh.elements[pair.one], &self.mesh.elements[pair.two]);
             let (n, m) = (usize::from(pair.points.0), usize::from(pair.points.1));
             let points = PointPair {

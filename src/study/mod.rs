@@ -6,9 +6,12 @@
 mod barycentric;
 pub mod earthing;
 mod pattern;
+mod place;
 mod predict;
 pub mod rational;
 mod shield;
 
 pub use pattern::pattern;
+pub use place::timing;
+pub use place::{Candidate, DEFAULT_RESISTANCES_OHM, PlaceFailure, PlaceOptions, place};
 pub use predict::{Failure, Options, predict, predict_variants};

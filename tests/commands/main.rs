@@ -3,3 +3,4 @@
 
 mod few;
 mod malformed;
+mod place;

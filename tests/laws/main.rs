@@ -1,0 +1,4 @@
+//! Laws: what must hold whatever the station.
+#![allow(clippy::unwrap_used)]
+
+mod place;
