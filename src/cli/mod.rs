@@ -3,6 +3,7 @@
 //! One file per command; `flags` holds what they share, `load` reads the station, `stop` the exit statuses and Ctrl-C.
 
 mod check;
+mod cut;
 mod flags;
 mod load;
 mod predict;
@@ -25,6 +26,8 @@ enum Command {
     Check(check::Check),
     /// Feed point, current on the outside of the coax and power budget on every band
     Predict(predict::Predict),
+    /// How long a wire, a counterpoise or the coax should be
+    Cut(cut::Cut),
 }
 
 /// Run the program on its arguments.
@@ -34,6 +37,7 @@ pub fn run() -> ExitCode {
     let done = match Cli::parse().command {
         Command::Check(check) => check.run(),
         Command::Predict(predict) => predict.run(),
+        Command::Cut(cut) => cut.run(),
     };
     match done {
         Ok(()) => ExitCode::SUCCESS,

@@ -2,6 +2,7 @@
 //!
 //! A study never touches a kernel: it goes through [`crate::ports`], [`crate::field`] and [`crate::network`].
 
+pub mod cut;
 mod predict;
 mod shield;
 
