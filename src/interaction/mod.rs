@@ -9,7 +9,10 @@
 //! - `local`: metal and jackets
 //! - `fill`: the matrix at one frequency
 //! - `factor`: its factorisation, checked
+//! - `probe`: potentials at a few places as rows over the unknowns
+//! - `added`, `leading`: the columns that a few further elements add, and a factorisation that serves every smaller system it begins with
 
+mod added;
 pub mod factor;
 mod fill;
 pub mod kernel;
@@ -17,12 +20,17 @@ mod line;
 mod local;
 mod medium;
 mod near;
+mod leading;
 mod pairs;
+mod probe;
 pub mod quadrature;
 mod rest;
 mod surroundings;
 
+pub use added::{Added, Columns};
 pub use factor::{Factored, SingularMatrix};
 pub use fill::{Interaction, Legendre, Matrix};
+pub use leading::{Bordered, Leading};
 pub use local::internal_impedance;
+pub use probe::Spot;
 pub use surroundings::{Extent, Surroundings};

@@ -57,7 +57,7 @@ fn add(block: &mut Block, left: &[f64; 4], row: &[num_complex::Complex64; 4]) {
 
 /// Points for an element: more where the pair is close against its length (the rest has logarithms of second order, and the crossed
 /// terms a bounded kink), and where it is long against the wavelength or skin depth in the soil.
-fn points(e: &Element, gap: f64, soil: &SoilRest, crossed: bool) -> usize {
+pub(super) fn points(e: &Element, gap: f64, soil: &SoilRest, crossed: bool) -> usize {
     let ratio = gap / e.length_m;
     let close = match ratio {
         r if r > 4.0 => 0,

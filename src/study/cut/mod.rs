@@ -1,13 +1,15 @@
 //! How long a conductor should be: one or two lengths scanned over every frequency and variant, and the choice among them.
 //!
 //! Takes checked stations (the one written and its variants) and a [`Question`]; gives a [`CutOutcome`]. The steps: `moving` what is
-//! scanned and which end of it moves, `lengths` which lengths can be built, `scan` every length solved, `reading` what is kept of a
+//! scanned and which end of it moves, `lengths` which lengths can be built, `scan` every length solved, `nested` with what
+//! lengths have in common computed once, `reading` what is kept of a
 //! solution, `judge` windows and picks, `avoid` resonances to stay away from, `trim` how the match moves with length.
 
 mod avoid;
 mod judge;
 mod lengths;
 mod moving;
+mod nested;
 mod reading;
 mod scan;
 mod trim;

@@ -2,7 +2,7 @@
 
 use crate::field::Solution;
 use crate::interaction::quadrature::legendre;
-use crate::interaction::{Legendre, Surroundings};
+use crate::interaction::{Legendre, Spot, Surroundings};
 use crate::layout::Layout;
 use crate::mesh::Mesh;
 use crate::network::{Chain, ChainError};
@@ -20,13 +20,6 @@ pub(super) struct Reading {
     pub(super) feed_ohm: Complex64,
     pub(super) swr: f64,
     pub(super) radiated_fraction: f64,
-}
-
-/// An element and a place on it, ξ.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub(super) struct Spot {
-    pub(super) element: usize,
-    pub(super) xi: f64,
 }
 
 /// Where the shield is read.
@@ -65,10 +58,15 @@ impl Spots {
         }
         Some(Self { entry_current, entry, end, last_metre })
     }
+
+    /// Where the potential is wanted: the entry, the end.
+    pub(super) fn of_potential(spots: Option<&Self>) -> Vec<Spot> {
+        spots.map_or_else(Vec::new, |s| vec![s.entry, s.end])
+    }
 }
 
 /// The value of a Legendre series at ξ.
-pub(super) fn series(c: &Legendre, xi: f64) -> Complex64 {
+fn series(c: &Legendre, xi: f64) -> Complex64 {
     c.iter().zip(legendre(xi)).map(|(c, p)| c * p).sum()
 }
 
@@ -81,8 +79,8 @@ pub(super) struct Solved<'a> {
     pub(super) feed_a: Complex64,
     pub(super) currents: Solution,
     pub(super) spots: Option<Spots>,
-    /// Potentials at the entry and the end, V peak.
-    pub(super) potentials_v: [Complex64; 2],
+    /// Potentials at the entry and the end, V peak; empty without coax.
+    pub(super) potentials_v: Vec<Complex64>,
     /// Power into the far field, W.
     pub(super) radiated_w: f64,
 }
@@ -104,8 +102,8 @@ impl Solved<'_> {
         let spots = self.spots.as_ref();
         Ok(Reading {
             entry_current_a: spots.and_then(|s| s.entry_current.as_ref()).map_or(0.0, current),
-            entry_voltage_v: spots.and_then(|s| volts(&s.entry, self.potentials_v[0])),
-            end_voltage_v: spots.and_then(|s| volts(&s.end, self.potentials_v[1])),
+            entry_voltage_v: spots.zip(self.potentials_v.first()).and_then(|(s, v)| volts(&s.entry, *v)),
+            end_voltage_v: spots.zip(self.potentials_v.get(1)).and_then(|(s, v)| volts(&s.end, *v)),
             last_metre_current_a: spots.map_or(0.0, |s| s.last_metre.iter().map(current).fold(0.0, f64::max)),
             feed_ohm,
             swr: state.radio_swr,

@@ -2,10 +2,11 @@
 
 use super::lengths::{self, Axis};
 use super::moving::Target;
-use super::reading::{Reading, Solved, Spots, series};
+use super::nested;
+use super::reading::{Reading, Solved, Spots};
 use super::{CutFailure, Method, Question};
 use crate::field::{FarField, Solution};
-use crate::interaction::{Extent, Interaction, Surroundings};
+use crate::interaction::{Extent, Factored, Interaction, SingularMatrix, Surroundings};
 use crate::layout::{Earth, Layout};
 use crate::mesh::{Anchor, Density, Mesh};
 use crate::network;
@@ -125,7 +126,8 @@ impl Scan {
         let mut readings = Vec::new();
         for variant in &self.list {
             let by_length = match self.method {
-                Method::Alone | Method::Shared => self.alone(variant, &combinations)?,
+                Method::Alone => self.alone(variant, &combinations)?,
+                Method::Shared => nested::readings(self, variant, &combinations)?,
             };
             readings.extend((0..self.frequencies_hz.len()).flat_map(|f| by_length.iter().map(move |row| row[f])));
         }
@@ -154,7 +156,7 @@ impl Scan {
     }
 
     /// Readings `[length][frequency]`, every length on its own.
-    fn alone(&self, variant: &Variant, combinations: &[Vec<f64>]) -> Result<Vec<Vec<Reading>>, CutFailure> {
+    pub(super) fn alone(&self, variant: &Variant, combinations: &[Vec<f64>]) -> Result<Vec<Vec<Reading>>, CutFailure> {
         combinations
             .par_iter()
             .map(|lengths_m| {
@@ -180,8 +182,7 @@ impl Scan {
             .map(|lengths_m| {
                 let layout = self.place(nominal, lengths_m)?;
                 let interaction = Interaction::new(self.mesh(&layout), layout.earth != Earth::None);
-                let feed = |earth: &Surroundings| Ok(currents(&layout, &interaction, earth)?.2.inv());
-                earths.par_iter().map(feed).collect()
+                earths.par_iter().map(|earth| feed_ohm(&layout, &interaction, earth)).collect()
             })
             .collect()
     }
@@ -191,31 +192,50 @@ fn refused(station: &Station, faults: Vec<crate::station::Fault>) -> Refused {
     Refused { sources: station.sources.clone(), faults }
 }
 
-/// The port model, the unknowns for 1 V at the feed, and the feed current.
-fn currents(
-    layout: &Layout,
-    interaction: &Interaction,
-    earth: &Surroundings,
-) -> Result<(PortModel, Vec<Complex64>, Complex64), CutFailure> {
-    let frequency_hz = earth.frequency_hz();
-    let model =
-        PortModel::solve(interaction, earth).map_err(|source| Failure::Singular { frequency_hz, source })?;
-    let parts: Vec<Complex64> = layout.parts.iter().map(|p| network::impedance(&p.law, frequency_hz)).collect();
-    let port_currents = model.loaded_currents(&parts);
-    let unknowns = model.unknowns(&parts, &port_currents);
-    Ok((model, unknowns, port_currents[0]))
+/// One length at one frequency from nothing.
+///
+/// # Errors
+/// [`CutFailure::Solving`] when the matrix is singular or no power can flow.
+pub(super) fn solve(layout: &Layout, interaction: &Interaction, earth: &Surroundings) -> Result<Reading, CutFailure> {
+    let mesh = interaction.mesh();
+    let spots = Spots::of(layout, mesh, earth.frequency_hz());
+    let (z, rows) = interaction.fill_probed(earth, &Spots::of_potential(spots.as_ref()));
+    let model = Factored::new(z).and_then(|f| PortModel::from_factored(mesh, &f));
+    let model = model.map_err(|source| singular(earth, source))?;
+    finish(layout, mesh, earth, (&model, spots, &rows))
 }
 
-/// One length at one frequency from nothing.
-fn solve(layout: &Layout, interaction: &Interaction, earth: &Surroundings) -> Result<Reading, CutFailure> {
-    let (_, unknowns, feed_a) = currents(layout, interaction, earth)?;
-    let mesh = interaction.mesh();
-    let solution = Solution::new(mesh, &unknowns);
-    let potentials = interaction.potentials(earth, &solution.currents);
-    let spots = Spots::of(layout, mesh, earth.frequency_hz());
-    let potentials_v = spots.as_ref().map_or([Complex64::ZERO; 2], |s| {
-        [s.entry, s.end].map(|spot| series(&potentials[spot.element], spot.xi))
-    });
-    let radiated_w = FarField::new(mesh, &solution, earth.frequency_hz(), earth.earth()).radiated_w();
-    Ok(Solved { layout, mesh, earth, feed_a, currents: solution, spots, potentials_v, radiated_w }.reading()?)
+/// The failure of a singular matrix.
+pub(super) fn singular(earth: &Surroundings, source: SingularMatrix) -> CutFailure {
+    CutFailure::Solving(Failure::Singular { frequency_hz: earth.frequency_hz(), source })
+}
+
+/// From the port model, and potentials as rows over the unknowns, to a reading.
+///
+/// # Errors
+/// [`CutFailure::Solving`] when no power can flow.
+pub(super) fn finish(
+    layout: &Layout,
+    mesh: &Mesh,
+    earth: &Surroundings,
+    (model, spots, rows): (&PortModel, Option<Spots>, &[Vec<Complex64>]),
+) -> Result<Reading, CutFailure> {
+    let parts = parts(layout, earth);
+    let port_currents = model.loaded_currents(&parts);
+    let unknowns = model.unknowns(&parts, &port_currents);
+    let potentials_v = rows.iter().map(|row| row.iter().zip(&unknowns).map(|(r, x)| r * x).sum()).collect();
+    let currents = Solution::new(mesh, &unknowns);
+    let radiated_w = FarField::new(mesh, &currents, earth.frequency_hz(), earth.earth()).radiated_w();
+    let feed_a = port_currents[0];
+    Ok(Solved { layout, mesh, earth, feed_a, currents, spots, potentials_v, radiated_w }.reading()?)
+}
+
+fn parts(layout: &Layout, earth: &Surroundings) -> Vec<Complex64> {
+    layout.parts.iter().map(|p| network::impedance(&p.law, earth.frequency_hz())).collect()
+}
+
+/// Feed impedance of one length at one frequency, ohm.
+fn feed_ohm(layout: &Layout, interaction: &Interaction, earth: &Surroundings) -> Result<Complex64, CutFailure> {
+    let model = PortModel::solve(interaction, earth).map_err(|source| singular(earth, source))?;
+    Ok(model.loaded_currents(&parts(layout, earth))[0].inv())
 }

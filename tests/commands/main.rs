@@ -1,0 +1,5 @@
+//! The binary as a person runs it.
+
+#![allow(clippy::unwrap_used)]
+
+mod cut;

@@ -1,0 +1,5 @@
+//! Invariants that hold whatever the station.
+
+#![allow(clippy::unwrap_used)]
+
+mod cut;
