@@ -3,6 +3,7 @@
 //! One file per command; `flags` holds what they share, `load` reads the station, `stop` the exit statuses and Ctrl-C.
 
 mod check;
+mod cut;
 mod flags;
 mod load;
 mod place;
@@ -28,6 +29,8 @@ enum Command {
     Predict(predict::Predict),
     /// Where a choke goes along the coax: every place, candidate, band and variant, and the one to choose
     Place(place::Place),
+    /// How long a wire, a counterpoise or the coax should be
+    Cut(cut::Cut),
 }
 
 /// Run the program on its arguments.
@@ -38,6 +41,7 @@ pub fn run() -> ExitCode {
         Command::Check(check) => check.run(),
         Command::Predict(predict) => predict.run(),
         Command::Place(place) => place.run(),
+        Command::Cut(cut) => cut.run(),
     };
     match done {
         Ok(()) => ExitCode::SUCCESS,

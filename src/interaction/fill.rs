@@ -31,7 +31,7 @@ pub(super) struct PairBlocks {
 }
 
 /// How the unknowns enter the Legendre coefficients of an element's current.
-type UnknownMap = Vec<(usize, [f64; MAX_DEGREE + 1])>;
+pub(super) type UnknownMap = Vec<(usize, [f64; MAX_DEGREE + 1])>;
 
 /// A mesh with everything its matrices at all frequencies share.
 #[derive(Debug, Clone)]
@@ -52,7 +52,13 @@ impl Interaction {
     /// `with_image`: the earth is perfect or soil, so that mirror images occur.
     #[must_use]
     pub fn new(mesh: Mesh, with_image: bool) -> Self {
-        let pairs = |mirrored, region| Pairs::of(&mesh, mirrored, |e, f| region_of(e, f) == region);
+        Self::among(mesh, with_image, |_, _| true)
+    }
+
+    /// As [`Interaction::new`], only for some of the pairs i ≤ j of elements.
+    pub(super) fn among(mesh: Mesh, with_image: bool, keep: impl Fn(usize, usize) -> bool) -> Self {
+        let region = |i: usize, j: usize| region_of(&mesh.elements[i], &mesh.elements[j]);
+        let pairs = |mirrored, wanted| Pairs::of(&mesh, mirrored, |i, j| keep(i, j) && region(i, j) == wanted);
         let direct = [Region::Above, Region::Below, Region::Across].map(|region| pairs(false, region));
         let image = with_image.then(|| [Region::Above, Region::Below].map(|region| pairs(true, region)));
         let nodes = Nodes::of(&mesh.elements.iter().map(Line::of).collect::<Vec<_>>());
@@ -202,7 +208,7 @@ impl Interaction {
 }
 
 /// Which sides of the surface the two elements lie on.
-fn region_of(e: &Element, f: &Element) -> Region {
+pub(super) fn region_of(e: &Element, f: &Element) -> Region {
     match (e.below, f.below) {
         (false, false) => Region::Above,
         (true, true) => Region::Below,
@@ -271,7 +277,7 @@ fn add_block(sum: &mut Block, block: &Block) {
 }
 
 /// Metal loss and jacket of one element.
-fn add_local(e: &Element, map: &UnknownMap, earth: &Surroundings, z: &mut Matrix) {
+pub(super) fn add_local(e: &Element, map: &UnknownMap, earth: &Surroundings, z: &mut Matrix) {
     let medium = earth.air();
     let mut a = Complex64::ZERO;
     let mut p = Complex64::ZERO;
@@ -297,7 +303,7 @@ fn add_local(e: &Element, map: &UnknownMap, earth: &Surroundings, z: &mut Matrix
 }
 
 /// Add an element block, given in Legendre coefficients, to the unknowns' matrix.
-fn scatter(one: &UnknownMap, two: &UnknownMap, block: &Block, twice: bool, z: &mut Matrix) {
+pub(super) fn scatter(one: &UnknownMap, two: &UnknownMap, block: &Block, twice: bool, z: &mut Matrix) {
     for (v, y) in two {
         let column: Legendre = std::array::from_fn(|a| (0..=MAX_DEGREE).map(|b| block[a][b] * y[b]).sum());
         for (u, x) in one {
@@ -316,7 +322,7 @@ pub(super) fn derive(c: Legendre) -> Legendre {
 }
 
 /// a · M + p · D N Dᵗ, D the transposed derivative.
-fn combine(m: &Block, a: Complex64, n: &Block, p: Complex64) -> Block {
+pub(super) fn combine(m: &Block, a: Complex64, n: &Block, p: Complex64) -> Block {
     let raise = |row: Legendre| [Complex64::ZERO, row[0], row[1] * 3.0, row[2] * 5.0 + row[0]];
     let rows = [raise(n[0]), raise(n[1]), raise(n[2])];
     let mut out = ZERO;

@@ -7,6 +7,7 @@ mod barycentric;
 pub mod earthing;
 mod pattern;
 mod place;
+pub mod cut;
 mod predict;
 pub mod rational;
 mod shield;
