@@ -7,6 +7,7 @@ mod flags;
 mod load;
 mod predict;
 mod stop;
+mod vary;
 
 use clap::{Parser, Subcommand};
 use std::process::ExitCode;
@@ -25,6 +26,8 @@ enum Command {
     Check(check::Check),
     /// Feed point, current on the outside of the coax and power budget on every band
     Predict(predict::Predict),
+    /// Any values of the file varied together, on a grid or by Latin hypercube
+    Vary(vary::Vary),
 }
 
 /// Run the program on its arguments.
@@ -34,6 +37,7 @@ pub fn run() -> ExitCode {
     let done = match Cli::parse().command {
         Command::Check(check) => check.run(),
         Command::Predict(predict) => predict.run(),
+        Command::Vary(vary) => vary.run(),
     };
     match done {
         Ok(()) => ExitCode::SUCCESS,

@@ -3,9 +3,11 @@
 //! Currents and voltages are RMS phasors at the operating power, the phase of the feed-gap voltage as reference.
 //! A complex number is serialised as `[re, im]`.
 
+pub mod curve;
 pub mod cut;
 pub mod joint;
 pub mod place;
+pub mod vary;
 
 use crate::layout::{BandEdge, Warning};
 use num_complex::Complex64;

@@ -8,6 +8,7 @@ pub mod csv;
 pub mod pictures;
 pub mod table;
 pub mod touchstone;
+pub mod vary;
 
 mod bands;
 mod cautions;

@@ -5,4 +5,8 @@
 mod predict;
 mod shield;
 
+pub mod store;
+
+pub mod vary;
+
 pub use predict::{Failure, Options, predict};
