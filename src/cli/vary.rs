@@ -95,16 +95,19 @@ impl Vary {
             Some(samples) => Sampling::LatinHypercube { samples, seed: self.seed },
             None => Sampling::Grid,
         };
-        let plan =
-            Plan { axes: axes.map_err(|e| usage(e.to_string()))?, sampling, want: want.map_err(|e| usage(e.to_string()))? };
+        let plan = Plan {
+            axes: axes.map_err(|e| usage(e.to_string()))?,
+            sampling,
+            want: want.map_err(|e| usage(e.to_string()))?,
+        };
         plan.points().map_err(|e| usage(e.to_string()))?;
         Ok(plan)
     }
 
     fn open(&self) -> Result<Store, Stop> {
         let name = &self.station.file;
-        let text = std::fs::read_to_string(name)
-            .map_err(|e| Stop::Could(format!("cannot read {}: {e}", name.display())))?;
+        let text =
+            std::fs::read_to_string(name).map_err(|e| Stop::Could(format!("cannot read {}: {e}", name.display())))?;
         let sets = self.station.sets.iter().map(|s| set(s)).collect::<Result<Vec<_>, _>>()?;
         let content = vary::content(&text, &sets);
         Ok(match &self.store {

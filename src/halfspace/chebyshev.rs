@@ -7,6 +7,12 @@ pub(super) fn points(m: usize) -> Vec<f64> {
     (0..m).map(|i| (PI * (i as f64 + 0.5) / m as f64).cos()).collect()
 }
 
+/// The m Chebyshev points of a range.
+pub(super) fn spread(range: (f64, f64), m: usize) -> Vec<f64> {
+    let (middle, half) = (0.5 * (range.0 + range.1), 0.5 * (range.1 - range.0));
+    points(m).iter().map(|x| middle + half * x).collect()
+}
+
 /// Row k, column i: the matrix that turns values at [`points`] into Chebyshev coefficients.
 pub(super) fn analysis(m: usize) -> Vec<f64> {
     // cos of every multiple of π/2m; the angles of the matrix are k(2i+1) of them.

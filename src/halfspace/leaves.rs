@@ -1,7 +1,8 @@
 //! A patch cut into rectangles with one short polynomial each.
 
 use super::chebyshev::{monomials, restriction};
-use super::patch::{LANES, Patch};
+use super::patch::Patch;
+use super::spectral_sum::LANES;
 
 /// Total degree of a leaf's polynomial.
 pub(super) const DEGREE: usize = 5;
@@ -46,6 +47,32 @@ impl Leaf {
             }
         }
         out
+    }
+}
+
+impl Leaf {
+    /// The polynomials, their derivatives by ρ and those by ζ.
+    pub(super) fn eval_gradient(&self, rho_m: f64, zeta_m: f64) -> [[f64; LANES]; 3] {
+        let x = (rho_m - self.rho_m) * self.per_rho;
+        let y = (zeta_m - self.zeta_m) * self.per_zeta;
+        let [mut value, mut by_x, mut by_y] = [[0.0; LANES]; 3];
+        let mut last = TERMS;
+        for j in (0..=DEGREE).rev() {
+            let [mut row, mut slope] = [[0.0; LANES]; 2];
+            for _ in 0..=DEGREE - j {
+                last -= 1;
+                for lane in 0..LANES {
+                    slope[lane] = slope[lane] * x + row[lane];
+                    row[lane] = row[lane] * x + self.terms[last][lane];
+                }
+            }
+            for lane in 0..LANES {
+                by_y[lane] = by_y[lane] * y + value[lane];
+                value[lane] = value[lane] * y + row[lane];
+                by_x[lane] = by_x[lane] * y + slope[lane];
+            }
+        }
+        [value, by_x.map(|d| d * self.per_rho), by_y.map(|d| d * self.per_zeta)]
     }
 }
 

@@ -28,20 +28,31 @@
 //!
 //! K_xx, K_Φ and P are continuous across the surface; K_zz steps by (n²−1)Q there, as E_z must.
 
+mod across_leaves;
+mod across_table;
 mod bessel;
 mod bessel_fast;
 mod chebyshev;
 mod dipole;
 mod leaves;
+mod loss;
+mod loss_table;
 mod panels;
 mod patch;
 mod potentials;
 mod rule;
+mod shells;
 mod side_table;
 mod soil;
+mod spectral_sum;
 mod spectrum;
+mod tensor;
 
+pub use across_table::{AcrossDistances, AcrossTable};
 pub use dipole::DipoleField;
+pub use loss::LossKernels;
+pub use loss_table::LossTable;
 pub use potentials::{ImageCoefficients, Potentials};
-pub use side_table::{Distances, SideTable};
+pub use shells::Distances;
+pub use side_table::SideTable;
 pub use soil::{HalfSpace, HalfSpaceError, Region};

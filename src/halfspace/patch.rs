@@ -1,19 +1,13 @@
 //! One rectangle of (ρ, ζ): the remainders at a grid of Chebyshev points by one path shared by all of them.
-//!
-//! Over a rectangle the spectral sum is a matrix product: weights times e^{−uζ} on one side, Bessel functions of λρ
-//! on the other. The two Hankel branches are conjugates of each other, so that the Bessel side stays real.
 
-use super::bessel_fast::{hankel_fast, j01_fast};
-use super::chebyshev::{analysis, points};
+use super::chebyshev::{analysis, spread};
 use super::panels::Fineness;
 use super::potentials::tilt;
-use super::rule::{Node, Reach, Wave, nodes};
+use super::rule::{Node, Reach};
 use super::soil::{HalfSpace, Region};
+use super::spectral_sum::SpectralSum;
 use super::spectrum::{Spectral, Weights};
 use num_complex::Complex64;
-
-/// Real and imaginary parts of H, Q (scaled) and ∂P/∂ρ.
-pub(super) const LANES: usize = 6;
 
 /// A rectangle and how many Chebyshev points it gets each way.
 #[derive(Debug, Clone, Copy)]
@@ -39,20 +33,36 @@ impl Patch {
         fineness: Fineness,
         q_scale: f64,
     ) -> Self {
-        let mut sum = SpectralSum::new(space, region, rectangle, q_scale);
-        sum.run(fineness);
+        let (rho_m, zeta_m) = (rectangle.rho_m, rectangle.zeta_m);
         let (m, n) = rectangle.points;
-        let mut values = sum.by_lane();
-        let slope = Weights::new(space, region).slope;
+        let (rhos, zetas) = (spread(rho_m, m), spread(zeta_m, n));
+        let below = region == Region::Below;
+        let (up_m, down_m) = if below { (0.0, zeta_m.1) } else { (zeta_m.1, 0.0) };
+        let reach = Reach { region, rho_m, up_m, down_m, least_m: zeta_m.0, from_k0: false };
+        let weights = Weights::new(space, region);
+        let fill = |node: &Node, out: &mut [f64]| {
+            let s = Spectral::at(space, node);
+            let [h, q, p] = weights.reduced(&s);
+            let weight = node.weight * s.lambda;
+            let u = if below { s.u1 } else { s.u0 };
+            columns(out, [weight * h, weight * q * q_scale, -node.weight * p], u, &zetas);
+        };
+        let mut values = SpectralSum::new(&rhos, n, &fill).run(space, reach, fineness);
         let k = space.wavenumber_per_m(region);
-        for (i, &rho) in sum.rhos.iter().enumerate() {
-            for (j, &zeta) in sum.zetas.iter().enumerate() {
-                let closed = slope * tilt(k, rho, zeta);
+        for (i, &rho) in rhos.iter().enumerate() {
+            for (j, &zeta) in zetas.iter().enumerate() {
+                let closed = weights.slope * tilt(k, rho, zeta);
                 values[(4 * m + i) * n + j] -= closed.re;
                 values[(5 * m + i) * n + j] -= closed.im;
             }
         }
-        Self { rectangle, coefficients: transform(&values, m, n) }
+        Self::from_values(rectangle, &values)
+    }
+
+    /// From values `[lane][rho][zeta]` at the Chebyshev points.
+    pub(super) fn from_values(rectangle: Rectangle, values: &[f64]) -> Self {
+        let (m, n) = rectangle.points;
+        Self { rectangle, coefficients: transform(values, m, n) }
     }
 
     /// The largest of the last two coefficients each way, summed over the other way: how well it is resolved.
@@ -67,11 +77,6 @@ impl Patch {
         }
         (by_rho, by_zeta)
     }
-}
-
-fn spread(range: (f64, f64), count: usize) -> Vec<f64> {
-    let (middle, half) = (0.5 * (range.0 + range.1), 0.5 * (range.1 - range.0));
-    points(count).iter().map(|x| middle + half * x).collect()
 }
 
 fn transform(values: &[f64], m: usize, n: usize) -> Vec<f64> {
@@ -110,171 +115,8 @@ pub(super) fn combine(row: &mut [f64], weights: &[f64], rows: &[f64]) {
     }
 }
 
-/// Terms summed at once: what fits the nearest cache.
-const BATCH: usize = 16;
-
-/// The sum over the path, batch by batch.
-struct SpectralSum<'a> {
-    space: &'a HalfSpace,
-    region: Region,
-    rectangle: Rectangle,
-    q_scale: f64,
-    weights: Weights,
-    rhos: Vec<f64>,
-    zetas: Vec<f64>,
-    /// `[rho][order][term]`: Bessel functions of order 0, then 1.
-    bessel: Vec<f64>,
-    /// `[term][lane][zeta]`.
-    spectral: Vec<f64>,
-    filled: usize,
-    /// `[rho][lane][zeta]`.
-    total: Vec<f64>,
-}
-
-impl<'a> SpectralSum<'a> {
-    fn new(space: &'a HalfSpace, region: Region, rectangle: Rectangle, q_scale: f64) -> Self {
-        let (m, n) = rectangle.points;
-        Self {
-            space,
-            region,
-            rectangle,
-            q_scale,
-            weights: Weights::new(space, region),
-            rhos: spread(rectangle.rho_m, m),
-            zetas: spread(rectangle.zeta_m, n),
-            bessel: vec![0.0; 2 * m * BATCH],
-            spectral: vec![0.0; LANES * n * BATCH],
-            filled: 0,
-            total: vec![0.0; LANES * m * n],
-        }
-    }
-
-    fn run(&mut self, fineness: Fineness) {
-        let (rho_m, zeta_m) = (self.rectangle.rho_m, self.rectangle.zeta_m);
-        let (up_m, down_m) = if self.region == Region::Below { (0.0, zeta_m.1) } else { (zeta_m.1, 0.0) };
-        let reach = Reach { region: self.region, rho_m, up_m, down_m, least_m: zeta_m.0 };
-        let path = nodes(self.space, reach, fineness);
-        let standing = path.iter().position(|n| n.wave != Wave::Standing).unwrap_or(path.len());
-        let (standing, branches) = path.split_at(standing);
-        let (outgoing, incoming) = branches.split_at(branches.len() / 2);
-        for node in standing {
-            self.standing(node);
-        }
-        let mut both = vec![0.0; 2 * LANES * self.zetas.len()];
-        for (up, down) in outgoing.iter().zip(incoming) {
-            self.branch(up, down, &mut both);
-        }
-        self.flush();
-    }
-
-    fn standing(&mut self, node: &Node) {
-        let term = self.filled;
-        for (i, rho) in self.rhos.iter().enumerate() {
-            let (j0, j1) = j01_fast(node.lambda.re * rho);
-            self.bessel[2 * i * BATCH + term] = j0;
-            self.bessel[(2 * i + 1) * BATCH + term] = j1;
-        }
-        let n = self.zetas.len();
-        let (front, u) = self.front(node);
-        fill(&mut self.spectral[term * LANES * n..(term + 1) * LANES * n], front, u, &self.zetas);
-        self.advance();
-    }
-
-    /// ½H⁽¹⁾ of one branch and its conjugate of the other: Σ and j·Δ of the spectral sides beside Re and Im.
-    fn branch(&mut self, up: &Node, down: &Node, both: &mut [f64]) {
-        let n = self.zetas.len();
-        if self.filled + 2 > BATCH {
-            self.flush();
-        }
-        let term = self.filled;
-        for (i, &rho) in self.rhos.iter().enumerate() {
-            let (h0, h1) = hankel_fast(up.lambda * rho);
-            for (order, h) in [h0, h1].into_iter().enumerate() {
-                self.bessel[(2 * i + order) * BATCH + term] = h.re;
-                self.bessel[(2 * i + order) * BATCH + term + 1] = h.im;
-            }
-        }
-        let (above, beneath) = both.split_at_mut(LANES * n);
-        for (node, side) in [(up, &mut *above), (down, &mut *beneath)] {
-            let (front, u) = self.front(node);
-            fill(side, front, u, &self.zetas);
-        }
-        let target = &mut self.spectral[term * LANES * n..(term + 2) * LANES * n];
-        let (sum, turned) = target.split_at_mut(LANES * n);
-        for lane in (0..LANES).step_by(2) {
-            for j in 0..n {
-                let (re, im) = (lane * n + j, (lane + 1) * n + j);
-                sum[re] = above[re] + beneath[re];
-                sum[im] = above[im] + beneath[im];
-                turned[re] = beneath[im] - above[im];
-                turned[im] = above[re] - beneath[re];
-            }
-        }
-        self.filled += 1;
-        self.advance();
-    }
-
-    /// Weighted spectral functions at a node, and the u that goes with ζ.
-    fn front(&self, node: &Node) -> ([Complex64; 3], Complex64) {
-        let s = Spectral::at(self.space, node);
-        let [h, q, p] = self.weights.reduced(&s);
-        let weight = node.weight * s.lambda;
-        let u = if self.region == Region::Below { s.u1 } else { s.u0 };
-        ([weight * h, weight * q * self.q_scale, -node.weight * p], u)
-    }
-
-    fn advance(&mut self) {
-        self.filled += 1;
-        if self.filled >= BATCH {
-            self.flush();
-        }
-    }
-
-    fn flush(&mut self) {
-        let n = self.zetas.len();
-        let (count, width) = (self.filled, LANES * n);
-        for (row, bessel) in self.total.chunks_exact_mut(width).zip(self.bessel.chunks_exact(2 * BATCH)) {
-            let (first, second) = row.split_at_mut(4 * n);
-            product(first, &bessel[..count], &self.spectral, width, 0);
-            product(second, &bessel[BATCH..BATCH + count], &self.spectral, width, 4 * n);
-        }
-        self.filled = 0;
-    }
-
-    /// The total as `[lane][rho][zeta]`.
-    fn by_lane(&self) -> Vec<f64> {
-        let (m, n) = self.rectangle.points;
-        let mut out = vec![0.0; LANES * m * n];
-        for (i, row) in self.total.chunks_exact(LANES * n).enumerate() {
-            for (lane, part) in row.chunks_exact(n).enumerate() {
-                out[(lane * m + i) * n..(lane * m + i + 1) * n].copy_from_slice(part);
-            }
-        }
-        out
-    }
-}
-
-/// row += Σ bessel[t] · spectral[t·width + from ..].
-fn product(row: &mut [f64], bessel: &[f64], spectral: &[f64], width: usize, from: usize) {
-    let n = row.len();
-    let side = |t: usize| &spectral[t * width + from..t * width + from + n];
-    let whole = bessel.len() / 4 * 4;
-    for t in (0..whole).step_by(4) {
-        let (p, q, r, s) = (bessel[t], bessel[t + 1], bessel[t + 2], bessel[t + 3]);
-        let (a, b, c, d) = (side(t), side(t + 1), side(t + 2), side(t + 3));
-        for (k, out) in row.iter_mut().enumerate() {
-            *out += p * a[k] + q * b[k] + (r * c[k] + s * d[k]);
-        }
-    }
-    for t in whole..bessel.len() {
-        for (out, a) in row.iter_mut().zip(side(t)) {
-            *out += bessel[t] * a;
-        }
-    }
-}
-
 /// front · e^{−uζ} at every ζ, as lanes × ζ.
-fn fill(out: &mut [f64], front: [Complex64; 3], u: Complex64, zetas: &[f64]) {
+fn columns(out: &mut [f64], front: [Complex64; 3], u: Complex64, zetas: &[f64]) {
     let n = zetas.len();
     for (j, &zeta) in zetas.iter().enumerate() {
         let size = (-u.re * zeta).exp();

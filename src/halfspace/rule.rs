@@ -38,6 +38,8 @@ pub(super) struct Reach {
     pub up_m: f64,
     pub down_m: f64,
     pub least_m: f64,
+    /// Leave out the waves that travel in the air, λ < k₀.
+    pub from_k0: bool,
 }
 
 struct Path<'a> {
@@ -81,7 +83,9 @@ impl Path<'_> {
 
     fn real_axis(&mut self, end: f64) {
         let (k0, turn) = (self.space.k0_per_m(), self.space.k1_per_m().re);
-        self.about(k0, -1.0, k0);
+        if !self.reach.from_k0 {
+            self.about(k0, -1.0, k0);
+        }
         if turn > k0 * (1.0 + 1e-9) && turn < end {
             let half = 0.5 * (turn - k0);
             self.about(k0, 1.0, half);

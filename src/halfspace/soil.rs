@@ -73,6 +73,17 @@ impl HalfSpace {
         Ok(Self { frequency_hz, permittivity, conductivity_s_per_m, n2, k0, k1: k0 * root(n2) })
     }
 
+    /// The same soil, made to have a loss tangent of at least 10⁻¹²: where waves enter a lossless soil their power is the
+    /// limit of a vanishing loss.
+    pub(super) fn not_lossless(&self) -> Self {
+        let least = 1e-12 * self.permittivity * self.omega() * EPSILON_0_F_PER_M;
+        if self.conductivity_s_per_m >= least {
+            return *self;
+        }
+        let n2 = Complex64::new(self.n2.re, -1e-12 * self.n2.re);
+        Self { conductivity_s_per_m: least, n2, k1: self.k0 * root(n2), ..*self }
+    }
+
     /// Frequency, Hz.
     #[must_use]
     pub fn frequency_hz(&self) -> f64 {

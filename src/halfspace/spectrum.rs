@@ -151,6 +151,7 @@ impl Pair {
             up_m: self.up_m,
             down_m: self.down_m,
             least_m: self.zeta_m(),
+            from_k0: false,
         };
         let mut sum = [Complex64::new(0.0, 0.0); N];
         for node in nodes(space, reach, FINE) {

@@ -70,10 +70,25 @@ impl Interaction {
     /// The interaction matrix at a frequency, symmetric, ohm; shape (unknowns, unknowns).
     #[must_use]
     pub fn fill(&self, earth: &Surroundings) -> Matrix {
+        self.fill_watched(earth, |_, _, _| {})
+    }
+
+    /// As [`Interaction::fill`], keeping the scalar-potential kernels so that [`PotentialMap::along`] need not compute them again.
+    #[must_use]
+    pub fn fill_with_potentials(&self, earth: &Surroundings) -> (Matrix, PotentialMap) {
+        let count = self.mesh.elements.len();
+        let mut map =
+            PotentialMap { electric: earth.air().electric(), count, blocks: vec![ZERO; count * (count + 1) / 2] };
+        let z = self.fill_watched(earth, |i, j, block| add_block(&mut map.blocks[upper(count, i, j)], block));
+        (z, map)
+    }
+
+    fn fill_watched(&self, earth: &Surroundings, mut watch: impl FnMut(usize, usize, &Block)) -> Matrix {
         let n = self.mesh.unknowns;
         let mut z = Mat::zeros(n, n);
         let medium = earth.air();
         self.walk(earth, |i, j, blocks| {
+            watch(i, j, &blocks.potential);
             let (e, f) = (&self.mesh.elements[i], &self.mesh.elements[j]);
             let a = medium.magnetic() * (e.length_m * f.length_m);
             let p = medium.electric() * 4.0;
@@ -83,32 +98,6 @@ impl Interaction {
             add_local(element, map, earth, &mut z);
         }
         z
-    }
-
-    /// Scalar potential along every element from the currents, V: Legendre coefficients of the mean over the circumference.
-    ///
-    /// # Inputs
-    /// - `currents`: Legendre coefficients of each element's current, A
-    #[must_use]
-    pub fn potentials(&self, earth: &Surroundings, currents: &[Legendre]) -> Vec<Legendre> {
-        let medium = earth.air();
-        // Φ = 1/(4πε0) ∫ K_Φ q ds', q = −(1/jω) dI/ds, so the factor is −1/(jωε0 4π)
-        let factor = -medium.electric();
-        let elements = &self.mesh.elements;
-        let charge: Vec<Legendre> = currents.iter().map(|c| derive(*c).map(|x| x * 2.0)).collect();
-        let mut out = vec![[Complex64::ZERO; MAX_DEGREE + 1]; elements.len()];
-        self.walk(earth, |i, j, blocks| {
-            for a in 0..=MAX_DEGREE {
-                let scale = factor * (2.0 * a as f64 + 1.0);
-                for b in 0..=MAX_DEGREE {
-                    out[i][a] += scale * blocks.potential[a][b] * charge[j][b];
-                    if i != j {
-                        out[j][a] += scale * blocks.potential[b][a] * charge[i][b];
-                    }
-                }
-            }
-        });
-        out
     }
 
     /// Hand every pair (i ≤ j) with its kernels, all images included, to a function. A pair may come in several parts.
@@ -184,6 +173,62 @@ fn region_of(e: &Element, f: &Element) -> Region {
 
 fn scaled(block: &Block, factor: Complex64) -> Block {
     block.map(|row| row.map(|x| x * factor))
+}
+
+/// The scalar potential as a linear map of the charges, at one frequency.
+#[derive(Debug, Clone)]
+pub struct PotentialMap {
+    electric: Complex64,
+    count: usize,
+    /// Means of K_Φ for i ≤ j, row by row.
+    blocks: Vec<Block>,
+}
+
+impl PotentialMap {
+    /// Scalar potential along every element from the currents, V: Legendre coefficients of the mean over the circumference.
+    ///
+    /// Φ = 1/(4πε0) ∫ K_Φ q ds', q = −(1/jω) dI/ds.
+    ///
+    /// # Inputs
+    /// - `currents`: Legendre coefficients of each element's current, A
+    #[must_use]
+    pub fn along(&self, currents: &[Legendre]) -> Vec<Legendre> {
+        // dI/ds = (2/L) dI/dξ, and ∫ ds' over an element is L times the mean
+        let charge: Vec<Legendre> = currents.iter().map(|c| derive(*c).map(|x| x * (-2.0 * self.electric))).collect();
+        let mut out = vec![[Complex64::ZERO; MAX_DEGREE + 1]; self.count];
+        for i in 0..self.count {
+            for j in i..self.count {
+                let block = &self.blocks[upper(self.count, i, j)];
+                for a in 0..=MAX_DEGREE {
+                    for b in 0..=MAX_DEGREE {
+                        out[i][a] += block[a][b] * charge[j][b];
+                        if i != j {
+                            out[j][a] += block[b][a] * charge[i][b];
+                        }
+                    }
+                }
+            }
+        }
+        for series in &mut out {
+            for (a, c) in series.iter_mut().enumerate() {
+                *c *= 2.0 * a as f64 + 1.0;
+            }
+        }
+        out
+    }
+}
+
+/// Place of (i, j), i ≤ j, in an upper triangle stored row by row.
+fn upper(count: usize, i: usize, j: usize) -> usize {
+    i * count - i * (i + 1) / 2 + j
+}
+
+fn add_block(sum: &mut Block, block: &Block) {
+    for (row, more) in sum.iter_mut().zip(block) {
+        for (cell, x) in row.iter_mut().zip(more) {
+            *cell += x;
+        }
+    }
 }
 
 /// Metal loss and jacket of one element.

@@ -23,6 +23,6 @@ mod rest;
 mod surroundings;
 
 pub use factor::{Factored, SingularMatrix};
-pub use fill::{Interaction, Legendre, Matrix};
+pub use fill::{Interaction, Legendre, Matrix, PotentialMap};
 pub use local::internal_impedance;
 pub use surroundings::{Extent, Surroundings};

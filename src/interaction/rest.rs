@@ -7,8 +7,9 @@ use super::surroundings::SoilRest;
 use crate::halfspace::Region;
 use crate::mesh::{Element, MAX_DEGREE};
 
-/// Fewest and most points on an element.
-const POINTS: (usize, usize) = (3, 24);
+/// Fewest points on an element; most points below it.
+const FEWEST: usize = 2;
+const MOST: usize = 24;
 
 /// Means over a pair of the soil's rest.
 pub(super) fn blocks(e: &Element, f: &Element, soil: &SoilRest, region: Region) -> PairBlocks {
@@ -55,19 +56,24 @@ fn add(block: &mut Block, left: &[f64; 4], row: &[num_complex::Complex64; 4]) {
     }
 }
 
-/// Points for an element: more where the pair is close against its length (the rest has logarithms of second order, and the crossed
-/// terms a bounded kink), and where it is long against the wavelength or skin depth in the soil.
+/// Points for an element of a pair.
+///
+/// The rest is smooth on the scale of its distance to the mirror point and of the wavelength or skin depth in the soil; crossed pairs
+/// (vertical with horizontal) add a bounded kink at the mirror point. Measured against 24 points everywhere: the
+/// feed impedance of the models moves by less than 2·10⁻⁴.
 fn points(e: &Element, gap: f64, soil: &SoilRest, crossed: bool) -> usize {
     let ratio = gap / e.length_m;
-    let close = match ratio {
-        r if r > 4.0 => 0,
-        r if r > 1.0 => 1,
-        r if r > 0.3 => 2,
-        _ => 3,
-    };
     let k = soil.wavenumber().norm();
     // beyond a few skin depths only the wave in the air is left
     let turns = if gap * k < 8.0 { k * e.length_m } else { (k * e.length_m).min(1.0) };
-    let crossing = if crossed { 3 * close } else { 0 };
-    (e.degree + 1 + close + crossing + turns.ceil() as usize).clamp(POINTS.0, POINTS.1)
+    if ratio > 6.0 && turns < 0.2 {
+        return FEWEST;
+    }
+    let close = match ratio {
+        r if r > 2.0 => 0,
+        r if r > 0.5 => 1,
+        _ => 2,
+    };
+    let crossing = if crossed { 4 * close } else { 0 };
+    (e.degree + close + crossing + (1.5 * turns).ceil() as usize).clamp(FEWEST, MOST)
 }

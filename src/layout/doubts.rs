@@ -32,7 +32,12 @@ impl Placing<'_> {
         let outer_m = draft.metal.outer_radius_m();
         let low =
             draft.vertices.windows(2).map(|leg| leg[0].at.z.abs().max(leg[1].at.z.abs())).fold(f64::INFINITY, f64::min);
-        let name = draft.name.clone();
+        // One word for a whole star.
+        let name = match (draft.kind, draft.name.rsplit_once(' ')) {
+            (ConductorKind::Radial, Some((star, "1"))) => star.to_owned(),
+            (ConductorKind::Radial, _) => return,
+            _ => draft.name.clone(),
+        };
         if low > LOW_M.max(3.0 * outer_m) {
             return;
         }

@@ -4,6 +4,8 @@
 //! radials drawn out as conductors, and every place (feed, choke, inline part, entry) resolved to a
 //! distance along a conductor.
 
+#[cfg(test)]
+mod behaviour;
 mod body;
 mod crossings;
 mod cut;

@@ -6,6 +6,7 @@
 pub mod curve;
 pub mod cut;
 pub mod joint;
+pub mod pattern;
 pub mod place;
 pub mod vary;
 

@@ -89,13 +89,8 @@ const OF_A_PART: [(&str, fn(&PartOutcome) -> f64); 3] =
     [("dissipated_w", |p| p.dissipated_w), ("current_a", |p| p.current_a), ("voltage_v", |p| p.voltage_v)];
 
 /// What is asked for where nothing is.
-pub const DEFAULT_WANT: [&str; 5] = [
-    "feed.resistance_ohm",
-    "feed.reactance_ohm",
-    "radio.swr",
-    "shield.entry_current_a",
-    "shield.entry_voltage_v",
-];
+pub const DEFAULT_WANT: [&str; 5] =
+    ["feed.resistance_ohm", "feed.reactance_ohm", "radio.swr", "shield.entry_current_a", "shield.entry_voltage_v"];
 
 fn shield(f: &FrequencyOutcome, read: impl Fn(&ShieldOutcome) -> Option<f64>) -> Option<f64> {
     f.shield.as_ref().and_then(read)

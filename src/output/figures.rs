@@ -73,6 +73,13 @@ pub(super) fn watts(value_w: f64) -> String {
     }
 }
 
+/// A round value without the zeros behind its point: "25.0 mA" is "25 mA".
+pub(super) fn round(said: &str) -> String {
+    let (number, unit) = said.split_once(' ').map_or((said, String::new()), |(n, unit)| (n, format!(" {unit}")));
+    let short = if number.contains('.') { number.trim_end_matches('0').trim_end_matches('.') } else { number };
+    format!("{short}{unit}")
+}
+
 /// Resistance and reactance, "2450 + j120".
 pub(super) fn complex_ohm(resistance_ohm: f64, reactance_ohm: f64) -> String {
     let sign = if reactance_ohm < 0.0 { '-' } else { '+' };
@@ -136,6 +143,36 @@ pub(super) fn decibels(ratio: f64) -> String {
     }
 }
 
+/// The name of an array of an outcome, in words.
+pub(super) fn quantity_name(key: &str) -> &str {
+    match key {
+        "entry_current_a" => "current into the shack",
+        "last_metre_current_a" => "current in the last metre",
+        "entry_voltage_v" => "voltage at the entry",
+        "end_voltage_v" => "voltage at the radio",
+        "choke_w" => "heat in the choke",
+        "choke_v" => "voltage across the choke",
+        "choke_a" => "current through the choke",
+        "radiated_fraction" => "radiated part",
+        "swr" => "SWR",
+        other => other,
+    }
+}
+
+/// A value of an array of an outcome with the unit its name ends in.
+pub(super) fn quantity(key: &str, value: f64) -> String {
+    match key.rsplit_once('_').map_or(key, |(_, unit)| unit) {
+        "a" => amperes(value),
+        "v" => volts(value),
+        "w" => watts(value),
+        "fraction" => percent(value),
+        "ohm" => format!("{} ohm", three(value)),
+        "m" => distance(value, Units::Metres),
+        "swr" => swr(value),
+        _ => three(value),
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -168,6 +205,10 @@ mod tests {
         assert_eq!(distance(3.048, Units::Feet), "10.0 ft");
         assert_eq!(megahertz(7_100_000.0), "7.1");
         assert_eq!(megahertz(14_175_000.0), "14.175");
+        assert_eq!(
+            [round("25.0 mA"), round("0.250 A"), round("100 V"), round("2.00")],
+            ["25 mA", "0.25 A", "100 V", "2"]
+        );
         assert_eq!(swr(f64::INFINITY), "over 100");
         assert_eq!(decibels(0.5), "-3.0 dB");
         assert_eq!(decibels(0.0), MISSING);

@@ -5,7 +5,9 @@
 //! Neighbours: [`crate::study`] fills the outcomes, [`crate::cli`] decides what is written where.
 
 pub mod csv;
+pub mod cut_text;
 pub mod pictures;
+pub mod place_text;
 pub mod table;
 pub mod touchstone;
 pub mod vary;
@@ -18,6 +20,8 @@ mod worst;
 
 #[cfg(test)]
 pub(crate) mod sample;
+#[cfg(test)]
+pub(crate) mod sample_studies;
 
 use crate::outcome::place::LimitsOutcome;
 use std::io::Write;

@@ -165,3 +165,46 @@ pub(crate) fn prediction() -> Prediction {
         variants: vec![VariantOutcome { name: "wet".into(), frequencies: frequencies(1.3) }],
     }
 }
+
+/// A run from 3 to 30 MHz in even steps.
+pub(crate) fn curve() -> curve::CurveOutcome {
+    let point = |index: i32| {
+        let frequency_hz = 3e6 + 5e4 * f64::from(index);
+        let k = 2.0 * PI * frequency_hz / 299_792_458.0;
+        let line = Complex64::new(0.05, k * 20.4).tanh();
+        let feed_ohm = 420.0 * (1.0 + 0.03 / line) / (line + 0.08) + Complex64::new(20.0, 0.0);
+        let radio_ohm = feed_ohm / 49.0 + Complex64::new(0.4, 3.0);
+        let reflection = ((radio_ohm - 50.0) / (radio_ohm + 50.0)).norm();
+        curve::CurvePoint { frequency_hz, feed_ohm, radio_ohm, swr: (1.0 + reflection) / (1.0 - reflection) }
+    };
+    let mut curve = curve::CurveOutcome::of(&prediction(), 50.0, Some(2.0));
+    curve.points = (0..=540).map(point).collect();
+    curve
+}
+
+/// Two elevation cuts and two azimuth cuts with lobes and a null.
+pub(crate) fn pattern() -> pattern::PatternOutcome {
+    let gain = |elevation: f64, bearing: f64| {
+        let (e, b) = (elevation.to_radians(), (bearing - 20.0).to_radians());
+        let power = e.sin().powi(2) * (1.2 - 0.9 * (e.cos() * b.cos()).powi(2)) * (1.0 + 0.6 * (3.0 * e).sin()) + 1e-4;
+        (elevation > 0.0 && elevation < 180.0).then(|| 10.0 * power.log10() + 2.3)
+    };
+    let elevations: Vec<f64> = (0..=180).map(f64::from).collect();
+    let bearings: Vec<f64> = (0..=180).map(|b| 2.0 * f64::from(b)).collect();
+    let up = |bearing_deg: f64| pattern::ElevationCut {
+        bearing_deg,
+        elevation_deg: elevations.clone(),
+        gain_dbi: elevations.iter().map(|e| gain(*e, bearing_deg)).collect(),
+    };
+    let around = |elevation_deg: f64| pattern::AzimuthCut {
+        elevation_deg,
+        bearing_deg: bearings.clone(),
+        gain_dbi: bearings.iter().map(|b| gain(elevation_deg, *b)).collect(),
+    };
+    pattern::PatternOutcome {
+        station: prediction().station,
+        frequency_hz: 14.175e6,
+        elevation_cuts: vec![up(20.0), up(110.0)],
+        azimuth_cuts: vec![around(15.0), around(30.0), around(60.0)],
+    }
+}

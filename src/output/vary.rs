@@ -66,7 +66,11 @@ pub fn table(outcome: &VaryOutcome) -> String {
     table.set_header(["quantity", "least", "where", "greatest", "where"]);
     for (n, name) in outcome.want.iter().enumerate() {
         let all = || {
-            outcome.points.iter().flat_map(|p| p.rows.iter().map(move |r| (p, r))).filter_map(|(p, r)| Some((p, r, r.values[n]?)))
+            outcome
+                .points
+                .iter()
+                .flat_map(|p| p.rows.iter().map(move |r| (p, r)))
+                .filter_map(|(p, r)| Some((p, r, r.values[n]?)))
         };
         let least = all().min_by(|a, b| a.2.total_cmp(&b.2));
         let greatest = all().max_by(|a, b| a.2.total_cmp(&b.2));

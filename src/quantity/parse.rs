@@ -157,7 +157,7 @@ impl Kind {
         }
         let Some(factor) = self.factor(unit) else {
             let reason = match KINDS.iter().find(|kind| kind.factor(unit).is_some()) {
-                Some(other) => format!("`{text}` is a {}, not a {}", other.what, self.what),
+                Some(other) => format!("`{text}` is {}, not {}", with_article(other.what), with_article(self.what)),
                 None => format!("`{unit}` is not a unit of {}", self.what),
             };
             return Err(self.misread(reason));
@@ -209,6 +209,10 @@ impl Kind {
         }
         Ok(parts)
     }
+}
+
+fn with_article(what: &str) -> String {
+    format!("{} {what}", if what.starts_with(['a', 'e', 'i', 'o', 'u']) { "an" } else { "a" })
 }
 
 /// "mm2" and "mm^2" end in a digit that belongs to the unit.

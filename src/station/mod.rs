@@ -2,18 +2,24 @@
 //!
 //! Takes the TOML text of section "The station file" of README and a [`Catalogue`]; gives a [`Station`], or a
 //! [`Refused`] with every fault found, each with line, column, reason and mend. The steps: [`source`] texts and places,
-//! `node` the document as a tree, `change` values set by path, `raw` the tables as written, `check` the tables as
+//! `node` the document as a tree, `path`, `change`, `protective` and
+//! `variant` values set by path, `raw` the tables as written, `check` the tables as
 //! meant. A [`Document`] is the file parsed once, for studies that set values many times.
 
+#[cfg(test)]
+mod behaviour;
 mod catalogue;
 mod change;
 mod check;
 mod document;
 mod node;
+mod path;
+mod protective;
 mod raw;
 mod schema;
 mod source;
 mod types;
+mod variant;
 
 pub use catalogue::{Cable, Catalogue, Embedded};
 pub use document::Document;

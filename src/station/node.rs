@@ -67,7 +67,14 @@ impl Node {
 pub(crate) fn document(text: &str) -> Result<Node, Vec<Fault>> {
     let (table, errors) = DeTable::parse_recoverable(text);
     if !errors.is_empty() {
-        let faults = errors.iter().map(|e| syntax_fault(e.message(), e.span(), text)).collect();
+        let mut faults: Vec<Fault> = errors.iter().map(|e| syntax_fault(e.message(), e.span(), text)).collect();
+        // What the parser trips over after the first fault of a line follows from it.
+        let line = |f: &Fault| {
+            f.place
+                .map(|p| text.as_bytes()[..(p.start as usize).min(text.len())].iter().filter(|b| **b == b'\n').count())
+        };
+        faults.sort_by_key(|f| f.place.map(|p| p.start));
+        faults.dedup_by_key(|f| line(f));
         return Err(faults);
     }
     Ok(Node { place: place(0, &(0..0)), kind: NodeKind::Table(entries(table.get_ref(), 0)) })

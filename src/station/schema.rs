@@ -3,8 +3,8 @@
 use super::raw::RawStation;
 use serde_json::Value;
 
-/// Tables of the file that may be missing though their type is no option.
-const OPTIONAL: [&str; 7] = ["points", "wire", "radials", "choke", "inline", "rod", "variant"];
+/// Tables the file must have (the others' types are no options either, so that a faulty one does not hide the rest).
+const NEEDED: [&str; 3] = ["earth", "feed", "operation"];
 
 /// JSON Schema (draft 2020-12) of the station file, for editors that complete and check TOML.
 #[must_use]
@@ -15,7 +15,7 @@ pub fn schema() -> Value {
         .to_value();
     strip_null(&mut schema);
     if let Some(required) = schema.get_mut("required").and_then(Value::as_array_mut) {
-        required.retain(|key| !key.as_str().is_some_and(|k| OPTIONAL.contains(&k)));
+        required.retain(|key| key.as_str().is_some_and(|k| NEEDED.contains(&k)));
     }
     schema
 }

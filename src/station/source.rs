@@ -62,6 +62,10 @@ impl Sources {
         Sources(Arc::new(vec![Source { name: name.to_owned(), text: text.to_owned() }]))
     }
 
+    pub(crate) fn count(&self) -> u32 {
+        u32::try_from(self.0.len()).unwrap_or(u32::MAX)
+    }
+
     /// Adds a text and returns its index.
     pub(crate) fn add(&mut self, name: &str, text: String) -> u32 {
         let list = Arc::make_mut(&mut self.0);

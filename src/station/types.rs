@@ -8,6 +8,8 @@ use super::source::{Sources, Written};
 pub struct Station {
     /// Title, may be empty.
     pub title: String,
+    /// The file's lengths are in feet: show feet first.
+    pub in_feet: bool,
     /// Earth.
     pub earth: Written<Earth>,
     /// Named points in file order.

@@ -8,11 +8,11 @@
 use super::predict::Failure;
 use super::rational::{Curve, CurveError, adaptive};
 use crate::field::Solution;
-use crate::interaction::{Extent, Interaction, Surroundings};
+use crate::interaction::{Extent, Factored, Interaction, Surroundings};
 use crate::layout::{Coax, Earth, Layout};
 use crate::mesh::{Density, Mesh};
 use crate::network::{self, Chain};
-use crate::outcome::curve::{CurveOutcome, ShieldCurve};
+use crate::outcome::curve::{CurveBand, CurveOutcome, CurvePoint, InterpolatedCurve, ShieldCurvePoint};
 use crate::ports::PortModel;
 use nalgebra::DMatrix;
 use num_complex::Complex64;
@@ -73,13 +73,17 @@ impl<'a> PortCurve<'a> {
         let interaction = Interaction::new(mesh, layout.earth != Earth::None);
         let extent = Extent::of(layout);
         let sampler = |frequencies: &[f64]| {
-            frequencies.par_iter().map(|f| sample(layout, &interaction, &extent, *f)).collect::<Result<Vec<_>, Failure>>()
+            frequencies
+                .par_iter()
+                .map(|f| sample(layout, &interaction, &extent, *f))
+                .collect::<Result<Vec<_>, Failure>>()
         };
-        let curve = adaptive(sampler, low_hz, high_hz, options.tolerance, options.most_solves).map_err(|e| match e {
-            CurveError::Sample(failure) => failure,
-            CurveError::Range { low, high } => Failure::Range { low_hz: low, high_hz: high },
-            CurveError::Shape { .. } => Failure::Curve { low_hz, high_hz },
-        })?;
+        let curve =
+            adaptive(sampler, low_hz, high_hz, options.tolerance, options.most_solves).map_err(|e| match e {
+                CurveError::Sample(failure) => failure,
+                CurveError::Range { low, high } => Failure::Range { low_hz: low, high_hz: high },
+                CurveError::Shape { .. } => Failure::Curve { low_hz, high_hz },
+            })?;
         Ok(Self { layout, curve, tolerance: options.tolerance })
     }
 
@@ -99,40 +103,32 @@ impl<'a> PortCurve<'a> {
     ///
     /// # Errors
     /// [`Failure::Chain`] where no power can flow.
-    pub fn outcome(&self, frequencies_hz: &[f64]) -> Result<CurveOutcome, Failure> {
+    pub fn outcome(&self, frequencies_hz: &[f64]) -> Result<InterpolatedCurve, Failure> {
         let points = frequencies_hz.par_iter().map(|f| self.at(*f)).collect::<Result<Vec<_>, Failure>>()?;
-        let shield = self.layout.coax.as_ref().map(|coax| {
-            let conductor = &self.layout.conductors[coax.conductor];
-            let last = conductor.points.len() - 1;
-            // the potential has no meaning to a person below the surface
-            let above = |height_m: f64| height_m >= 0.0;
-            let entry_above = above(height_at(self.layout, coax));
-            let end_above = above(conductor.points[last].z);
-            let read = |k: usize| points.iter().map(|p| p.shield[k]).collect::<Vec<f64>>();
-            let shown = |k: usize, shown: bool| points.iter().map(|p| shown.then_some(p.shield[k])).collect();
-            ShieldCurve {
-                entry_at_m: coax.entry_m,
-                entry_current_a: read(0),
-                entry_voltage_v: shown(1, entry_above),
-                end_current_a: read(2),
-                end_voltage_v: shown(3, end_above),
-            }
-        });
-        Ok(CurveOutcome {
-            band: None,
-            frequencies_hz: frequencies_hz.to_vec(),
-            feed_ohm: points.iter().map(|p| p.feed_ohm).collect(),
-            radio_ohm: points.iter().map(|p| p.radio_ohm).collect(),
-            radio_swr: points.iter().map(|p| p.radio_swr).collect(),
-            shield,
+        Ok(InterpolatedCurve {
+            curve: CurveOutcome {
+                station: self.layout.title.clone(),
+                reference_ohm: self.layout.radio.impedance_ohm,
+                swr_limit: Some(self.layout.limits.swr),
+                bands: self.bands(),
+                points: points.iter().map(|p| p.0).collect(),
+            },
+            shield: points.iter().filter_map(|p| p.1).collect(),
             error_estimate: self.curve.error_estimate(),
-            converged: self.curve.converged(),
             tolerance: self.tolerance,
+            converged: self.curve.converged(),
             solves: self.curve.samples().len(),
         })
     }
 
-    fn at(&self, frequency_hz: f64) -> Result<At, Failure> {
+    /// The station's bands that lie within the range.
+    fn bands(&self) -> Vec<CurveBand> {
+        let samples = self.curve.samples();
+        let (low, high) = (samples.first().copied().unwrap_or(0.0), samples.last().copied().unwrap_or(0.0));
+        bands(self.layout).into_iter().filter(|b| b.from_hz >= 0.999 * low && b.to_hz <= 1.001 * high).collect()
+    }
+
+    fn at(&self, frequency_hz: f64) -> Result<(CurvePoint, Option<ShieldCurvePoint>), Failure> {
         let values = self.values(frequency_hz);
         let parts: Vec<Complex64> =
             self.layout.parts.iter().map(|p| network::impedance(&p.law, frequency_hz)).collect();
@@ -140,13 +136,24 @@ impl<'a> PortCurve<'a> {
         let currents = model.loaded_currents(&parts);
         let feed_ohm = currents[0].inv();
         let state = Chain::of(self.layout).at(frequency_hz).state(feed_ohm, self.layout.operation.power_w)?;
-        let mut shield = [0.0; OBSERVED];
-        for (k, out) in shield.iter_mut().enumerate() {
+        let observed: [f64; OBSERVED] = std::array::from_fn(|k| {
             // voltages at the ports: 1 at the feed, −Z I at every part
             let of_parts = (1..currents.len()).map(|p| -values.shield[p][k] * parts[p - 1] * currents[p]);
-            *out = (values.shield[0][k] + of_parts.sum::<Complex64>()).norm() * state.feed_voltage_v;
-        }
-        Ok(At { feed_ohm, radio_ohm: state.radio_ohm, radio_swr: state.radio_swr, shield })
+            (values.shield[0][k] + of_parts.sum::<Complex64>()).norm() * state.feed_voltage_v
+        });
+        let shield = self.layout.coax.as_ref().map(|coax| {
+            // the potential has no meaning to a person below the surface
+            let [entry_m, end_m] = heights_m(self.layout, coax);
+            ShieldCurvePoint {
+                frequency_hz,
+                entry_current_a: observed[0],
+                entry_voltage_v: (entry_m >= 0.0).then_some(observed[1]),
+                end_current_a: observed[2],
+                end_voltage_v: (end_m >= 0.0).then_some(observed[3]),
+            }
+        });
+        let point = CurvePoint { frequency_hz, feed_ohm, radio_ohm: state.radio_ohm, swr: state.radio_swr };
+        Ok((point, shield))
     }
 
     fn values(&self, frequency_hz: f64) -> Values {
@@ -167,12 +174,57 @@ impl<'a> PortCurve<'a> {
     }
 }
 
-/// One frequency of a curve.
-struct At {
-    feed_ohm: Complex64,
-    radio_ohm: Complex64,
-    radio_swr: f64,
-    shield: [f64; OBSERVED],
+/// A curve through each band of a station, edges included, all in one.
+///
+/// Up to two bands are interpolated each by itself, more of them in one range from the lowest edge to the highest: that takes
+/// fewer solves.
+///
+/// # Errors
+/// [`Failure::NoFrequency`] where the station names no band, else as [`PortCurve`].
+pub fn of_bands(layout: &Layout, points_a_band: usize, options: CurveOptions) -> Result<InterpolatedCurve, Failure> {
+    let bands = bands(layout);
+    let (Some(first), Some(last)) = (bands.first(), bands.last()) else { return Err(Failure::NoFrequency) };
+    let grid = |b: &CurveBand| spaced(b.from_hz, b.to_hz, points_a_band);
+    if bands.len() > 2 {
+        let highest = bands.iter().map(|b| b.to_hz).fold(last.to_hz, f64::max);
+        let mut frequencies: Vec<f64> = bands.iter().flat_map(grid).collect();
+        frequencies.sort_by(f64::total_cmp);
+        return PortCurve::new(layout, first.from_hz, highest, options)?.outcome(&frequencies);
+    }
+    let mut whole = PortCurve::new(layout, first.from_hz, first.to_hz, options)?.outcome(&grid(first))?;
+    for band in &bands[1..] {
+        let more = PortCurve::new(layout, band.from_hz, band.to_hz, options)?.outcome(&grid(band))?;
+        whole.curve.points.extend(more.curve.points);
+        whole.shield.extend(more.shield);
+        whole.error_estimate = whole.error_estimate.max(more.error_estimate);
+        whole.converged &= more.converged;
+        whole.solves += more.solves;
+    }
+    whole.curve.bands = bands;
+    Ok(whole)
+}
+
+/// Equally spaced frequencies, ends included, at least two.
+#[must_use]
+pub fn spaced(low_hz: f64, high_hz: f64, count: usize) -> Vec<f64> {
+    let last = count.max(2) - 1;
+    // the ends exactly, so that none falls outside the range by rounding
+    (0..=last).map(|n| if n == last { high_hz } else { low_hz + (high_hz - low_hz) * n as f64 / last as f64 }).collect()
+}
+
+/// The bands of a station, rising.
+#[must_use]
+pub fn bands(layout: &Layout) -> Vec<CurveBand> {
+    let mut out: Vec<CurveBand> = Vec::new();
+    for point in &layout.operation.frequencies {
+        let (Some(name), hz) = (&point.band, point.frequency_hz) else { continue };
+        match out.iter_mut().find(|b| b.name == *name) {
+            Some(band) => (band.from_hz, band.to_hz) = (band.from_hz.min(hz), band.to_hz.max(hz)),
+            None => out.push(CurveBand { name: name.clone(), from_hz: hz, to_hz: hz }),
+        }
+    }
+    out.sort_by(|a, b| a.from_hz.total_cmp(&b.from_hz));
+    out
 }
 
 /// The values to interpolate at one frequency: the upper triangle of the admittance matrix, then what each port makes of the
@@ -184,8 +236,10 @@ fn sample(
     frequency_hz: f64,
 ) -> Result<Vec<Complex64>, Failure> {
     let earth = Surroundings::new(frequency_hz, layout.earth.at(frequency_hz), extent)?;
+    let singular = |source| Failure::Singular { frequency_hz, source };
+    let (matrix, potential_map) = interaction.fill_with_potentials(&earth);
     let model =
-        PortModel::solve(interaction, &earth).map_err(|source| Failure::Singular { frequency_hz, source })?;
+        PortModel::from_factored(interaction.mesh(), &Factored::new(matrix).map_err(singular)?).map_err(singular)?;
     let ports = model.admittance_s.nrows();
     let mut out = Vec::with_capacity(ports * (ports + 1) / 2 + ports * OBSERVED);
     for i in 0..ports {
@@ -197,7 +251,7 @@ fn sample(
             let unknowns: Vec<Complex64> =
                 (0..interaction.mesh().unknowns).map(|row| model.currents_a[(row, port)]).collect();
             let solution = Solution::new(interaction.mesh(), &unknowns);
-            let potentials = Solution { currents: interaction.potentials(&earth, &solution.currents) };
+            let potentials = Solution { currents: potential_map.along(&solution.currents) };
             let [current, entry, end_current, end] = places;
             out.extend([
                 current.map_or(Complex64::ZERO, |p| solution.current_at(p.element, p.xi)),
@@ -234,12 +288,13 @@ fn ends_joined(layout: &Layout, coax: &Coax) -> bool {
     layout.junctions.iter().any(|j| j.members.contains(&end) && (j.members.len() > 1 || j.to_earth))
 }
 
-/// Height of the entry above the surface, m.
-fn height_at(layout: &Layout, coax: &Coax) -> f64 {
+/// Heights of the entry and of the end of the shield above the surface, m.
+fn heights_m(layout: &Layout, coax: &Coax) -> [f64; 2] {
     let conductor = &layout.conductors[coax.conductor];
     let at = conductor.distances_m();
-    let leg = (1..at.len()).find(|&k| at[k] >= coax.entry_m - 1e-9).unwrap_or(at.len() - 1);
+    let last = at.len() - 1;
+    let leg = (1..=last).find(|&k| at[k] >= coax.entry_m - 1e-9).unwrap_or(last);
     let (from, to) = (conductor.points[leg - 1].z, conductor.points[leg].z);
     let share = ((coax.entry_m - at[leg - 1]) / (at[leg] - at[leg - 1])).clamp(0.0, 1.0);
-    from + (to - from) * share
+    [from + (to - from) * share, conductor.points[last].z]
 }

@@ -3,7 +3,7 @@
 use super::shield;
 use crate::field::{FarField, Solution};
 use crate::halfspace::HalfSpaceError;
-use crate::interaction::{Extent, Interaction, SingularMatrix, Surroundings};
+use crate::interaction::{Extent, Factored, Interaction, Legendre, PotentialMap, SingularMatrix, Surroundings};
 use crate::layout::{Earth, EarthAt, FrequencyPoint, Layout, PartKind, Soil};
 use crate::mesh::{Density, Mesh};
 use crate::network::{self, Chain, ChainError, ChainState};
@@ -127,6 +127,12 @@ pub(super) struct At<'a> {
     earth: Arc<Surroundings>,
 }
 
+/// A mesh solved at one frequency.
+pub(super) struct Solved {
+    pub(super) model: PortModel,
+    pub(super) potentials: PotentialMap,
+}
+
 impl<'a> At<'a> {
     /// The earth must be that of the layout at this frequency, and cover its extent.
     pub(super) fn new(layout: &'a Layout, point: &'a FrequencyPoint, earth: Arc<Surroundings>) -> Self {
@@ -134,8 +140,8 @@ impl<'a> At<'a> {
     }
 
     fn outcome(&self, fine: &Interaction, coarse: &Interaction) -> Result<FrequencyOutcome, Failure> {
-        let (model, second) = (self.solve(fine)?, self.solve(coarse)?);
-        self.outcome_of(fine, &model, Some(&second))
+        let (solved, second) = (self.solve(fine)?, self.ports(coarse)?);
+        self.outcome_of(fine, &solved, Some(&second))
     }
 
     /// Everything at this frequency from a solved mesh and the solution of the second mesh; without the second the
@@ -143,20 +149,20 @@ impl<'a> At<'a> {
     pub(super) fn outcome_of(
         &self,
         fine: &Interaction,
-        model: &PortModel,
+        solved: &Solved,
         second: Option<&PortModel>,
     ) -> Result<FrequencyOutcome, Failure> {
         let f = self.point.frequency_hz;
         let parts: Vec<Complex64> = self.layout.parts.iter().map(|p| network::impedance(&p.law, f)).collect();
-        let currents = model.loaded_currents(&parts);
+        let currents = solved.model.loaded_currents(&parts);
         let feed_ohm = currents[0].inv();
         let state = Chain::of(self.layout).at(f).state(feed_ohm, self.layout.operation.power_w)?;
         // with 1 V (peak) at the gap the feed takes ½ Re Y; everything is linear in the voltage
         let voltage_peak_v = (2.0 * state.feed_w / currents[0].re).sqrt();
-        let solution =
-            Solution::new(fine.mesh(), &model.unknowns(&parts, &currents)).scaled(Complex64::from(voltage_peak_v));
+        let solution = Solution::new(fine.mesh(), &solved.model.unknowns(&parts, &currents))
+            .scaled(Complex64::from(voltage_peak_v));
         let port_currents = currents * Complex64::from(voltage_peak_v);
-        let conductors = self.conductors(fine, &solution);
+        let conductors = self.conductors(fine.mesh(), &solution, &solved.potentials.along(&solution.currents));
         let nan = Complex64::new(f64::NAN, f64::NAN);
         let difference = second.map_or(nan, |second| feed_ohm - second.loaded_currents(&parts)[0].inv());
         Ok(FrequencyOutcome {
@@ -187,9 +193,19 @@ impl<'a> At<'a> {
     }
 
     /// The ports of a mesh of this station at this frequency.
-    pub(super) fn solve(&self, interaction: &Interaction) -> Result<PortModel, Failure> {
+    pub(super) fn ports(&self, interaction: &Interaction) -> Result<PortModel, Failure> {
         let frequency_hz = self.point.frequency_hz;
         PortModel::solve(interaction, &self.earth).map_err(|source| Failure::Singular { frequency_hz, source })
+    }
+
+    /// The ports with the potentials along every conductor.
+    pub(super) fn solve(&self, interaction: &Interaction) -> Result<Solved, Failure> {
+        let frequency_hz = self.point.frequency_hz;
+        let singular = |source| Failure::Singular { frequency_hz, source };
+        let (matrix, potentials) = interaction.fill_with_potentials(&self.earth);
+        let factored = Factored::new(matrix).map_err(singular)?;
+        let model = PortModel::from_factored(interaction.mesh(), &factored).map_err(singular)?;
+        Ok(Solved { model, potentials })
     }
 
     fn soil(&self) -> Option<SoilOutcome> {
@@ -201,16 +217,15 @@ impl<'a> At<'a> {
         }
     }
 
-    fn conductors(&self, interaction: &Interaction, solution: &Solution) -> Vec<ConductorOutcome> {
+    fn conductors(&self, mesh: &Mesh, solution: &Solution, potentials: &[Legendre]) -> Vec<ConductorOutcome> {
         let f = self.point.frequency_hz;
         let step_m = (SPEED_OF_LIGHT_M_PER_S / f / 100.0).min(0.1);
-        let potentials = interaction.potentials(&self.earth, &solution.currents);
         let rms = std::f64::consts::FRAC_1_SQRT_2;
         (0..self.layout.conductors.len())
             .map(|c| ConductorOutcome {
                 name: self.layout.conductors[c].name.clone(),
                 points: solution
-                    .along(self.layout, interaction.mesh(), c, &potentials, step_m)
+                    .along(self.layout, mesh, c, potentials, step_m)
                     .into_iter()
                     .map(|s| PointOutcome {
                         distance_m: s.distance_m,

@@ -124,9 +124,8 @@ impl Store {
         let failed = |e| failure(path, e);
         connection.busy_timeout(PATIENCE).map_err(failed)?;
         let id: i32 = connection.pragma_query_value(None, "application_id", |r| r.get(0)).map_err(failed)?;
-        let tables: i64 = connection
-            .query_row("SELECT count(*) FROM sqlite_schema", [], |r| r.get(0))
-            .map_err(failed)?;
+        let tables: i64 =
+            connection.query_row("SELECT count(*) FROM sqlite_schema", [], |r| r.get(0)).map_err(failed)?;
         if id != APPLICATION_ID && tables > 0 {
             return Err(StoreError::NotAStore { path: path.to_path_buf() });
         }
@@ -234,12 +233,10 @@ impl Finished {
 
 fn same_station(path: &Path, connection: &Connection, station: &Value) -> Result<(), StoreError> {
     let about = |name: &str| -> Result<String, StoreError> {
-        connection
-            .query_row("SELECT value FROM about WHERE name = ?1", [name], |r| r.get(0))
-            .map_err(|e| match e {
-                rusqlite::Error::QueryReturnedNoRows => StoreError::NotAStore { path: path.to_path_buf() },
-                e => failure(path, e),
-            })
+        connection.query_row("SELECT value FROM about WHERE name = ?1", [name], |r| r.get(0)).map_err(|e| match e {
+            rusqlite::Error::QueryReturnedNoRows => StoreError::NotAStore { path: path.to_path_buf() },
+            e => failure(path, e),
+        })
     };
     let theirs = about("numerics")?;
     if theirs != NUMERICS.to_string() {
@@ -268,7 +265,8 @@ fn difference(path: &str, stored: &Value, given: &Value) -> Option<String> {
             })
         }
         (Value::Array(a), Value::Array(b)) if a.len() == b.len() => {
-            let name = |v: &Value, n: usize| v.get("name").and_then(Value::as_str).map_or((n + 1).to_string(), str::to_owned);
+            let name =
+                |v: &Value, n: usize| v.get("name").and_then(Value::as_str).map_or((n + 1).to_string(), str::to_owned);
             a.iter().zip(b).enumerate().find_map(|(n, (v, w))| difference(&inside(&name(v, n)), v, w))
         }
         (a, b) if a == b => None,

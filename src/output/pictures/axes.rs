@@ -50,7 +50,8 @@ impl Scale {
         let decades = (self.to / self.from).log10();
         let steps: &[f64] = match decades {
             d if d > 4.0 => &[1.0],
-            d if d > 1.2 => &[1.0, 2.0, 5.0],
+            d if d > 2.0 => &[1.0, 2.0, 5.0],
+            d if d > 1.2 => &[1.0, 2.0, 3.0, 5.0],
             _ => &[1.0, 1.5, 2.0, 3.0, 5.0, 7.0],
         };
         let (low, high) = (self.from.log10().floor() as i32, self.to.log10().ceil() as i32);

@@ -5,34 +5,129 @@
 
 mod along;
 mod axes;
+mod curve;
 mod drawing;
 mod font;
+mod joint_maps;
+mod length_curves;
+mod map;
 mod paint;
+mod pattern;
+mod place_choice;
+mod place_maps;
+mod placer;
+mod site;
+mod site_key;
+mod site_view;
+mod site_wires;
+mod symbols;
 
 #[cfg(test)]
 mod checks;
 
 use super::OutputError;
 use crate::outcome::Prediction;
-use crate::output::Units;
+use crate::outcome::curve::CurveOutcome;
+use crate::outcome::cut::CutOutcome;
+use crate::outcome::joint::LengthByPlaceOutcome;
+use crate::outcome::pattern::PatternOutcome;
+use crate::outcome::place::PlaceOutcome;
+use crate::output::{References, Units};
 use std::path::{Path, PathBuf};
 
-/// Draws every picture of a prediction into a folder, which is made if it is not there.
+/// Draws every picture of a prediction into a folder, which is made if it is not there: the site, current and voltage along
+/// the coax (where there is one), impedance and match over the predicted frequencies.
 ///
 /// # Errors
 /// [`OutputError`] of the first picture that could not be drawn or written.
-pub fn write_all_prediction(prediction: &Prediction, folder: &Path, units: Units) -> Result<Vec<PathBuf>, OutputError> {
-    let _ = units;
-    let mut paths = Vec::new();
-    paths.extend(paint::write_both(&along::drawing(prediction)?, folder, "along-the-coax")?);
+pub fn write_all_prediction(
+    prediction: &Prediction,
+    references: &References,
+    folder: &Path,
+    units: Units,
+) -> Result<Vec<PathBuf>, OutputError> {
+    let mut paths = write(folder, "site", &site::drawing(prediction, units)?)?;
+    if prediction.frequencies.iter().any(|f| f.shield.is_some()) {
+        paths.extend(write(folder, "along-the-coax", &along::drawing(prediction)?)?);
+    }
+    let limit = references.limits.map(|l| l.swr);
+    let curve = CurveOutcome::of(prediction, references.radio_impedance_ohm, limit);
+    paths.extend(write_curve(&curve, folder)?);
     Ok(paths)
+}
+
+/// Draws impedance and standing-wave ratio against frequency ("match").
+///
+/// # Errors
+/// [`OutputError`] when there is no point or the files cannot be written.
+pub fn write_curve(curve: &CurveOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
+    write(folder, "match", &curve::drawing(curve)?)
+}
+
+/// Draws a radiation pattern ("pattern-14.175-MHz").
+///
+/// # Errors
+/// [`OutputError`] when there is no cut or the files cannot be written.
+pub fn write_pattern(pattern: &PatternOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
+    let name = format!("pattern-{}-MHz", super::figures::megahertz(pattern.frequency_hz));
+    write(folder, &name, &pattern::drawing(pattern)?)
+}
+
+/// Draws every picture of a placement study into a folder.
+///
+/// # Errors
+/// [`OutputError`] when the arrays do not fit their axes or the files cannot be written.
+pub fn write_all_place(place: &PlaceOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
+    let mut paths = write(folder, "choice", &place_choice::drawing(place)?)?;
+    for (index, choke) in place.chokes.iter().enumerate() {
+        let name = format!("shield-current-{}", file_name(&choke.name));
+        paths.extend(write(folder, &name, &place_maps::current(place, index)?)?);
+    }
+    let picked = place.picks.first().and_then(|p| place.chokes.iter().position(|c| c.name == p.choke)).unwrap_or(0);
+    paths.extend(write(folder, "volts", &place_maps::volts(place, picked)?)?);
+    paths.extend(write(folder, "watts", &place_maps::watts(place, picked)?)?);
+    Ok(paths)
+}
+
+/// Draws every picture of a length study into a folder: curves over one length, a map over two.
+///
+/// # Errors
+/// [`OutputError`] when there is nothing to draw or the files cannot be written.
+pub fn write_all_cut(cut: &CutOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
+    if cut.second_lengths_m.is_some() {
+        return write(folder, "two-lengths", &joint_maps::lengths(cut)?);
+    }
+    let mut paths = Vec::new();
+    for (index, drawing) in length_curves::drawings(cut)?.iter().enumerate() {
+        let name = if index == 0 { "length".to_string() } else { format!("length-{}", index + 1) };
+        paths.extend(write(folder, &name, drawing)?);
+    }
+    Ok(paths)
+}
+
+/// Draws the joint map of coax length and choke place ("length-and-place").
+///
+/// # Errors
+/// [`OutputError`] when there is nothing to draw or the files cannot be written.
+pub fn write_length_by_place(joint: &LengthByPlaceOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
+    write(folder, "length-and-place", &joint_maps::length_by_place(joint)?)
+}
+
+/// A name that every file system takes.
+fn file_name(name: &str) -> String {
+    name.chars().map(|c| if c.is_alphanumeric() || c == '.' { c } else { '-' }).collect()
+}
+
+fn write(folder: &Path, name: &str, drawing: &drawing::Drawing) -> Result<Vec<PathBuf>, OutputError> {
+    std::fs::create_dir_all(folder).map_err(|source| OutputError::File { path: folder.to_path_buf(), source })?;
+    paint::write_both(drawing, folder, name)
 }
 
 #[cfg(test)]
 mod tests {
     #![allow(clippy::unwrap_used)]
     use super::*;
-    use crate::output::sample;
+    use crate::output::{sample, sample_studies};
 
     /// Set `BRAIDWISE_PICTURES` to a folder to look at the pictures of the samples.
     fn folder() -> (PathBuf, Option<tempfile::TempDir>) {
@@ -46,9 +141,30 @@ mod tests {
     }
 
     #[test]
+    fn every_picture_of_a_placement_is_written_twice() {
+        let (folder, _keep) = folder();
+        let paths = write_all_place(&sample_studies::place(), &folder.join("place")).unwrap();
+        assert_eq!(paths.len(), 12);
+    }
+
+    #[test]
+    fn every_picture_of_lengths_is_written_twice() {
+        let (folder, _keep) = folder();
+        let folder = folder.join("cut");
+        let mut paths = write_all_cut(&sample_studies::cut(), &folder).unwrap();
+        paths.extend(write_all_cut(&sample_studies::cut_two(), &folder).unwrap());
+        paths.extend(write_length_by_place(&sample_studies::joint(), &folder).unwrap());
+        assert_eq!(paths.len(), 6);
+    }
+
+    #[test]
     fn every_picture_of_a_prediction_is_written_twice() {
         let (folder, _keep) = folder();
-        let paths = write_all_prediction(&sample::prediction(), &folder, Units::Metres).unwrap();
+        let references = References { impedance_ratio: Some(49.0), ..References::default() };
+        let mut paths = write_all_prediction(&sample::prediction(), &references, &folder, Units::Metres).unwrap();
+        paths.extend(write_curve(&sample::curve(), &folder.join("run")).unwrap());
+        paths.extend(write_pattern(&sample::pattern(), &folder).unwrap());
+        assert_eq!(paths.len(), 10);
         for path in &paths {
             assert!(std::fs::metadata(path).unwrap().len() > 2_000, "{}", path.display());
         }

@@ -15,6 +15,9 @@ const PVC: f64 = 3.0;
 /// at 5 mm, 2.1 dB at 10.3 mm); grows as the square root of the frequency.
 const LOSS_DB_MM: f64 = 22.0;
 
+/// From and to, as written.
+type Stretch = Vec<Written<Distance>>;
+
 impl Check<'_> {
     pub(super) fn coax(&mut self, raw: Written<RawCoax>) -> Option<Coax> {
         let table = raw.place;
@@ -173,10 +176,7 @@ impl Check<'_> {
         Some(points)
     }
 
-    fn reachable(
-        &mut self,
-        raw: Option<Written<Vec<Written<Vec<Written<Distance>>>>>>,
-    ) -> Option<Vec<Written<(f64, f64)>>> {
+    fn reachable(&mut self, raw: Option<Written<Vec<Written<Stretch>>>>) -> Option<Vec<Written<(f64, f64)>>> {
         let stretches =
             raw.map_or_else(Vec::new, |r| r.value).into_iter().map(|stretch| match stretch.value.as_slice() {
                 [from, to] if from.value.0 >= 0.0 && to.value.0 > from.value.0 => {

@@ -14,7 +14,7 @@ mod points;
 
 use super::catalogue::Catalogue;
 use super::node::{Node, NodeKind};
-use super::raw::{PathPoint, RawStation, Read, Reader};
+use super::raw::{LengthUnit, PathPoint, RawStation, Read, Reader};
 use super::source::{Fault, Place, Sources, Written};
 use super::types::Station;
 
@@ -37,6 +37,9 @@ pub(super) fn station(root: &Node, sources: &Sources, catalogue: &dyn Catalogue)
     faults.dedup();
     match station {
         Some(station) if faults.is_empty() => Ok(station),
+        None if faults.is_empty() => {
+            Err(vec![Fault::new(Some(root.place), "this is no station file", "write the tables of a station")])
+        }
         _ => Err(faults),
     }
 }
@@ -104,20 +107,21 @@ impl<'a> Check<'a> {
     }
 
     fn whole(&mut self, raw: RawStation, sources: &Sources) -> Option<Station> {
-        let earth = self.earth(raw.earth);
+        let earth = raw.earth.0.and_then(|e| self.earth(e));
         let points = self.named_points(raw.points);
         let wires: Vec<_> = numbered(raw.wire.0).into_iter().map(|(k, w)| self.wire(k, w)).collect();
         let radials: Vec<_> = numbered(raw.radials.0).into_iter().map(|(k, r)| self.star(k, r)).collect();
         let rods: Vec<_> = numbered(raw.rod.0).into_iter().map(|(k, r)| self.rod(k, r)).collect();
-        let coax = raw.coax.map(|c| self.coax(c));
-        let feed = self.feed(raw.feed);
+        let coax = raw.coax.0.map(|c| self.coax(c));
+        let feed = raw.feed.0.and_then(|f| self.feed(f));
         let mut parts: Vec<_> = numbered(raw.choke.0).into_iter().map(|(k, c)| self.choke(k, c)).collect();
         parts.extend(numbered(raw.inline.0).into_iter().map(|(k, p)| self.inline(k, p)));
-        let radio = self.radio(raw.radio);
-        let operation = self.operation(raw.operation);
-        let limits = self.limits(raw.limits);
+        let radio = self.radio(raw.radio.0);
+        let operation = raw.operation.0.and_then(|o| self.operation(o));
+        let limits = self.limits(raw.limits.0);
         Some(Station {
-            title: raw.title.map_or_else(String::new, |t| t.value),
+            title: raw.title.0.map_or_else(String::new, |t| t.value),
+            in_feet: raw.unit.0.is_some_and(|u| u.value == LengthUnit::Foot),
             earth: earth?,
             points: points?,
             wires: wires.into_iter().collect::<Option<_>>()?,

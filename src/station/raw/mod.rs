@@ -15,7 +15,7 @@ mod scalars;
 pub(crate) use conductors::{RawCoax, RawJacket, RawLoss, RawRadials, RawRod, RawWire};
 pub(crate) use earth::RawEarth;
 pub(crate) use feed::{RawFeed, RawFeedAt, RawTransformer};
-pub(crate) use operation::{RawBody, RawLimits, RawOperation, RawRadio, RawStation};
+pub(crate) use operation::{RawBody, RawLimits, RawOperation, RawRadio, RawStation, RawVariant};
 pub(crate) use parts::{RawChoke, RawImpedance, RawInline, RawResonant};
 pub use points::{Coordinates, GRASS_M, Height, PathPoint};
 pub(crate) use points::{RawLocation, RawPoints};
@@ -75,7 +75,13 @@ impl<T: Read> Take for Written<T> {
         match table.get(key) {
             Some(node) => T::read(node, reader).map(|value| Written { value, place: Some(node.place) }),
             None => {
-                reader.fault(table.place, format!("`{key}` is missing here"), format!("add a line `{key} = …`"));
+                let whole_file = table.place.end == 0;
+                let (what, mend) = if whole_file {
+                    (format!("there is no [{key}]"), format!("add a table [{key}]"))
+                } else {
+                    (format!("`{key}` is missing here"), format!("add a line `{key} = …`"))
+                };
+                reader.fault(table.place, what, mend);
                 None
             }
         }
@@ -91,6 +97,26 @@ impl<T: Read> Take for Option<Written<T>> {
     }
 }
 
+/// A table the file must have; `None` with its faults collected where it is missing or cannot be read.
+#[derive(Debug, Clone)]
+pub(crate) struct Needed<T>(pub(crate) Option<Written<T>>);
+
+impl<T: Read> Take for Needed<T> {
+    fn take(table: &Node, key: &str, reader: &mut Reader) -> Option<Self> {
+        Some(Needed(<Written<T> as Take>::take(table, key, reader)))
+    }
+}
+
+/// A table or value the file may have; `None` also, with its faults collected, where it cannot be read.
+#[derive(Debug, Clone)]
+pub(crate) struct Welcome<T>(pub(crate) Option<Written<T>>);
+
+impl<T: Read> Take for Welcome<T> {
+    fn take(table: &Node, key: &str, reader: &mut Reader) -> Option<Self> {
+        Some(Welcome(<Option<Written<T>> as Take>::take(table, key, reader).flatten()))
+    }
+}
+
 /// Tables in double brackets; one that cannot be read is left out, with its faults collected.
 #[derive(Debug, Clone)]
 pub(crate) struct Rows<T>(pub(crate) Vec<Written<T>>);
@@ -100,7 +126,7 @@ impl<T: Read> Take for Rows<T> {
         let Some(node) = table.get(key) else { return Some(Rows(Vec::new())) };
         if !matches!(node.kind, NodeKind::List(_)) {
             reader.wrong_type(node, &format!("the table in double brackets, [[{key}]]: there may be several"));
-            return None;
+            return Some(Rows(Vec::new()));
         }
         let rows = node
             .items()
@@ -125,20 +151,26 @@ impl<T: Read> Read for Vec<Written<T>> {
     }
 }
 
-impl<T: schemars::JsonSchema> schemars::JsonSchema for Written<T> {
-    fn schema_name() -> Cow<'static, str> {
-        T::schema_name()
-    }
-    fn schema_id() -> Cow<'static, str> {
-        T::schema_id()
-    }
-    fn inline_schema() -> bool {
-        T::inline_schema()
-    }
-    fn json_schema(generator: &mut schemars::SchemaGenerator) -> schemars::Schema {
-        T::json_schema(generator)
-    }
+/// The schema of what is wrapped.
+macro_rules! schema_of_inner {
+    ($($wrapper:ident),*) => {$(
+        impl<T: schemars::JsonSchema> schemars::JsonSchema for $wrapper<T> {
+            fn schema_name() -> Cow<'static, str> {
+                T::schema_name()
+            }
+            fn schema_id() -> Cow<'static, str> {
+                T::schema_id()
+            }
+            fn inline_schema() -> bool {
+                T::inline_schema()
+            }
+            fn json_schema(generator: &mut schemars::SchemaGenerator) -> schemars::Schema {
+                T::json_schema(generator)
+            }
+        }
+    )*};
 }
+schema_of_inner!(Written, Needed, Welcome);
 
 impl<T: schemars::JsonSchema> schemars::JsonSchema for Rows<T> {
     fn schema_name() -> Cow<'static, str> {
@@ -160,10 +192,15 @@ macro_rules! table {
         #[schemars(deny_unknown_fields, rename = $title)]
         pub(crate) struct $name { $($(#[doc = $doc])* pub(crate) $key: $kind,)* }
 
+        impl $name {
+            /// Every key of this table.
+            pub(crate) const KEYS: &'static [&'static str] = &[$(stringify!($key)),*];
+        }
+
         impl $crate::station::raw::Read for $name {
             fn read(node: &$crate::station::node::Node, reader: &mut $crate::station::raw::Reader) -> Option<Self> {
                 let example = concat!("a table with the keys ", $("`", stringify!($key), "` ",)*);
-                if !reader.keys(node, &[$(stringify!($key)),*], example.trim_end()) {
+                if !reader.keys(node, Self::KEYS, example.trim_end()) {
                     return None;
                 }
                 $(let $key = <$kind as $crate::station::raw::Take>::take(node, stringify!($key), reader);)*

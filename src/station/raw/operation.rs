@@ -1,10 +1,11 @@
 //! `[radio]`, `[operation]`, `[limits]`, `[[variant]]` and the file as a whole.
 
 use super::{
-    Current, Frequency, LengthUnit, Node, NodeKind, Power, RawChoke, RawCoax, RawEarth, RawFeed, RawInline, RawPoints,
-    RawRadials, RawRod, RawWire, Read, Reader, Resistance, Rows, table,
+    Current, Frequency, LengthUnit, Needed, Node, NodeKind, Power, RawChoke, RawCoax, RawEarth, RawFeed, RawInline,
+    RawPoints, RawRadials, RawRod, RawWire, Read, Reader, Resistance, Rows, Welcome, table,
 };
 use crate::quantity;
+use crate::station::node::Entry;
 use crate::station::source::Written;
 use schemars::{JsonSchema, Schema, SchemaGenerator, json_schema};
 use std::borrow::Cow;
@@ -73,7 +74,7 @@ table! {
 
 /// `set` of a variant: paths and values, applied to the document before it is read.
 #[derive(Debug, Clone)]
-pub(crate) struct RawSettings;
+pub(crate) struct RawSettings(pub(crate) Vec<Entry>);
 
 impl Read for RawSettings {
     fn read(node: &Node, reader: &mut Reader) -> Option<Self> {
@@ -81,7 +82,7 @@ impl Read for RawSettings {
             reader.wrong_type(node, "a table of paths and values: { \"earth.soil\" = \"wet meadow\" }");
             return None;
         }
-        Some(RawSettings)
+        Some(RawSettings(node.entries().to_vec()))
     }
 }
 
@@ -110,11 +111,11 @@ table! {
     /// One station.
     RawStation as "station" {
         /// What the station is called.
-        title: Option<Written<String>>,
+        title: Welcome<String>,
         /// Of bare lengths, "m" (default) or "ft".
-        unit: Option<Written<LengthUnit>>,
+        unit: Welcome<LengthUnit>,
         /// The earth below the station.
-        earth: Written<RawEarth>,
+        earth: Needed<RawEarth>,
         /// Named places.
         points: RawPoints,
         /// Bare or jacketed conductors.
@@ -122,9 +123,9 @@ table! {
         /// Stars of equal wires.
         radials: Rows<RawRadials>,
         /// The feed line.
-        coax: Option<Written<RawCoax>>,
+        coax: Welcome<RawCoax>,
         /// The feed point.
-        feed: Written<RawFeed>,
+        feed: Needed<RawFeed>,
         /// Common-mode chokes.
         choke: Rows<RawChoke>,
         /// Lumped parts in conductors.
@@ -132,11 +133,11 @@ table! {
         /// Driven earth rods.
         rod: Rows<RawRod>,
         /// The radio.
-        radio: Option<Written<RawRadio>>,
+        radio: Welcome<RawRadio>,
         /// Power and frequencies.
-        operation: Written<RawOperation>,
+        operation: Needed<RawOperation>,
         /// What `place` and `cut` must keep.
-        limits: Option<Written<RawLimits>>,
+        limits: Welcome<RawLimits>,
         /// Uncertainties the answer must survive.
         variant: Rows<RawVariant>,
     }

@@ -170,7 +170,7 @@ impl Take for RawPoints {
         let Some(node) = table.get(key) else { return Some(RawPoints::default()) };
         if !matches!(node.kind, NodeKind::Table(_)) {
             reader.wrong_type(node, "a table of named points: feed = [0, 0, 3]");
-            return None;
+            return Some(RawPoints::default());
         }
         let points = node.entries().iter().filter_map(|entry| {
             let location = RawLocation::read(&entry.value, reader)?;

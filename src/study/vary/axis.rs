@@ -54,7 +54,8 @@ impl Axis {
     /// [`AxisError`] for anything else, and for ranges that are empty, reversed or without end.
     pub fn read(text: &str) -> Result<Self, AxisError> {
         let error = |reason: String, mend: &str| AxisError { text: text.to_owned(), reason, mend: mend.to_owned() };
-        let example = "write for example 'coax.length = 5 m .. 25 m by 0.5 m' or 'earth.soil = \"wet meadow\" | \"dry sand\"'";
+        let example =
+            "write for example 'coax.length = 5 m .. 25 m by 0.5 m' or 'earth.soil = \"wet meadow\" | \"dry sand\"'";
         let Some((path, values)) = text.split_once('=') else {
             return Err(error("there is no `=`".to_owned(), example));
         };
@@ -210,7 +211,9 @@ fn outside_quotes<'a>(text: &'a str, separator: &str) -> Vec<&'a str> {
 fn plain(text: &str) -> String {
     let text = text.trim();
     match text.strip_prefix('"').and_then(|t| t.strip_suffix('"')) {
-        Some(inside) if inside.starts_with(char::is_alphabetic) && !matches!(inside, "true" | "false" | "inf" | "nan") => {
+        Some(inside)
+            if inside.starts_with(char::is_alphabetic) && !matches!(inside, "true" | "false" | "inf" | "nan") =>
+        {
             inside.to_owned()
         }
         _ => text.to_owned(),

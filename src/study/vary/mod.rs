@@ -172,7 +172,9 @@ fn check_paths(document: &Document, plan: &Plan, points: &[Vec<String>]) -> Resu
         if let Err(more) = document.with(std::slice::from_ref(&set)) {
             match &mut refused {
                 // The places of later faults refer to other texts than those of the first.
-                Some(all) => all.faults.extend(more.faults.into_iter().map(|f| crate::station::Fault { place: None, ..f })),
+                Some(all) => {
+                    all.faults.extend(more.faults.into_iter().map(|f| crate::station::Fault { place: None, ..f }))
+                }
                 None => refused = Some(more),
             }
         }

@@ -7,7 +7,7 @@ use crate::mesh::{Density, Mesh};
 use crate::outcome::vary::VariedRow;
 use crate::ports::PortModel;
 use crate::station::{Catalogue, Document, Refused};
-use crate::study::predict::{At, SECOND_MESH};
+use crate::study::predict::{At, SECOND_MESH, Solved};
 use crate::study::store::{Finished, StoreError};
 use rayon::prelude::*;
 use std::collections::{HashMap, HashSet};
@@ -21,7 +21,7 @@ const POINTS_A_THREAD: usize = 16;
 type Tables = HashMap<TableKey, Arc<Surroundings>>;
 
 /// Solved meshes by their geometry.
-type Shared = HashMap<String, Arc<Solved>>;
+type Shared = HashMap<String, Arc<Meshed>>;
 
 /// Keeps a finished point.
 type Put<'a> = &'a (dyn Fn(&Job, &Finished) -> Result<(), StoreError> + Sync);
@@ -50,10 +50,10 @@ struct Variant {
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
 struct TableKey([u64; 4]);
 
-/// A mesh and its ports at every frequency of the station.
-struct Solved {
+/// A mesh, solved at every frequency of the station, and the ports of the second mesh where that is wanted.
+struct Meshed {
     fine: Interaction,
-    models: Vec<(PortModel, Option<PortModel>)>,
+    solved: Vec<(Solved, Option<PortModel>)>,
 }
 
 impl TableKey {
@@ -92,7 +92,8 @@ impl Work<'_> {
     }
 
     fn run_batch(&self, jobs: Vec<Job>, tables: &Tables, watch: &dyn Watch, put: Put) -> Result<(), StoreError> {
-        let groups: Vec<&[Job]> = jobs.chunk_by(|a, b| a.geometry().is_some() && a.geometry() == b.geometry()).collect();
+        let groups: Vec<&[Job]> =
+            jobs.chunk_by(|a, b| a.geometry().is_some() && a.geometry() == b.geometry()).collect();
         groups.into_par_iter().try_for_each(|group| {
             let mut shared = Shared::new();
             for (n, job) in group.iter().enumerate() {
@@ -120,7 +121,7 @@ impl Work<'_> {
                 Ok(layout) => Ok(Variant { name, geometry: geometry(&layout), layout }),
                 Err(faults) => Err(Refused { sources: station.sources.clone(), faults }),
             };
-            stations(&document, self.catalogue)?.into_iter().map(place).collect()
+            document.stations(self.catalogue)?.into_iter().map(place).collect()
         };
         Job { point, variants: place().map_err(|refused| in_words(&refused)) }
     }
@@ -156,7 +157,7 @@ impl Work<'_> {
         (Finished { want, rows, failed }, solved)
     }
 
-    fn solve(&self, variant: &Variant, tables: &Tables) -> Result<Solved, String> {
+    fn solve(&self, variant: &Variant, tables: &Tables) -> Result<Meshed, String> {
         let layout = &variant.layout;
         let highest = layout.operation.frequencies.iter().map(|p| p.frequency_hz).fold(0.0, f64::max);
         if highest <= 0.0 {
@@ -169,19 +170,20 @@ impl Work<'_> {
         let coarse = self.plan.want.iter().any(|q| q.needs_second_mesh()).then(|| mesh(default * SECOND_MESH));
         let models = layout.operation.frequencies.par_iter().map(|point| {
             let at = At::new(layout, point, table(tables, layout, point.frequency_hz)?);
-            let solve = |mesh: &Interaction| at.solve(mesh).map_err(|e| e.to_string());
-            Ok((solve(&fine)?, coarse.as_ref().map(solve).transpose()?))
+            let solved = at.solve(&fine).map_err(|e| e.to_string())?;
+            let second = coarse.as_ref().map(|mesh| at.ports(mesh).map_err(|e| e.to_string())).transpose()?;
+            Ok((solved, second))
         });
-        let models = models.collect::<Result<Vec<_>, String>>()?;
-        Ok(Solved { fine, models })
+        let solved = models.collect::<Result<Vec<_>, String>>()?;
+        Ok(Meshed { fine, solved })
     }
 
-    fn rows(&self, variant: &Variant, tables: &Tables, solved: &Solved) -> Result<Vec<VariedRow>, String> {
+    fn rows(&self, variant: &Variant, tables: &Tables, meshed: &Meshed) -> Result<Vec<VariedRow>, String> {
         let layout = &variant.layout;
-        let points = layout.operation.frequencies.par_iter().zip(&solved.models);
-        let rows = points.map(|(point, (model, second))| {
+        let points = layout.operation.frequencies.par_iter().zip(&meshed.solved);
+        let rows = points.map(|(point, (solved, second))| {
             let at = At::new(layout, point, table(tables, layout, point.frequency_hz)?);
-            let outcome = at.outcome_of(&solved.fine, model, second.as_ref()).map_err(|e| e.to_string())?;
+            let outcome = at.outcome_of(&meshed.fine, solved, second.as_ref()).map_err(|e| e.to_string())?;
             Ok(VariedRow {
                 variant: variant.name.clone(),
                 frequency_hz: point.frequency_hz,
@@ -222,14 +224,6 @@ fn geometry(layout: &Layout) -> String {
     let frequencies: Vec<_> = layout.operation.frequencies.iter().map(|p| p.frequency_hz).collect();
     let all = (&layout.conductors, &layout.junctions, feed, gaps, layout.earth, frequencies);
     format!("{all:?}")
-}
-
-/// The stations of a document: the file as written under the name "nominal", then its variants.
-fn stations(
-    document: &Document,
-    catalogue: &dyn Catalogue,
-) -> Result<Vec<(String, crate::station::Station)>, Refused> {
-    Ok(vec![("nominal".to_owned(), document.station(catalogue)?)])
 }
 
 /// Drops tables no point at work needs, builds those that are missing.

@@ -1,0 +1,108 @@
+//! Chebyshev coefficients over a box of three variables, and their restriction to half of it.
+
+use super::chebyshev::{analysis, restriction};
+use super::patch::combine;
+use super::spectral_sum::LANES;
+
+/// Values or coefficients `[lane][first][second][third]`.
+#[derive(Debug, Clone)]
+pub(super) struct Tensor {
+    pub size: [usize; 3],
+    pub data: Vec<f64>,
+}
+
+impl Tensor {
+    /// From values at Chebyshev points to coefficients.
+    pub(super) fn transformed(self) -> Self {
+        let size = self.size;
+        (0..3).fold(self, |tensor, axis| tensor.along(axis, size[axis], &analysis(size[axis])))
+    }
+
+    /// Coefficients on the lower or upper half of one axis.
+    pub(super) fn half(&self, axis: usize, upper: bool, least: usize) -> Self {
+        let from = self.size[axis];
+        let to = (from / 2 + 4).max(least).min(from.max(least));
+        let (low, high) = if upper { (0.0, 1.0) } else { (-1.0, 0.0) };
+        self.along(axis, to, &restriction(to, from, low, high))
+    }
+
+    /// Multiplies one axis by a `to` × `size[axis]` matrix.
+    fn along(&self, axis: usize, to: usize, matrix: &[f64]) -> Self {
+        let from = self.size[axis];
+        let inner: usize = self.size[axis + 1..].iter().product();
+        let mut size = self.size;
+        size[axis] = to;
+        let outer = self.data.len() / (from * inner);
+        let mut data = vec![0.0; outer * to * inner];
+        if inner == 1 {
+            let turned: Vec<f64> = (0..from * to).map(|p| matrix[(p % to) * from + p / to]).collect();
+            for (source, target) in self.data.chunks_exact(from).zip(data.chunks_exact_mut(to)) {
+                combine(target, source, &turned);
+            }
+            return Self { size, data };
+        }
+        for (source, target) in self.data.chunks_exact(from * inner).zip(data.chunks_exact_mut(to * inner)) {
+            for (row, weights) in target.chunks_exact_mut(inner).zip(matrix.chunks_exact(from)) {
+                combine(row, weights, source);
+            }
+        }
+        Self { size, data }
+    }
+
+    /// One coefficient.
+    pub(super) fn at(&self, lane: usize, [i, j, k]: [usize; 3]) -> f64 {
+        let [a, b, c] = self.size;
+        if i < a && j < b && k < c { self.data[((lane * a + i) * b + j) * c + k] } else { 0.0 }
+    }
+
+    /// Sums of the coefficients of total degree above `degree`, by the axis that has the highest degree; the largest
+    /// over the lanes.
+    pub(super) fn dropped(&self, degree: usize) -> [f64; 3] {
+        let mut worst = [0.0f64; 3];
+        let [a, b, c] = self.size;
+        for lane in self.data.chunks_exact(a * b * c) {
+            let mut sums = [0.0; 3];
+            for (i, layer) in lane.chunks_exact(b * c).enumerate() {
+                for (j, row) in layer.chunks_exact(c).enumerate() {
+                    let from = (degree + 1).saturating_sub(i + j).min(c);
+                    let most = i.max(j);
+                    // Up to degree `most` in the last variable one of the first two leads, beyond it the last.
+                    let turn = (most + 1).clamp(from, c);
+                    let inner: f64 = row[from..turn].iter().map(|v| v.abs()).sum();
+                    let outer: f64 = row[turn..].iter().map(|v| v.abs()).sum();
+                    sums[if i >= j { 0 } else { 1 }] += inner;
+                    sums[2] += outer;
+                }
+            }
+            for (w, s) in worst.iter_mut().zip(sums) {
+                *w = w.max(s);
+            }
+        }
+        worst
+    }
+
+    /// Along each axis the largest of its last two layers' sums of magnitudes over the lanes: how well it is resolved.
+    pub(super) fn tail(&self) -> [f64; 3] {
+        let [a, b, c] = self.size;
+        let mut worst = [0.0f64; 3];
+        for lane in 0..LANES {
+            let mut sums = [[0.0; 2]; 3];
+            for i in 0..a {
+                for j in 0..b {
+                    for k in 0..c {
+                        let size = self.at(lane, [i, j, k]).abs();
+                        for (axis, (index, count)) in [(i, a), (j, b), (k, c)].into_iter().enumerate() {
+                            if index + 2 >= count {
+                                sums[axis][count - 1 - index] += size;
+                            }
+                        }
+                    }
+                }
+            }
+            for (w, s) in worst.iter_mut().zip(sums) {
+                *w = w.max(s[0]).max(s[1]);
+            }
+        }
+        worst
+    }
+}

@@ -1,0 +1,75 @@
+//! Station files that cannot be meant, under `malformed/`: each says in its first three lines which line is at fault,
+//! a piece of the reason and a piece of the mend.
+
+use super::few::Few;
+use braidwise::layout::Layout;
+use braidwise::station::{Document, Refused};
+use std::path::{Path, PathBuf};
+
+struct Case {
+    name: String,
+    text: String,
+    line: usize,
+    reason: String,
+    mend: String,
+}
+
+fn cases() -> Vec<Case> {
+    let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/commands/malformed");
+    let mut files: Vec<PathBuf> = std::fs::read_dir(folder).unwrap().map(|f| f.unwrap().path()).collect();
+    files.sort();
+    files.iter().map(|file| case(file)).collect()
+}
+
+fn case(file: &Path) -> Case {
+    let text = std::fs::read_to_string(file).unwrap();
+    let head = |key: &str| {
+        let start = format!("# {key}: ");
+        let line = text.lines().take(3).find_map(|l| l.strip_prefix(&start));
+        line.unwrap_or_else(|| panic!("{} has no `{start}` in its head", file.display())).to_owned()
+    };
+    let (line, reason, mend) = (head("line").parse().unwrap(), head("reason"), head("mend"));
+    let name = file.file_name().unwrap().to_string_lossy().into_owned();
+    Case { name, line, reason, mend, text }
+}
+
+/// Everything `check` does before it says a file is good.
+fn judge(case: &Case) -> Result<(), Refused> {
+    for (_, station) in Document::parse(&case.text, &case.name)?.stations(&Few)? {
+        Layout::place(&station).map_err(|faults| Refused { sources: station.sources.clone(), faults })?;
+    }
+    Ok(())
+}
+
+#[test]
+fn fifty_files_are_refused_with_line_reason_and_mend() {
+    let cases = cases();
+    assert!(cases.len() >= 50, "{} files", cases.len());
+    let mut wrong = Vec::new();
+    for case in &cases {
+        let Err(refused) = judge(case) else {
+            wrong.push(format!("{} is not refused", case.name));
+            continue;
+        };
+        let told = refused.faults.iter().any(|fault| {
+            let line = fault.place.and_then(|p| refused.sources.line_column(p)).map(|(line, _)| line);
+            line == Some(case.line) && fault.reason.contains(&case.reason) && fault.mend.contains(&case.mend)
+        });
+        let shown = refused.to_string();
+        if !told || !shown.contains(&format!("{}:{}:", case.name, case.line)) {
+            wrong.push(format!(
+                "{}: wanted line {} with {:?} and {:?}, told\n{shown}",
+                case.name, case.line, case.reason, case.mend
+            ));
+        }
+    }
+    assert!(wrong.is_empty(), "{}", wrong.join("\n\n"));
+}
+
+#[test]
+fn one_mistake_is_one_fault() {
+    // A few faults drag others with them; most must not.
+    let cases = cases();
+    let single = cases.iter().filter(|c| judge(c).is_err_and(|r| r.faults.len() == 1)).count();
+    assert!(single * 10 >= cases.len() * 8, "only {single} of {} files are told one fault", cases.len());
+}
