@@ -40,7 +40,10 @@ fn main() {
     let one = rayon::ThreadPoolBuilder::new().num_threads(1).build().expect("a pool of one thread");
     let perfect = "kind = \"perfect\"";
     let soil = "kind = \"soil\"\npermittivity = 13\nconductivity = \"5 mS/m\"";
-    println!("{:<34} {:>8} {:>10} {:>10} {:>10} {:>9} {:>9}", "case", "unknowns", "solve", "scan", "alone", "ratio", "alone");
+    println!(
+        "{:<34} {:>8} {:>10} {:>10} {:>10} {:>9} {:>9}",
+        "case", "unknowns", "solve", "scan", "alone", "ratio", "alone"
+    );
     for (name, earth, hz, density, to_m, body) in [
         ("perfect earth, open end", perfect, 28.4e6, 1.0, 24.0, "\"none\""),
         ("perfect earth, open end, finer", perfect, 28.4e6, 1.7, 36.0, "\"none\""),

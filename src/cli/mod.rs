@@ -9,6 +9,7 @@ mod load;
 mod place;
 mod predict;
 mod stop;
+mod vary;
 
 use clap::{Parser, Subcommand};
 use std::process::ExitCode;
@@ -31,6 +32,8 @@ enum Command {
     Place(place::Place),
     /// How long a wire, a counterpoise or the coax should be
     Cut(cut::Cut),
+    /// Any values of the file varied together, on a grid or by Latin hypercube
+    Vary(vary::Vary),
 }
 
 /// Run the program on its arguments.
@@ -42,6 +45,7 @@ pub fn run() -> ExitCode {
         Command::Predict(predict) => predict.run(),
         Command::Place(place) => place.run(),
         Command::Cut(cut) => cut.run(),
+        Command::Vary(vary) => vary.run(),
     };
     match done {
         Ok(()) => ExitCode::SUCCESS,

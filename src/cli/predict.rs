@@ -6,13 +6,21 @@ use super::stop::Stop;
 use crate::layout::{BandEdge, FrequencyPoint};
 use crate::mesh::Density;
 use crate::outcome::Prediction;
+use crate::outcome::curve::InterpolatedCurve;
 use crate::output;
 use crate::quantity;
+use crate::study::curve::{CurveOptions, PortCurve, of_bands, spaced};
 use crate::study::{Options, pattern, predict_variants};
 use clap::Args;
 use num_complex::Complex64;
+use serde::Serialize;
 use std::io::Write;
 use std::path::PathBuf;
+
+/// Points of a curve over a range.
+const CURVE_POINTS: usize = 541;
+/// Points of a curve over a band.
+const BAND_POINTS: usize = 21;
 
 /// Arguments of `predict`.
 #[derive(Debug, Args)]
@@ -38,14 +46,17 @@ pub(super) struct Predict {
     #[arg(long, value_enum, default_value_t)]
     units: Length,
     /// Lowest frequency of a curve instead of the station's own frequencies, e.g. "3 MHz"
-    #[arg(long, value_name = "FREQUENCY", requires = "to")]
+    #[arg(long, value_name = "FREQUENCY", requires = "to", conflicts_with = "curve")]
     from: Option<String>,
     /// Highest frequency of the curve
     #[arg(long, value_name = "FREQUENCY", requires = "from")]
     to: Option<String>,
-    /// Points of the curve
-    #[arg(long, value_name = "N", default_value_t = 201, requires = "from")]
+    /// Frequencies of the range to solve in full beside the curve, equally spaced
+    #[arg(long, value_name = "N", default_value_t = 21, requires = "from")]
     points: usize,
+    /// Add a curve through each of the station's bands
+    #[arg(long)]
+    curve: bool,
     /// Finer (above 1) or coarser mesh, to see how much it matters
     #[arg(long, value_name = "FACTOR", default_value_t = 1.0)]
     density: f64,
@@ -57,28 +68,38 @@ impl Predict {
             return Err(Stop::Usage(format!("--density {} is outside 0.3 to 20", self.density)));
         }
         let loaded = load(&self.station)?;
-        let options = Options { density: Density { factor: self.density }, frequencies: self.curve()? };
+        let range = self.range()?;
+        let density = Density { factor: self.density };
+        let options = Options { density, frequencies: range.map(|(low, high)| full(low, high, self.points)) };
         let mut prediction = predict_variants(&loaded.layout, &loaded.variants, &options)?;
         if self.pattern || self.plots.is_some() {
             for frequency_hz in pattern_frequencies(&prediction) {
                 prediction.patterns.push(pattern(&loaded.layout, frequency_hz)?);
             }
         }
+        let options = CurveOptions { density, ..CurveOptions::default() };
+        let curve = match range {
+            Some((low, high)) => {
+                let curve = PortCurve::new(&loaded.layout, low, high, options)?;
+                Some(curve.outcome(&spaced(low, high, CURVE_POINTS))?)
+            }
+            None if self.curve => Some(of_bands(&loaded.layout, BAND_POINTS, options)?),
+            None => None,
+        };
         if let Some(path) = &self.csv {
             output::whole_file(path, |w| output::csv::prediction(&prediction, w))?;
         }
         if let Some(path) = &self.touchstone {
-            let points: Vec<(f64, Complex64)> = prediction
-                .frequencies
-                .iter()
-                .map(|f| (f.frequency_hz, Complex64::new(f.radio.resistance_ohm, f.radio.reactance_ohm)))
-                .collect();
+            let points = at_the_radio(&prediction, curve.as_ref());
             output::whole_file(path, |w| output::touchstone::s1p(&points, loaded.layout.radio.impedance_ohm, w))?;
         }
         if let Some(folder) = &self.plots {
             let references = references(&loaded.layout);
             let mut drawn =
                 output::pictures::write_all_prediction(&prediction, &references, folder, self.units.into())?;
+            if let Some(curve) = &curve {
+                drawn.extend(output::pictures::write_curve(&curve.curve, folder)?);
+            }
             for pattern in &prediction.patterns {
                 drawn.extend(output::pictures::write_pattern(pattern, folder)?);
             }
@@ -87,28 +108,31 @@ impl Predict {
             }
         }
         if self.json {
-            let text = serde_json::to_string(&prediction).map_err(|e| Stop::Could(e.to_string()))?;
+            let document = Document { prediction: &prediction, curve: curve.as_ref() };
+            let text = serde_json::to_string(&document).map_err(|e| Stop::Could(e.to_string()))?;
             writeln!(std::io::stdout().lock(), "{text}")?;
         } else {
             let table = output::table::prediction(&prediction, &references(&loaded.layout), self.units.into());
-            writeln!(std::io::stdout().lock(), "{table}")?;
+            let mut out = std::io::stdout().lock();
+            writeln!(out, "{table}")?;
+            if let Some(curve) = &curve {
+                writeln!(out, "\n{}", of_the_curve(curve))?;
+            }
         }
         Ok(())
     }
 
-    /// Equally spaced frequencies where a curve was asked for.
-    fn curve(&self) -> Result<Option<Vec<FrequencyPoint>>, Stop> {
+    /// Ends of the range where a curve was asked for, Hz.
+    fn range(&self) -> Result<Option<(f64, f64)>, Stop> {
         let (Some(from), Some(to)) = (&self.from, &self.to) else { return Ok(None) };
         let read = |text: &String| quantity::frequency_hz(text).map_err(|e| Stop::Usage(e.to_string()));
         let (low, high) = (read(from)?, read(to)?);
-        if low >= high || self.points < 2 {
+        if low <= 0.0 || low >= high || self.points < 2 {
             return Err(Stop::Usage(format!(
                 "--from {from} --to {to}: the range is empty or reversed; --points needs 2 or more"
             )));
         }
-        let step = (high - low) / (self.points - 1) as f64;
-        let point = |n: usize| FrequencyPoint { frequency_hz: low + step * n as f64, band: None, edge: None };
-        Ok(Some((0..self.points).map(point).collect()))
+        Ok(Some((low, high)))
     }
 }
 
@@ -125,4 +149,45 @@ fn pattern_frequencies(prediction: &Prediction) -> Vec<f64> {
         }
     }
     out.into_iter().map(|(_, frequency_hz)| frequency_hz).collect()
+}
+
+/// What `--json` prints: the prediction, and the curve where one was asked for.
+#[derive(Serialize)]
+struct Document<'a> {
+    #[serde(flatten)]
+    prediction: &'a Prediction,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    curve: Option<&'a InterpolatedCurve>,
+}
+
+fn full(low_hz: f64, high_hz: f64, points: usize) -> Vec<FrequencyPoint> {
+    let point = |frequency_hz| FrequencyPoint { frequency_hz, band: None, edge: None };
+    spaced(low_hz, high_hz, points).into_iter().map(point).collect()
+}
+
+/// What the radio sees: along the curve where there is one, else at the frequencies solved.
+fn at_the_radio(prediction: &Prediction, curve: Option<&InterpolatedCurve>) -> Vec<(f64, Complex64)> {
+    match curve {
+        Some(curve) => curve.curve.points.iter().map(|p| (p.frequency_hz, p.radio_ohm)).collect(),
+        None => {
+            let solved = prediction.frequencies.iter();
+            solved.map(|f| (f.frequency_hz, Complex64::new(f.radio.resistance_ohm, f.radio.reactance_ohm))).collect()
+        }
+    }
+}
+
+/// One line on how the curve was made and how far it can be trusted.
+fn of_the_curve(curve: &InterpolatedCurve) -> String {
+    let points = &curve.curve.points;
+    let ends =
+        points.first().zip(points.last()).map_or((0.0, 0.0), |(a, b)| (a.frequency_hz / 1e6, b.frequency_hz / 1e6));
+    let short = if curve.converged { "" } else { "; the solves ran out before it was met, so take a shorter range" };
+    format!(
+        "Curve from {:.4} to {:.4} MHz: interpolated from {} solves, largest error estimated at {:.2} % ({:.2} % aimed at{short})",
+        ends.0,
+        ends.1,
+        curve.solves,
+        100.0 * curve.error_estimate,
+        100.0 * curve.tolerance,
+    )
 }

@@ -5,6 +5,7 @@ use crate::station::Refused;
 use crate::study::Failure;
 use std::io::IsTerminal;
 use std::process::ExitCode;
+use std::sync::atomic::{AtomicBool, Ordering};
 
 /// A reason to stop.
 #[derive(Debug)]
@@ -15,6 +16,8 @@ pub(super) enum Stop {
     Usage(String),
     /// File, disk or numbers: status 1.
     Could(String),
+    /// Ctrl-C, and what was kept: status 130.
+    Interrupted(String),
 }
 
 impl Stop {
@@ -24,6 +27,7 @@ impl Stop {
             Stop::Refused(refused) => (2, refused.show(std::io::stderr().is_terminal())),
             Stop::Usage(text) => (2, format!("error: {text}")),
             Stop::Could(text) => (1, format!("error: {text}")),
+            Stop::Interrupted(text) => (130, format!("interrupted: {text}")),
         };
         eprintln!("{text}");
         ExitCode::from(status)
@@ -58,11 +62,29 @@ impl From<std::io::Error> for Stop {
     }
 }
 
+/// Set while a command finishes the points at work after a first Ctrl-C.
+static FINISHES: AtomicBool = AtomicBool::new(false);
+/// Set by the first Ctrl-C of such a command.
+static INTERRUPTED: AtomicBool = AtomicBool::new(false);
+
 /// End with status 130 on Ctrl-C. Files appear whole or not at all, so nothing needs tidying.
 pub(super) fn on_interrupt() {
     // a second handler in one process cannot happen: `run` is called once
     let _ = ctrlc::set_handler(|| {
+        if FINISHES.load(Ordering::SeqCst) && !INTERRUPTED.swap(true, Ordering::SeqCst) {
+            return;
+        }
         eprintln!("interrupted");
         std::process::exit(130);
     });
+}
+
+/// From here on the first Ctrl-C only sets [`interrupted`]; a second one ends the program at once.
+pub(super) fn finish_points_at_work() {
+    FINISHES.store(true, Ordering::SeqCst);
+}
+
+/// Whether Ctrl-C was pressed since [`finish_points_at_work`].
+pub(super) fn interrupted() -> bool {
+    INTERRUPTED.load(Ordering::SeqCst)
 }

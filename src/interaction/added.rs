@@ -90,7 +90,17 @@ impl Added {
             conductor_elements: Vec::new(),
         };
         let close = Interaction::among(close, with_image, |i, _| i < new_count);
-        Self { elements: mesh.elements.clone(), places, leading, close, close_ids, new_count, far_ids, runs, with_image }
+        Self {
+            elements: mesh.elements.clone(),
+            places,
+            leading,
+            close,
+            close_ids,
+            new_count,
+            far_ids,
+            runs,
+            with_image,
+        }
     }
 
     /// Columns at a frequency, and potentials at spots (elements of the mesh).
@@ -114,13 +124,7 @@ impl Added {
     }
 
     /// New elements among themselves and with those near.
-    fn close_pairs(
-        &self,
-        earth: &Surroundings,
-        spots: &[Spot],
-        z: &mut Matrix,
-        potentials: &mut [Vec<Complex64>],
-    ) {
+    fn close_pairs(&self, earth: &Surroundings, spots: &[Spot], z: &mut Matrix, potentials: &mut [Vec<Complex64>]) {
         // only the places that occur, so that the matrix stays small
         let mut used: Vec<usize> = Vec::new();
         let mut maps: Vec<UnknownMap> = self.close_ids.iter().map(|&k| self.map(k)).collect();
@@ -159,13 +163,7 @@ impl Added {
     }
 
     /// New elements with all others.
-    fn far_pairs(
-        &self,
-        earth: &Surroundings,
-        spots: &[Spot],
-        z: &mut Matrix,
-        potentials: &mut [Vec<Complex64>],
-    ) {
+    fn far_pairs(&self, earth: &Surroundings, spots: &[Spot], z: &mut Matrix, potentials: &mut [Vec<Complex64>]) {
         let medium = earth.air();
         let further = z.ncols();
         for run in &self.runs {
@@ -283,13 +281,7 @@ impl Added {
     }
 
     /// The rest of the soil's potentials between new elements and those far from them.
-    fn soil_pairs(
-        &self,
-        earth: &Surroundings,
-        spots: &[Spot],
-        z: &mut Matrix,
-        potentials: &mut [Vec<Complex64>],
-    ) {
+    fn soil_pairs(&self, earth: &Surroundings, spots: &[Spot], z: &mut Matrix, potentials: &mut [Vec<Complex64>]) {
         let Some(soil) = earth.soil() else { return };
         let medium = earth.air();
         let all = z.nrows();
@@ -344,7 +336,10 @@ fn runs(mesh: &Mesh, new_ids: &[usize]) -> Vec<Run> {
     for &k in new_ids {
         let follows = |last: &usize| {
             let (d, e) = (&mesh.elements[*last], &mesh.elements[k]);
-            *last + 1 == k && d.conductor == e.conductor && d.tangent.dot(&e.tangent) > 1.0 - 1e-12 && d.below == e.below
+            *last + 1 == k
+                && d.conductor == e.conductor
+                && d.tangent.dot(&e.tangent) > 1.0 - 1e-12
+                && d.below == e.below
         };
         match groups.last_mut() {
             Some(group) if group.last().is_some_and(follows) => group.push(k),

@@ -70,3 +70,36 @@ impl CurveOutcome {
         Self { station: prediction.station.clone(), reference_ohm, swr_limit, bands, points }
     }
 }
+
+/// A curve interpolated from a few solves, and what is known of its error.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct InterpolatedCurve {
+    /// Feed point and radio.
+    #[serde(flatten)]
+    pub curve: CurveOutcome,
+    /// The outside of the coax, one entry a point; empty without one.
+    pub shield: Vec<ShieldCurvePoint>,
+    /// Estimated largest relative error of the interpolated port model between the solves.
+    pub error_estimate: f64,
+    /// What the estimate was to come below.
+    pub tolerance: f64,
+    /// Whether it did, within the solves allowed.
+    pub converged: bool,
+    /// Solves spent.
+    pub solves: usize,
+}
+
+/// The shield at one frequency of a curve; RMS magnitudes at the operating power.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize, Deserialize)]
+pub struct ShieldCurvePoint {
+    /// Hz.
+    pub frequency_hz: f64,
+    /// Going on into the shack, A.
+    pub entry_current_a: f64,
+    /// V; `None` below the surface.
+    pub entry_voltage_v: Option<f64>,
+    /// Where the shield meets the radio, A; 0 at an open end.
+    pub end_current_a: f64,
+    /// V; `None` below the surface.
+    pub end_voltage_v: Option<f64>,
+}

@@ -8,6 +8,7 @@ pub mod cut;
 pub mod joint;
 pub mod pattern;
 pub mod place;
+pub mod vary;
 
 use crate::layout::{BandEdge, Warning};
 use num_complex::Complex64;

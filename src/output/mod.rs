@@ -10,6 +10,7 @@ pub mod pictures;
 pub mod place_text;
 pub mod table;
 pub mod touchstone;
+pub mod vary;
 
 mod bands;
 mod cautions;

@@ -4,13 +4,16 @@
 //! [`crate::network`].
 
 mod barycentric;
+pub mod curve;
+pub mod cut;
 pub mod earthing;
 mod pattern;
 mod place;
-pub mod cut;
 mod predict;
 pub mod rational;
 mod shield;
+pub mod store;
+pub mod vary;
 
 pub use pattern::pattern;
 pub use place::timing;

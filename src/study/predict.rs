@@ -3,7 +3,7 @@
 use super::shield;
 use crate::field::{FarField, Solution};
 use crate::halfspace::HalfSpaceError;
-use crate::interaction::{Extent, Factored, Interaction, Legendre, SingularMatrix, Surroundings};
+use crate::interaction::{Extent, Factored, Interaction, Legendre, PotentialMap, SingularMatrix, Surroundings};
 use crate::layout::{Earth, EarthAt, FrequencyPoint, Layout, PartKind, Soil, Warning};
 use crate::mesh::{Density, Mesh};
 use crate::network::{self, Chain, ChainError, ChainState};
@@ -16,9 +16,10 @@ use crate::quantity::SPEED_OF_LIGHT_M_PER_S;
 use nalgebra::DVector;
 use num_complex::Complex64;
 use rayon::prelude::*;
+use std::sync::Arc;
 
 /// Second mesh for the error estimate, as a share of the default density.
-const SECOND_MESH: f64 = 0.7;
+pub(super) const SECOND_MESH: f64 = 0.7;
 /// The true error over the difference of the two meshes, from the convergence table.
 const ERROR_OVER_DIFFERENCE: f64 = 2.0;
 
@@ -44,6 +45,22 @@ pub enum Failure {
         frequency_hz: f64,
         /// What.
         source: SingularMatrix,
+    },
+    /// A curve's range.
+    #[error("a curve needs a range that rises: {:.4} to {:.4} MHz is none", .low_hz / 1e6, .high_hz / 1e6)]
+    Range {
+        /// Start as given.
+        low_hz: f64,
+        /// End as given.
+        high_hz: f64,
+    },
+    /// Values that are no numbers.
+    #[error("no curve from {:.4} to {:.4} MHz: some of its solves came out as no number", .low_hz / 1e6, .high_hz / 1e6)]
+    Curve {
+        /// Start of the range.
+        low_hz: f64,
+        /// End of the range.
+        high_hz: f64,
     },
     /// The soil's constants cannot be.
     #[error(transparent)]
@@ -72,7 +89,10 @@ pub fn predict(layout: &Layout, options: &Options) -> Result<Prediction, Failure
     let extent = Extent::of(layout);
     let frequencies = points
         .par_iter()
-        .map(|point| At::new(layout, point, &extent)?.outcome(&fine, &coarse))
+        .map(|point| {
+            let earth = Surroundings::new(point.frequency_hz, layout.earth.at(point.frequency_hz), &extent)?;
+            At::new(layout, point, Arc::new(earth)).outcome(&fine, &coarse)
+        })
         .collect::<Result<Vec<_>, _>>()?;
     Ok(Prediction {
         braidwise: env!("CARGO_PKG_VERSION").to_string(),
@@ -111,14 +131,14 @@ pub fn predict_variants(
 }
 
 /// A solved station at one frequency, at the operating power.
-pub(super) struct Solved {
+pub(super) struct Operating {
     pub(super) mesh: Mesh,
     pub(super) solution: Solution,
     pub(super) feed_w: f64,
 }
 
 /// Solve a station at one frequency on its default mesh.
-pub(super) fn solve_one(layout: &Layout, frequency_hz: f64) -> Result<Solved, Failure> {
+pub(super) fn solve_one(layout: &Layout, frequency_hz: f64) -> Result<Operating, Failure> {
     let interaction =
         Interaction::new(Mesh::new(layout, frequency_hz, Density::default(), &[]), layout.earth != Earth::None);
     let earth = Surroundings::new(frequency_hz, layout.earth.at(frequency_hz), &Extent::of(layout))?;
@@ -128,7 +148,7 @@ pub(super) fn solve_one(layout: &Layout, frequency_hz: f64) -> Result<Solved, Fa
     let state = Chain::of(layout).at(frequency_hz).state(currents[0].inv(), layout.operation.power_w)?;
     let scale = Complex64::from((2.0 * state.feed_w / currents[0].re).sqrt());
     let solution = Solution::new(interaction.mesh(), &model.unknowns(&parts, &currents)).scaled(scale);
-    Ok(Solved { mesh: interaction.mesh().clone(), solution, feed_w: state.feed_w })
+    Ok(Operating { mesh: interaction.mesh().clone(), solution, feed_w: state.feed_w })
 }
 
 /// The station's warnings and those of its earth at the frequencies asked for, each once.
@@ -159,38 +179,50 @@ fn earth_outcome(earth: Earth) -> EarthOutcome {
 }
 
 /// One frequency of one station.
-struct At<'a> {
+pub(super) struct At<'a> {
     layout: &'a Layout,
     point: &'a FrequencyPoint,
-    earth: Surroundings,
+    earth: Arc<Surroundings>,
+}
+
+/// A mesh solved at one frequency.
+pub(super) struct Solved {
+    pub(super) model: PortModel,
+    pub(super) potentials: PotentialMap,
 }
 
 impl<'a> At<'a> {
-    fn new(layout: &'a Layout, point: &'a FrequencyPoint, extent: &Extent) -> Result<Self, Failure> {
-        let earth = Surroundings::new(point.frequency_hz, layout.earth.at(point.frequency_hz), extent)?;
-        Ok(Self { layout, point, earth })
+    /// The earth must be that of the layout at this frequency, and cover its extent.
+    pub(super) fn new(layout: &'a Layout, point: &'a FrequencyPoint, earth: Arc<Surroundings>) -> Self {
+        Self { layout, point, earth }
     }
 
     fn outcome(&self, fine: &Interaction, coarse: &Interaction) -> Result<FrequencyOutcome, Failure> {
+        let (solved, second) = (self.solve(fine)?, self.ports(coarse)?);
+        self.outcome_of(fine, &solved, Some(&second))
+    }
+
+    /// Everything at this frequency from a solved mesh and the solution of the second mesh; without the second the
+    /// discretisation error is not a number.
+    pub(super) fn outcome_of(
+        &self,
+        fine: &Interaction,
+        solved: &Solved,
+        second: Option<&PortModel>,
+    ) -> Result<FrequencyOutcome, Failure> {
         let f = self.point.frequency_hz;
         let parts: Vec<Complex64> = self.layout.parts.iter().map(|p| network::impedance(&p.law, f)).collect();
-        let singular = |source| Failure::Singular { frequency_hz: f, source };
-        let (matrix, potentials) = fine.fill_with_potentials(&self.earth);
-        let factored = Factored::new(matrix).map_err(singular)?;
-        let model = PortModel::from_factored(fine.mesh(), &factored).map_err(singular)?;
-        let currents = model.loaded_currents(&parts);
-        let coarse_model = PortModel::solve(coarse, &self.earth).map_err(singular)?;
-        let coarse_currents = coarse_model.loaded_currents(&parts);
+        let currents = solved.model.loaded_currents(&parts);
         let feed_ohm = currents[0].inv();
-        let second_ohm = coarse_currents[0].inv();
         let state = Chain::of(self.layout).at(f).state(feed_ohm, self.layout.operation.power_w)?;
         // with 1 V (peak) at the gap the feed takes ½ Re Y; everything is linear in the voltage
         let voltage_peak_v = (2.0 * state.feed_w / currents[0].re).sqrt();
-        let solution =
-            Solution::new(fine.mesh(), &model.unknowns(&parts, &currents)).scaled(Complex64::from(voltage_peak_v));
+        let solution = Solution::new(fine.mesh(), &solved.model.unknowns(&parts, &currents))
+            .scaled(Complex64::from(voltage_peak_v));
         let port_currents = currents * Complex64::from(voltage_peak_v);
-        let conductors = self.conductors(fine.mesh(), &solution, &potentials.along(&solution.currents));
-        let difference = feed_ohm - second_ohm;
+        let conductors = self.conductors(fine.mesh(), &solution, &solved.potentials.along(&solution.currents));
+        let nan = Complex64::new(f64::NAN, f64::NAN);
+        let difference = second.map_or(nan, |second| feed_ohm - second.loaded_currents(&parts)[0].inv());
         Ok(FrequencyOutcome {
             frequency_hz: f,
             band: self.point.band.clone(),
@@ -216,6 +248,22 @@ impl<'a> At<'a> {
                 reactance_ohm: ERROR_OVER_DIFFERENCE * difference.im.abs(),
             },
         })
+    }
+
+    /// The ports of a mesh of this station at this frequency.
+    pub(super) fn ports(&self, interaction: &Interaction) -> Result<PortModel, Failure> {
+        let frequency_hz = self.point.frequency_hz;
+        PortModel::solve(interaction, &self.earth).map_err(|source| Failure::Singular { frequency_hz, source })
+    }
+
+    /// The ports with the potentials along every conductor.
+    pub(super) fn solve(&self, interaction: &Interaction) -> Result<Solved, Failure> {
+        let frequency_hz = self.point.frequency_hz;
+        let singular = |source| Failure::Singular { frequency_hz, source };
+        let (matrix, potentials) = interaction.fill_with_potentials(&self.earth);
+        let factored = Factored::new(matrix).map_err(singular)?;
+        let model = PortModel::from_factored(interaction.mesh(), &factored).map_err(singular)?;
+        Ok(Solved { model, potentials })
     }
 
     fn soil(&self) -> Option<SoilOutcome> {

@@ -5,3 +5,4 @@ mod cut;
 mod few;
 mod malformed;
 mod place;
+mod vary;

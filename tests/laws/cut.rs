@@ -73,7 +73,9 @@ impl Dice {
 }
 
 fn random_station(dice: &mut Dice, kind: usize) -> String {
-    let earth = ["kind = \"none\"", "kind = \"perfect\"", "kind = \"soil\"\npermittivity = 13\nconductivity = \"5 mS/m\""][kind % 3];
+    let earth =
+        ["kind = \"none\"", "kind = \"perfect\"", "kind = \"soil\"\npermittivity = 13\nconductivity = \"5 mS/m\""]
+            [kind % 3];
     let up = dice.roll(3.0, 8.0);
     let tip = [dice.roll(-8.0, 8.0), dice.roll(8.0, 22.0), dice.roll(3.0, 12.0)];
     let low = dice.roll(0.3, 2.5);
@@ -239,7 +241,8 @@ fn open_coax_is_worst_near_half_waves_and_bonded_coax_near_odd_quarters() {
         assert!(worst.iter().any(|l| (l / (n * wave / 2.0) - 1.0).abs() < 0.08), "no worst length near {n} half waves");
     }
     let bonded = format!("{open}\n[[rod]]\nat = \"far\"\nlength = 1.5\ndiameter = \"14 mm\"\n")
-        .replace("8.6]", "1.0]").replace(", 9]", ", 1.4]");
+        .replace("8.6]", "1.0]")
+        .replace(", 9]", ", 1.4]");
     let open_low = open.replace("8.6]", "1.0]").replace(", 9]", ", 1.4]");
     let (bonded, open_low) = (peaks(&bonded, "swr"), peaks(&open_low, "swr"));
     eprintln!("bonded: {bonded:?}, low and open {open_low:?}, quarter wave {:.2} m", wave / 4.0);

@@ -152,10 +152,8 @@ pub(super) fn stock(
     for (name, length_m) in stock {
         match fault(stations, &axis.target, *length_m, None) {
             None => kept.push((name.clone(), *length_m)),
-            Some(fault) => warnings.push(left_out(
-                &axis.target,
-                &format!("{name} from the stock cannot be built here: {}", fault.reason),
-            )),
+            Some(fault) => warnings
+                .push(left_out(&axis.target, &format!("{name} from the stock cannot be built here: {}", fault.reason))),
         }
     }
     kept

@@ -148,7 +148,9 @@ impl Family {
         let master = group.len() - 1;
         let levels = levels(&group[master].mesh, &ids[master], &count, group.len());
         let master_keys = unknown_keys(&group[master].mesh, &ids[master]);
-        let level_of = |key: &UnknownKey| key.iter().map(|(id, _)| levels.get(id).copied()).max_by_key(|l| l.unwrap_or(usize::MAX)).flatten();
+        let level_of = |key: &UnknownKey| {
+            key.iter().map(|(id, _)| levels.get(id).copied()).max_by_key(|l| l.unwrap_or(usize::MAX)).flatten()
+        };
         let mut order: Vec<(usize, usize)> =
             master_keys.iter().enumerate().filter_map(|(u, key)| Some((level_of(key)?, u))).collect();
         order.sort_unstable();
@@ -174,10 +176,8 @@ impl Family {
     }
 
     fn readings(&self, earths: &[Surroundings]) -> Result<Vec<(usize, Vec<Reading>)>, CutFailure> {
-        let by_frequency = earths
-            .par_iter()
-            .map(|earth| self.at(earth))
-            .collect::<Result<Vec<Vec<Reading>>, CutFailure>>()?;
+        let by_frequency =
+            earths.par_iter().map(|earth| self.at(earth)).collect::<Result<Vec<Vec<Reading>>, CutFailure>>()?;
         let of = |m: usize| by_frequency.iter().map(|row| row[m]).collect();
         Ok(self.members.iter().enumerate().map(|(m, member)| (member.placed.index, of(m))).collect())
     }
@@ -189,8 +189,7 @@ impl Family {
         let (z, rows) = self.interaction.fill_probed(earth, &spots);
         let n = self.order.len();
         let common = Leading::new(Mat::from_fn(n, n, |i, j| z[(self.order[i], self.order[j])]));
-        let rows: Vec<Vec<Complex64>> =
-            rows.iter().map(|row| self.order.iter().map(|&u| row[u]).collect()).collect();
+        let rows: Vec<Vec<Complex64>> = rows.iter().map(|row| self.order.iter().map(|&u| row[u]).collect()).collect();
         self.members
             .par_iter()
             .map(|member| match &common {

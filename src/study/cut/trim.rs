@@ -78,7 +78,11 @@ mod tests {
                 let z = |f: f64| {
                     let detuning = 2.0 * (f / at - 1.0);
                     let one = Complex64::new(1.0, if is_high { -8.0 } else { 8.0 } * detuning);
-                    if is_high { Complex64::from(resistance) / Complex64::new(1.0, 8.0 * detuning) } else { one * resistance }
+                    if is_high {
+                        Complex64::from(resistance) / Complex64::new(1.0, 8.0 * detuning)
+                    } else {
+                        one * resistance
+                    }
                 };
                 let f = 7.1e6;
                 let feeds = [f * (1.0 - SPREAD), f, f * (1.0 + SPREAD)].map(z);

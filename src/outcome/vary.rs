@@ -1,0 +1,229 @@
+//! What `vary` answers: the values tried, and the quantities wanted of each, a row a variant and frequency.
+
+use super::{FrequencyOutcome, PartOutcome, ShieldOutcome};
+use crate::layout::BandEdge;
+use serde::{Deserialize, Serialize};
+
+/// The answer of `vary`, points in the order they were asked for.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct VaryOutcome {
+    /// Version of the program.
+    pub braidwise: String,
+    /// Title of the station.
+    pub station: String,
+    /// Paths of the values varied.
+    pub over: Vec<String>,
+    /// Quantities wanted, in the order of the values of a row.
+    pub want: Vec<String>,
+    /// The points.
+    pub points: Vec<VariedPoint>,
+}
+
+/// One set of values.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct VariedPoint {
+    /// The values, in the order of the paths, as they would be typed.
+    pub values: Vec<String>,
+    /// A row a variant and frequency; empty where the point failed.
+    pub rows: Vec<VariedRow>,
+    /// Why there are no results.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub failed: Option<String>,
+}
+
+/// The quantities of a point in one variant at one frequency.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct VariedRow {
+    /// Variant; "nominal" is the file as written.
+    pub variant: String,
+    /// Hz.
+    pub frequency_hz: f64,
+    /// Band, where the frequency came from one.
+    pub band: Option<String>,
+    /// Where in the band.
+    pub edge: Option<BandEdge>,
+    /// In the order of the quantities wanted; `None` where the quantity does not exist.
+    pub values: Vec<Option<f64>>,
+}
+
+/// How a quantity is read off the outcome of a frequency.
+type Reader = fn(&FrequencyOutcome) -> Option<f64>;
+
+/// Every quantity that needs no name of a part. Currents and voltages are RMS magnitudes.
+const PLAIN: [(&str, Reader); 31] = [
+    ("feed.resistance_ohm", |f| Some(f.feed.resistance_ohm)),
+    ("feed.reactance_ohm", |f| Some(f.feed.reactance_ohm)),
+    ("feed.voltage_v", |f| Some(f.feed.voltage_v.norm())),
+    ("feed.current_a", |f| Some(f.feed.current_a.norm())),
+    ("radio.resistance_ohm", |f| Some(f.radio.resistance_ohm)),
+    ("radio.reactance_ohm", |f| Some(f.radio.reactance_ohm)),
+    ("radio.swr", |f| Some(f.radio.swr)),
+    ("shield.entry_at_m", |f| shield(f, |s| Some(s.entry_at_m))),
+    ("shield.entry_current_a", |f| shield(f, |s| Some(s.entry_current_a))),
+    ("shield.entry_voltage_v", |f| shield(f, |s| s.entry_voltage_v)),
+    ("shield.end_current_a", |f| shield(f, |s| Some(s.end_current_a))),
+    ("shield.end_voltage_v", |f| shield(f, |s| s.end_voltage_v)),
+    ("shield.last_metre_current_a", |f| shield(f, |s| Some(s.last_metre_current_a))),
+    ("shield.largest_current_a", |f| shield(f, |s| Some(s.largest_current_a))),
+    ("shield.largest_at_m", |f| shield(f, |s| Some(s.largest_at_m))),
+    ("shield.largest_voltage_v", |f| shield(f, |s| s.largest_voltage_v)),
+    ("shield.largest_voltage_at_m", |f| shield(f, |s| s.largest_voltage_at_m)),
+    ("power.input_w", |f| Some(f.power.input_w)),
+    ("power.radiated_w", |f| Some(f.power.radiated_w)),
+    ("power.radiated_fraction", |f| Some(f.power.radiated_w / f.power.input_w)),
+    ("power.earth_w", |f| Some(f.power.earth_w)),
+    ("power.metal_w", |f| Some(f.power.metal_w)),
+    ("power.line_w", |f| Some(f.power.line_w)),
+    ("power.transformer_w", |f| Some(f.power.transformer_w)),
+    ("power.chokes_w", |f| Some(total_w(&f.power.chokes))),
+    ("power.inline_w", |f| Some(total_w(&f.power.inline))),
+    ("power.unaccounted_w", |f| f.power.unaccounted_w),
+    ("earth.permittivity", |f| f.earth.map(|e| e.permittivity)),
+    ("earth.conductivity_s_per_m", |f| f.earth.map(|e| e.conductivity_s_per_m)),
+    ("discretisation.resistance_ohm", |f| Some(f.discretisation.resistance_ohm)),
+    ("discretisation.reactance_ohm", |f| Some(f.discretisation.reactance_ohm)),
+];
+
+/// What can be asked of a choke or inline part.
+const OF_A_PART: [(&str, fn(&PartOutcome) -> f64); 3] =
+    [("dissipated_w", |p| p.dissipated_w), ("current_a", |p| p.current_a), ("voltage_v", |p| p.voltage_v)];
+
+/// What is asked for where nothing is.
+pub const DEFAULT_WANT: [&str; 5] =
+    ["feed.resistance_ohm", "feed.reactance_ohm", "radio.swr", "shield.entry_current_a", "shield.entry_voltage_v"];
+
+fn shield(f: &FrequencyOutcome, read: impl Fn(&ShieldOutcome) -> Option<f64>) -> Option<f64> {
+    f.shield.as_ref().and_then(read)
+}
+
+fn total_w(parts: &[PartOutcome]) -> f64 {
+    parts.iter().map(|p| p.dissipated_w).sum()
+}
+
+/// One quantity of a station at a frequency.
+#[derive(Debug, Clone, Copy)]
+enum Source {
+    Plain(Reader),
+    Part { inline: bool, read: fn(&PartOutcome) -> f64 },
+    Joint,
+}
+
+/// A quantity by its name, ready to be read off an outcome.
+#[derive(Debug, Clone)]
+pub struct Quantity {
+    /// The name as asked for: "radio.swr", "choke.entry choke.dissipated_w".
+    pub name: String,
+    part: String,
+    source: Source,
+}
+
+/// A quantity that does not exist.
+#[derive(Debug, Clone, PartialEq, Eq, thiserror::Error)]
+#[error("there is no quantity \"{name}\"; {}", offer(.nearest))]
+pub struct NoQuantity {
+    /// What was asked for.
+    pub name: String,
+    /// Names that are near.
+    pub nearest: Vec<String>,
+}
+
+fn offer(nearest: &[String]) -> String {
+    let quoted: Vec<String> = nearest.iter().map(|n| format!("\"{n}\"")).collect();
+    format!("nearest are {}", quoted.join(", "))
+}
+
+impl Quantity {
+    /// A quantity by name, for a station with these chokes and inline parts.
+    ///
+    /// # Errors
+    /// [`NoQuantity`] with the nearest names.
+    pub fn named(name: &str, chokes: &[String], inline: &[String]) -> Result<Self, NoQuantity> {
+        let name = name.trim();
+        let found = |part: &str, source| Ok(Self { name: name.to_owned(), part: part.to_owned(), source });
+        if let Some((_, read)) = PLAIN.iter().find(|(n, _)| *n == name) {
+            return found("", Source::Plain(*read));
+        }
+        if let Some(part) = name.strip_prefix("joint.").and_then(|n| n.strip_suffix(".current_a")) {
+            return found(part, Source::Joint);
+        }
+        for (kind, names, is_inline) in [("choke", chokes, false), ("inline", inline, true)] {
+            for part in names {
+                for (field, read) in OF_A_PART {
+                    if name == format!("{kind}.{part}.{field}") {
+                        return found(part, Source::Part { inline: is_inline, read });
+                    }
+                }
+            }
+        }
+        Err(NoQuantity { name: name.to_owned(), nearest: nearest(name, chokes, inline) })
+    }
+
+    /// Its value; `None` where it does not exist.
+    #[must_use]
+    pub fn of(&self, outcome: &FrequencyOutcome) -> Option<f64> {
+        let value = match self.source {
+            Source::Plain(read) => read(outcome),
+            Source::Part { inline, read } => {
+                let parts = if inline { &outcome.power.inline } else { &outcome.power.chokes };
+                parts.iter().find(|p| p.name == self.part).map(read)
+            }
+            Source::Joint => outcome.joints.iter().find(|j| j.conductor == self.part).map(|j| j.current_a),
+        };
+        value.filter(|v| v.is_finite())
+    }
+
+    /// Whether it rests on the second, coarser mesh.
+    #[must_use]
+    pub fn needs_second_mesh(&self) -> bool {
+        self.name.starts_with("discretisation.")
+    }
+}
+
+/// Names of all quantities, "NAME" standing for a part or conductor.
+#[must_use]
+pub fn quantity_names() -> Vec<String> {
+    let parts = ["choke", "inline"].into_iter().flat_map(|kind| OF_A_PART.map(|(f, _)| format!("{kind}.NAME.{f}")));
+    let plain = PLAIN.iter().map(|(name, _)| (*name).to_owned());
+    plain.chain(parts).chain(["joint.CONDUCTOR.current_a".to_owned()]).collect()
+}
+
+fn nearest(name: &str, chokes: &[String], inline: &[String]) -> Vec<String> {
+    let mut names: Vec<String> = PLAIN.iter().map(|(n, _)| (*n).to_owned()).collect();
+    for (kind, parts) in [("choke", chokes), ("inline", inline)] {
+        names.extend(parts.iter().flat_map(|part| OF_A_PART.map(|(f, _)| format!("{kind}.{part}.{f}"))));
+    }
+    // What was typed is compared with the whole name and with its last step, so that "swr" finds "radio.swr".
+    let score = |candidate: &str| {
+        let last = candidate.rsplit('.').next().unwrap_or(candidate);
+        strsim::jaro_winkler(name, candidate).max(strsim::jaro_winkler(name, last))
+    };
+    names.sort_by(|a, b| score(b).total_cmp(&score(a)));
+    names.truncate(3);
+    names
+}
+
+#[cfg(test)]
+mod tests {
+    #![allow(clippy::unwrap_used)]
+    use super::*;
+
+    #[test]
+    fn an_unknown_quantity_is_refused_with_the_nearest_names() {
+        let near = |name: &str| Quantity::named(name, &["entry choke".to_owned()], &[]).unwrap_err().nearest;
+        assert_eq!(near("swr")[0], "radio.swr");
+        assert_eq!(near("shield.entry_curent_a")[0], "shield.entry_current_a");
+        assert_eq!(near("choke.entry.dissipated_w")[0], "choke.entry choke.dissipated_w");
+        assert!(Quantity::named("choke.entry choke.voltage_v", &["entry choke".to_owned()], &[]).is_ok());
+    }
+
+    #[test]
+    fn every_name_is_told_apart_and_every_default_exists() {
+        let mut names = quantity_names();
+        names.sort();
+        names.dedup();
+        assert_eq!(names.len(), quantity_names().len());
+        for name in DEFAULT_WANT {
+            assert!(Quantity::named(name, &[], &[]).is_ok(), "{name}");
+        }
+    }
+}

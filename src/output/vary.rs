@@ -1,0 +1,182 @@
+//! Varied points as comma-separated rows, as JSON lines, and as a table of the extremes.
+
+use super::OutputError;
+use crate::outcome::vary::{VariedPoint, VariedRow, VaryOutcome};
+use comfy_table::{CellAlignment, Table, presets};
+use serde_json::{Map, Value, json};
+use std::io::Write;
+
+/// One row a point, variant and frequency; the values varied first, under their paths. A failed point is one row with the reason in
+/// the last column. An empty field is a quantity that does not exist there.
+///
+/// # Errors
+/// [`OutputError`] when the stream refuses.
+pub fn csv(outcome: &VaryOutcome, out: &mut dyn Write) -> Result<(), OutputError> {
+    let mut rows = ::csv::Writer::from_writer(out);
+    let fixed = ["variant", "frequency_hz", "band", "edge"];
+    let heads = outcome.over.iter().map(String::as_str).chain(fixed).chain(outcome.want.iter().map(String::as_str));
+    rows.write_record(heads.chain(["failed"]))?;
+    for point in &outcome.points {
+        for row in &point.rows {
+            let (band, edge) = (row.band.clone().unwrap_or_default(), edge(row).unwrap_or_default());
+            let numbers = row.values.iter().map(|v| v.map(|v| v.to_string()).unwrap_or_default());
+            let before = [row.variant.clone(), row.frequency_hz.to_string(), band, edge];
+            rows.write_record(point.values.iter().cloned().chain(before).chain(numbers).chain([String::new()]))?;
+        }
+        if let Some(reason) = &point.failed {
+            let nothing = std::iter::repeat_n(String::new(), fixed.len() + outcome.want.len());
+            rows.write_record(point.values.iter().cloned().chain(nothing).chain([reason.clone()]))?;
+        }
+    }
+    rows.flush()?;
+    Ok(())
+}
+
+/// One JSON object a line: the values varied under "over", then variant, frequency and every quantity by name; a failed point
+/// is one line with "failed".
+///
+/// # Errors
+/// [`OutputError`] when the stream refuses.
+pub fn json_lines(outcome: &VaryOutcome, out: &mut dyn Write) -> Result<(), OutputError> {
+    for point in &outcome.points {
+        let over: Map<String, Value> =
+            outcome.over.iter().cloned().zip(point.values.iter().cloned().map(Value::from)).collect();
+        for row in &point.rows {
+            let mut line = Map::new();
+            line.insert("over".to_owned(), Value::Object(over.clone()));
+            line.insert("variant".to_owned(), json!(row.variant));
+            line.insert("frequency_hz".to_owned(), json!(row.frequency_hz));
+            line.insert("band".to_owned(), json!(row.band));
+            line.insert("edge".to_owned(), json!(row.edge));
+            line.extend(outcome.want.iter().cloned().zip(row.values.iter().map(|v| json!(v))));
+            writeln!(out, "{}", Value::Object(line))?;
+        }
+        if let Some(reason) = &point.failed {
+            writeln!(out, "{}", json!({ "over": over, "failed": reason }))?;
+        }
+    }
+    Ok(())
+}
+
+/// For every quantity its least and greatest value and where they are, then how many points failed and why.
+#[must_use]
+pub fn table(outcome: &VaryOutcome) -> String {
+    let mut table = Table::new();
+    table.load_preset(presets::ASCII_MARKDOWN);
+    table.set_header(["quantity", "least", "where", "greatest", "where"]);
+    for (n, name) in outcome.want.iter().enumerate() {
+        let all = || {
+            outcome
+                .points
+                .iter()
+                .flat_map(|p| p.rows.iter().map(move |r| (p, r)))
+                .filter_map(|(p, r)| Some((p, r, r.values[n]?)))
+        };
+        let least = all().min_by(|a, b| a.2.total_cmp(&b.2));
+        let greatest = all().max_by(|a, b| a.2.total_cmp(&b.2));
+        let mut cells = vec![name.clone()];
+        for end in [least, greatest] {
+            match end {
+                Some((point, row, value)) => cells.extend([figure(value), whereabouts(outcome, point, row)]),
+                None => cells.extend(["none".to_owned(), String::new()]),
+            }
+        }
+        table.add_row(cells);
+    }
+    for column in [1, 3] {
+        if let Some(column) = table.column_mut(column) {
+            column.set_cell_alignment(CellAlignment::Right);
+        }
+    }
+    let failed: Vec<&VariedPoint> = outcome.points.iter().filter(|p| p.failed.is_some()).collect();
+    let mut text = format!("{}\n\n{table}\n\n{} points", outcome.station, outcome.points.len());
+    match failed.first() {
+        None => text.push_str(", none failed\n"),
+        Some(first) => text.push_str(&format!(
+            ", {} failed, the first at {}: {}\n",
+            failed.len(),
+            values(outcome, first),
+            first.failed.as_deref().unwrap_or_default()
+        )),
+    }
+    text
+}
+
+fn figure(value: f64) -> String {
+    if value != 0.0 && !(1e-3..1e6).contains(&value.abs()) { format!("{value:.3e}") } else { format!("{value:.4}") }
+}
+
+fn values(outcome: &VaryOutcome, point: &VariedPoint) -> String {
+    let each: Vec<String> = outcome.over.iter().zip(&point.values).map(|(path, v)| format!("{path} = {v}")).collect();
+    each.join(", ")
+}
+
+fn whereabouts(outcome: &VaryOutcome, point: &VariedPoint, row: &VariedRow) -> String {
+    let variant = if row.variant == "nominal" { String::new() } else { format!(", {}", row.variant) };
+    format!("{}, {:.4} MHz{variant}", values(outcome, point), row.frequency_hz / 1e6)
+}
+
+fn edge(row: &VariedRow) -> Option<String> {
+    serde_json::to_value(row.edge?).ok()?.as_str().map(str::to_owned)
+}
+
+#[cfg(test)]
+mod tests {
+    #![allow(clippy::unwrap_used)]
+    use super::*;
+
+    fn outcome() -> VaryOutcome {
+        let row = |variant: &str, swr: f64| VariedRow {
+            variant: variant.to_owned(),
+            frequency_hz: 7.1e6,
+            band: Some("40 m".to_owned()),
+            edge: Some(crate::layout::BandEdge::Middle),
+            values: vec![Some(swr), None],
+        };
+        let point = |value: &str, rows: Vec<VariedRow>, failed: Option<&str>| VariedPoint {
+            values: vec![value.to_owned()],
+            rows,
+            failed: failed.map(str::to_owned),
+        };
+        VaryOutcome {
+            braidwise: "0".to_owned(),
+            station: "hut".to_owned(),
+            over: vec!["coax.length".to_owned()],
+            want: vec!["radio.swr".to_owned(), "power.unaccounted_w".to_owned()],
+            points: vec![
+                point("4 m", vec![row("nominal", 3.5), row("flood", 1.25)], None),
+                point("40 m", Vec::new(), Some("the route is 10 m, long: move the last point")),
+            ],
+        }
+    }
+
+    fn written(write: fn(&VaryOutcome, &mut dyn Write) -> Result<(), OutputError>) -> Vec<String> {
+        let mut bytes = Vec::new();
+        write(&outcome(), &mut bytes).unwrap();
+        String::from_utf8(bytes).unwrap().lines().map(str::to_owned).collect()
+    }
+
+    #[test]
+    fn rows_carry_values_quantities_and_the_reason_of_a_failure() {
+        let lines = written(csv);
+        assert_eq!(lines[0], "coax.length,variant,frequency_hz,band,edge,radio.swr,power.unaccounted_w,failed");
+        assert_eq!(lines[1], "4 m,nominal,7100000,40 m,middle,3.5,,");
+        assert_eq!(lines[3], "40 m,,,,,,,\"the route is 10 m, long: move the last point\"");
+    }
+
+    #[test]
+    fn json_lines_are_one_object_each() {
+        let lines: Vec<Value> = written(json_lines).iter().map(|l| serde_json::from_str(l).unwrap()).collect();
+        assert_eq!(lines.len(), 3);
+        assert_eq!(lines[1]["radio.swr"], 1.25);
+        assert_eq!(lines[1]["power.unaccounted_w"], Value::Null);
+        assert_eq!(lines[2]["over"]["coax.length"], "40 m");
+    }
+
+    #[test]
+    fn the_table_says_where_the_extremes_are() {
+        let text = table(&outcome());
+        assert!(text.contains("coax.length = 4 m, 7.1000 MHz, flood"), "{text}");
+        assert!(text.contains("2 points, 1 failed, the first at coax.length = 40 m"), "{text}");
+    }
+}
