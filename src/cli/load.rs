@@ -10,8 +10,9 @@ use crate::station::{Document, Embedded, Refused, Station};
 /// A station read and placed.
 pub(super) struct Loaded {
     pub(super) document: Document,
-    pub(super) station: Station,
     pub(super) layout: Layout,
+    /// Variants of the file by name, the nominal station not among them.
+    pub(super) variants: Vec<(String, Layout)>,
 }
 
 /// Read, change, check and place.
@@ -28,9 +29,18 @@ pub(super) fn load(args: &StationArgs) -> Result<Loaded, Stop> {
     })?;
     let sets = args.sets.iter().map(|s| set(s)).collect::<Result<Vec<_>, _>>()?;
     let document = Document::parse(&text, &name)?.with(&sets)?;
-    let station = document.station(&Embedded)?;
-    let layout = Layout::place(&station).map_err(|faults| Refused { sources: station.sources.clone(), faults })?;
-    Ok(Loaded { document, station, layout })
+    let mut placed = Vec::new();
+    for (name, station) in document.stations(&Embedded)? {
+        placed.push((name, place(&station)?));
+    }
+    // the first is the station as written
+    let (_, layout) = placed.remove(0);
+    Ok(Loaded { document, layout, variants: placed })
+}
+
+/// Place a station in space.
+pub(super) fn place(station: &Station) -> Result<Layout, Refused> {
+    Layout::place(station).map_err(|faults| Refused { sources: station.sources.clone(), faults })
 }
 
 /// PATH=VALUE into its halves.

@@ -3,14 +3,14 @@
 use super::flags::{Length, StationArgs};
 use super::load::{load, references};
 use super::stop::Stop;
-use crate::layout::FrequencyPoint;
+use crate::layout::{BandEdge, FrequencyPoint, Layout};
 use crate::mesh::Density;
 use crate::outcome::Prediction;
 use crate::outcome::curve::InterpolatedCurve;
 use crate::output;
 use crate::quantity;
 use crate::study::curve::{CurveOptions, PortCurve, of_bands, spaced};
-use crate::study::{Options, predict};
+use crate::study::{Options, pattern, predict_variants};
 use clap::Args;
 use num_complex::Complex64;
 use serde::Serialize;
@@ -39,6 +39,9 @@ pub(super) struct Predict {
     /// Draw the site, the coax and the curves into a folder (SVG and PNG)
     #[arg(long, value_name = "DIR")]
     plots: Option<PathBuf>,
+    /// Radiation pattern at the middle of every band (in --json; drawn with --plots)
+    #[arg(long)]
+    pattern: bool,
     /// Units of length in tables and pictures
     #[arg(long, value_enum, default_value_t)]
     units: Length,
@@ -68,22 +71,33 @@ impl Predict {
         let range = self.range()?;
         let density = Density { factor: self.density };
         let options = Options { density, frequencies: range.map(|(low, high)| full(low, high, self.points)) };
-        let prediction = predict(&loaded.layout, &options)?;
-        let options = CurveOptions { density, ..CurveOptions::default() };
-        let curve = match range {
-            Some((low, high)) => {
-                let curve = PortCurve::new(&loaded.layout, low, high, options)?;
-                Some(curve.outcome(&spaced(low, high, CURVE_POINTS))?)
+        let mut prediction = predict_variants(&loaded.layout, &loaded.variants, &options)?;
+        if self.pattern || self.plots.is_some() {
+            for frequency_hz in pattern_frequencies(&prediction) {
+                prediction.patterns.push(pattern(&loaded.layout, frequency_hz)?);
             }
-            None if self.curve => Some(of_bands(&loaded.layout, BAND_POINTS, options)?),
-            None => None,
-        };
+        }
+        let curve = self.curve(&loaded.layout, range)?;
         if let Some(path) = &self.csv {
             output::whole_file(path, |w| output::csv::prediction(&prediction, w))?;
         }
         if let Some(path) = &self.touchstone {
             let points = at_the_radio(&prediction, curve.as_ref());
             output::whole_file(path, |w| output::touchstone::s1p(&points, loaded.layout.radio.impedance_ohm, w))?;
+        }
+        if let Some(folder) = &self.plots {
+            let references = references(&loaded.layout);
+            let mut drawn =
+                output::pictures::write_all_prediction(&prediction, &references, folder, self.units.into())?;
+            for pattern in &prediction.patterns {
+                drawn.extend(output::pictures::write_pattern(pattern, folder)?);
+            }
+            if let Some(curve) = &curve {
+                drawn.extend(output::pictures::write_curve(&curve.curve, folder)?);
+            }
+            for path in drawn {
+                eprintln!("drew {}", path.display());
+            }
         }
         if self.json {
             let document = Document { prediction: &prediction, curve: curve.as_ref() };
@@ -98,6 +112,18 @@ impl Predict {
             }
         }
         Ok(())
+    }
+
+    /// The interpolated curve where one was asked for.
+    fn curve(&self, layout: &Layout, range: Option<(f64, f64)>) -> Result<Option<InterpolatedCurve>, Stop> {
+        let options = CurveOptions { density: Density { factor: self.density }, ..CurveOptions::default() };
+        Ok(match range {
+            Some((low, high)) => {
+                Some(PortCurve::new(layout, low, high, options)?.outcome(&spaced(low, high, CURVE_POINTS))?)
+            }
+            None if self.curve => Some(of_bands(layout, BAND_POINTS, options)?),
+            None => None,
+        })
     }
 
     /// Ends of the range where a curve was asked for, Hz.
@@ -153,4 +179,19 @@ fn of_the_curve(curve: &InterpolatedCurve) -> String {
         100.0 * curve.error_estimate,
         100.0 * curve.tolerance,
     )
+}
+
+/// One frequency a band: its middle, or the first that was asked for.
+fn pattern_frequencies(prediction: &Prediction) -> Vec<f64> {
+    let mut out: Vec<(Option<&str>, f64)> = Vec::new();
+    for f in &prediction.frequencies {
+        let room = out.len() < 12;
+        match out.iter_mut().find(|(band, _)| band.is_some() && *band == f.band.as_deref()) {
+            Some(known) if f.edge == Some(BandEdge::Middle) => known.1 = f.frequency_hz,
+            Some(_) => {}
+            None if f.band.is_some() || room => out.push((f.band.as_deref(), f.frequency_hz)),
+            None => {}
+        }
+    }
+    out.into_iter().map(|(_, frequency_hz)| frequency_hz).collect()
 }

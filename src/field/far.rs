@@ -6,7 +6,7 @@
 
 use super::along::Solution;
 use crate::interaction::kernel::cos_sin;
-use crate::interaction::quadrature::{gauss, legendre};
+use crate::interaction::quadrature::{MAX_POINTS, gauss, legendre};
 use crate::layout::{EarthAt, Point};
 use crate::mesh::Mesh;
 use crate::quantity::{EPSILON_0_F_PER_M, ETA_0_OHM, SPEED_OF_LIGHT_M_PER_S};
@@ -93,36 +93,63 @@ impl FarField {
 
     /// Power through the far sphere (the upper half where there is an earth), W, for peak currents.
     ///
-    /// Gauss rule in the sine of the elevation, equal steps in bearing, with more points than the pattern has lobes.
+    /// Gauss rule in the sine of the elevation (in its root over an earth, where reflection changes fast near the horizon), equal
+    /// steps in bearing, with more points than the pattern has lobes.
     #[must_use]
     pub fn radiated_w(&self) -> f64 {
-        let lobes = self.k * (self.reach_m.hypot(self.height_m));
-        let bearings = 2 * (self.k * self.reach_m).ceil() as usize + 12;
-        let points = ((1.2 * lobes) as usize + 14).min(crate::interaction::quadrature::MAX_POINTS);
-        // a long station is cut into bands of sin(elevation) so that the rule never runs out of points
-        let bands = (1.2 * lobes / 26.0).ceil().max(1.0) as usize;
-        let lowest = if matches!(self.earth, Surface::None) { -1.0 } else { 0.0 };
-        let rule = gauss(points);
-        let mut total = 0.0;
-        for band in 0..bands {
-            let width = (1.0 - lowest) / bands as f64;
-            let base = lowest + width * band as f64;
-            for (x, w) in rule.nodes.iter().zip(&rule.weights) {
-                let sin_elevation = base + 0.5 * width * (1.0 + x);
-                total += 0.5 * width * w * self.ring(sin_elevation, bearings);
-            }
+        if matches!(self.earth, Surface::None) {
+            let down: f64 = self.elevations(|x| (-x, 1.0)).map(|(s, w)| w * self.ring(s, &self.earth, [1.0; 2])).sum();
+            let up: f64 = self.elevations(|x| (x, 1.0)).map(|(s, w)| w * self.ring(s, &self.earth, [1.0; 2])).sum();
+            return down + up;
         }
-        total
+        self.elevations(|x| (x * x, 2.0 * x)).map(|(s, w)| w * self.ring(s, &self.earth, [1.0; 2])).sum()
     }
 
-    /// ∫ U dφ at one elevation.
-    fn ring(&self, sin_elevation: f64, bearings: usize) -> f64 {
-        let plane = self.plane(sin_elevation);
+    /// Power that the plane waves leaving the currents downwards carry into the soil, W; 0 without soil.
+    ///
+    /// The direct far field below the horizon times 1 − |Γ|², wave by wave.
+    #[must_use]
+    pub fn downward_w(&self) -> f64 {
+        let Surface::Below(Some(n2)) = self.earth else { return 0.0 };
+        self.elevations(|x| (x * x, 2.0 * x))
+            .map(|(s, w)| {
+                let (vertical, horizontal) = fresnel(n2, s);
+                let shares = [1.0 - vertical.norm_sqr(), 1.0 - horizontal.norm_sqr()];
+                w * self.ring(-s, &Surface::None, shares)
+            })
+            .sum()
+    }
+
+    /// Values x of 0..1 with weights, mapped by a function to (sine of elevation, derivative).
+    fn elevations(&self, map: impl Fn(f64) -> (f64, f64)) -> impl Iterator<Item = (f64, f64)> {
+        let lobes = self.k * (self.reach_m.hypot(self.height_m));
+        let points = ((1.2 * lobes) as usize + 14).min(MAX_POINTS);
+        // a long station is cut into bands so that the rule never runs out of points
+        let bands = (1.2 * lobes / 26.0).ceil().max(1.0) as usize;
+        let rule = gauss(points);
+        let width = 1.0 / bands as f64;
+        (0..bands)
+            .flat_map(move |band| {
+                rule.nodes
+                    .iter()
+                    .zip(&rule.weights)
+                    .map(move |(x, w)| (width * (band as f64 + 0.5 * (1.0 + x)), 0.5 * width * w))
+            })
+            .map(move |(x, w)| {
+                let (s, slope) = map(x);
+                (s, w * slope)
+            })
+    }
+
+    /// ∫ U dφ at one elevation, the θ and φ parts each times a share.
+    fn ring(&self, sin_elevation: f64, surface: &Surface, shares: [f64; 2]) -> f64 {
+        let plane = self.plane(sin_elevation, surface);
+        let bearings = 2 * (self.k * self.reach_m).ceil() as usize + 12;
         let step = 2.0 * PI / bearings as f64;
         (0..bearings)
             .map(|b| {
                 let (n_theta, n_phi) = plane.at(self, step * b as f64);
-                self.intensity(n_theta) + self.intensity(n_phi)
+                shares[0] * self.intensity(n_theta) + shares[1] * self.intensity(n_phi)
             })
             .sum::<f64>()
             * step
@@ -135,7 +162,7 @@ impl FarField {
     /// Gain over an isotropic radiator fed with `input_w`, losses included.
     #[must_use]
     pub fn gain(&self, elevation_deg: f64, bearing_deg: f64, input_w: f64) -> Pattern {
-        let plane = self.plane(elevation_deg.to_radians().sin());
+        let plane = self.plane(elevation_deg.to_radians().sin(), &self.earth);
         // bearing from north through east; the field's angle runs from east through north
         let (n_theta, n_phi) = plane.at(self, (90.0 - bearing_deg).to_radians());
         let dbi = |u: f64| (10.0 * (4.0 * PI * u / input_w).max(1e-20).log10()).max(-200.0);
@@ -143,7 +170,7 @@ impl FarField {
         Pattern { elevation_deg, bearing_deg, vertical_dbi: dbi(v), horizontal_dbi: dbi(h), total_dbi: dbi(v + h) }
     }
 
-    fn plane(&self, sin_elevation: f64) -> Plane {
+    fn plane(&self, sin_elevation: f64, surface: &Surface) -> Plane {
         let sin = sin_elevation.clamp(-1.0, 1.0);
         let cos = (1.0 - sin * sin).sqrt();
         let weighted = self
@@ -151,7 +178,7 @@ impl FarField {
             .iter()
             .zip(&self.moment)
             .map(|(&z, m)| {
-                let ray = self.ray(sin, cos, z);
+                let ray = self.ray(surface, sin, cos, z);
                 [m[0] * ray.along, m[1] * ray.along, m[2] * ray.up, m[0] * ray.across, m[1] * ray.across]
             })
             .collect();
@@ -159,20 +186,17 @@ impl FarField {
     }
 
     /// How a current at height z enters the field at an elevation.
-    fn ray(&self, sin: f64, cos: f64, z: f64) -> Ray {
+    fn ray(&self, surface: &Surface, sin: f64, cos: f64, z: f64) -> Ray {
         let direct = Complex64::from_polar(1.0, self.k * z * sin);
-        match self.earth {
+        match *surface {
             Surface::None => Ray { along: direct, up: direct, across: direct },
             Surface::Below(None) => {
                 let image = direct.conj();
                 Ray { along: direct - image, up: direct + image, across: direct - image }
             }
             Surface::Below(Some(n2)) => {
-                let root = (n2 - cos * cos).sqrt();
-                // the root with the field decaying downwards
-                let root = if root.im > 0.0 { -root } else { root };
-                let vertical = (n2 * sin - root) / (n2 * sin + root);
-                let horizontal = (sin - root) / (sin + root);
+                let (vertical, horizontal) = fresnel(n2, sin);
+                let root = below(n2, cos);
                 if z >= 0.0 {
                     let image = direct.conj();
                     Ray {
@@ -191,6 +215,18 @@ impl FarField {
             }
         }
     }
+}
+
+/// √(n² − cos²ψ), the root whose field decays downwards.
+fn below(n2: Complex64, cos: f64) -> Complex64 {
+    let root = (n2 - cos * cos).sqrt();
+    if root.im > 0.0 { -root } else { root }
+}
+
+/// Fresnel's reflection coefficients at an elevation: vertical (of the magnetic field) and horizontal polarisation.
+fn fresnel(n2: Complex64, sin: f64) -> (Complex64, Complex64) {
+    let root = below(n2, (1.0 - sin * sin).sqrt());
+    ((n2 * sin - root) / (n2 * sin + root), (sin - root) / (sin + root))
 }
 
 /// All moments weighted for one elevation.

@@ -4,6 +4,8 @@
 
 mod along;
 mod far;
+mod near;
 
 pub use along::{Sample, Solution};
 pub use far::{FarField, Pattern};
+pub use near::near_field;

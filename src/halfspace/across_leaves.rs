@@ -2,7 +2,7 @@
 
 use super::chebyshev::monomials;
 use super::spectral_sum::LANES;
-use super::tensor::Tensor;
+use super::tensor::{Halvings, Tensor};
 
 /// Total degree of a leaf's polynomial.
 const DEGREE: usize = 5;
@@ -81,6 +81,7 @@ impl AcrossLeaves {
     pub(super) fn cut(sides: Sides, tensor: Tensor, allowed: impl Fn([f64; 3]) -> f64) -> Self {
         let mut todo = vec![Part { level: [0; 3], index: [0; 3], tensor }];
         let mut done: Vec<([u32; 3], [usize; 3], Leaf)> = Vec::new();
+        let mut halvings = Halvings::default();
         while let Some(part) = todo.pop() {
             let here = [0, 1, 2].map(|axis| span(sides[axis], part.level[axis], part.index[axis]));
             let dropped = part.tensor.dropped(DEGREE);
@@ -93,7 +94,11 @@ impl AcrossLeaves {
                         let (mut level, mut index) = (part.level, part.index);
                         level[axis] += 1;
                         index[axis] = 2 * index[axis] + usize::from(upper);
-                        todo.push(Part { level, index, tensor: part.tensor.half(axis, upper, SIDE + 1) });
+                        todo.push(Part {
+                            level,
+                            index,
+                            tensor: part.tensor.half(axis, upper, SIDE + 1, &mut halvings),
+                        });
                     }
                 }
                 _ => done.push((part.level, part.index, Leaf::new(here, &part.tensor))),

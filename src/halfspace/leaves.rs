@@ -1,17 +1,16 @@
 //! A patch cut into rectangles with one short polynomial each.
 
-use super::chebyshev::{monomials, restriction};
+use super::chebyshev::monomials;
 use super::patch::Patch;
 use super::spectral_sum::LANES;
+use super::tensor::{Halvings, Tensor};
 
 /// Total degree of a leaf's polynomial.
 pub(super) const DEGREE: usize = 5;
 /// Terms of total degree ≤ [`DEGREE`].
 pub(super) const TERMS: usize = (DEGREE + 1) * (DEGREE + 2) / 2;
-/// Chebyshev coefficients looked at each way when a leaf is judged.
-const SEEN: usize = DEGREE + 3;
 /// Halvings each way at most.
-const DEEPEST: u32 = 6;
+const DEEPEST: u32 = 7;
 
 /// One rectangle: x = (ρ − `rho_m`)·`per_rho`, y = (ζ − `zeta_m`)·`per_zeta`, both in [−1, 1]; coefficients of
 /// x^i y^j row by row of j.
@@ -86,57 +85,54 @@ pub(super) struct Leaves {
     pub leaves: Vec<Leaf>,
 }
 
-/// A dyadic part of a patch: halvings and index each way.
-#[derive(Debug, Clone, Copy)]
+/// A dyadic part of a patch: halvings and index each way, and its Chebyshev coefficients.
 struct Part {
-    level: (u32, u32),
-    index: (usize, usize),
+    level: [u32; 2],
+    index: [usize; 2],
+    tensor: Tensor,
 }
 
 impl Leaves {
     /// Cuts `patch` until every leaf's dropped coefficients sum to less than `allowed(largest ρ, largest ζ)`.
-    pub(super) fn cut(patch: &Patch, allowed: impl Fn(f64, f64) -> f64) -> Self {
-        let (rho, zeta) = (patch.rectangle.rho_m, patch.rectangle.zeta_m);
-        let mut strips = Strips::new(patch);
-        let mut todo = vec![Part { level: (0, 0), index: (0, 0) }];
-        let mut done: Vec<(Part, Leaf)> = Vec::new();
+    pub(super) fn cut(patch: Patch, allowed: impl Fn(f64, f64) -> f64) -> Self {
+        let sides = [patch.rectangle.rho_m, patch.rectangle.zeta_m];
+        let mut todo = vec![Part { level: [0; 2], index: [0; 2], tensor: patch.coefficients }];
+        let mut done: Vec<(Place, Leaf)> = Vec::new();
+        let mut halvings = Halvings::default();
         while let Some(part) = todo.pop() {
-            let seen = strips.leaf(part);
-            let [left, right] = span(rho, part.level.0, part.index.0);
-            let [bottom, top] = span(zeta, part.level.1, part.index.1);
-            let dropped = dropped(&seen);
-            let room = allowed(right, top);
-            let (split_rho, split_zeta) = if dropped.0.max(dropped.1) <= room {
-                (false, false)
-            } else {
-                let lead = dropped.0.max(dropped.1);
-                (dropped.0 > 0.25 * lead && part.level.0 < DEEPEST, dropped.1 > 0.25 * lead && part.level.1 < DEEPEST)
-            };
-            if split_rho || split_zeta {
-                todo.extend(children(part, split_rho, split_zeta));
+            let [rho, zeta] = [0, 1].map(|axis| span(sides[axis], part.level[axis], part.index[axis]));
+            let dropped = part.tensor.dropped(DEGREE);
+            let axis = if dropped[0] >= dropped[1] { 0 } else { 1 };
+            if dropped[axis] > allowed(rho.1, zeta.1) && part.level[axis] < DEEPEST {
+                for upper in [false, true] {
+                    let (mut level, mut index) = (part.level, part.index);
+                    level[axis] += 1;
+                    index[axis] = 2 * index[axis] + usize::from(upper);
+                    todo.push(Part { level, index, tensor: part.tensor.half(axis, upper, DEGREE + 2, &mut halvings) });
+                }
                 continue;
             }
             let leaf = Leaf {
-                rho_m: 0.5 * (left + right),
-                per_rho: 2.0 / (right - left),
-                zeta_m: 0.5 * (bottom + top),
-                per_zeta: 2.0 / (top - bottom),
-                terms: to_monomials(&seen),
+                rho_m: 0.5 * (rho.0 + rho.1),
+                per_rho: 2.0 / (rho.1 - rho.0),
+                zeta_m: 0.5 * (zeta.0 + zeta.1),
+                per_zeta: 2.0 / (zeta.1 - zeta.0),
+                terms: to_monomials(&part.tensor),
             };
-            done.push((part, leaf));
+            done.push(((part.level, part.index), leaf));
         }
-        Self::index((rho, zeta), done)
+        Self::index(sides, done)
     }
 
-    fn index((rho, zeta): ((f64, f64), (f64, f64)), done: Vec<(Part, Leaf)>) -> Self {
-        let deepest = done.iter().fold((0, 0), |d, (p, _)| (p.level.0.max(d.0), p.level.1.max(d.1)));
-        let cells = (1usize << deepest.0, 1usize << deepest.1);
+    fn index([rho, zeta]: [(f64, f64); 2], done: Vec<(Place, Leaf)>) -> Self {
+        let deepest = [0, 1].map(|axis| done.iter().map(|(place, _)| place.0[axis]).max().unwrap_or(0));
+        let cells = (1usize << deepest[0], 1usize << deepest[1]);
         let mut grid = vec![0u32; cells.0 * cells.1];
-        for (number, (part, _)) in done.iter().enumerate() {
-            let size = (cells.0 >> part.level.0, cells.1 >> part.level.1);
+        for (number, ((level, index), _)) in done.iter().enumerate() {
+            let size = (cells.0 >> level[0], cells.1 >> level[1]);
             for i in 0..size.0 {
                 for j in 0..size.1 {
-                    grid[(part.index.0 * size.0 + i) * cells.1 + part.index.1 * size.1 + j] = number as u32;
+                    grid[(index[0] * size.0 + i) * cells.1 + index[1] * size.1 + j] = number as u32;
                 }
             }
         }
@@ -159,127 +155,32 @@ impl Leaves {
     }
 }
 
-fn span(range: (f64, f64), level: u32, index: usize) -> [f64; 2] {
+/// Halvings and index each way.
+type Place = ([u32; 2], [usize; 2]);
+
+fn span(range: (f64, f64), level: u32, index: usize) -> (f64, f64) {
     let step = (range.1 - range.0) / f64::from(1u32 << level);
-    [range.0 + step * index as f64, range.0 + step * (index + 1) as f64]
+    (range.0 + step * index as f64, range.0 + step * (index + 1) as f64)
 }
 
-fn children(part: Part, split_rho: bool, split_zeta: bool) -> Vec<Part> {
-    let mut out = Vec::with_capacity(4);
-    for i in 0..=usize::from(split_rho) {
-        for j in 0..=usize::from(split_zeta) {
-            out.push(Part {
-                level: (part.level.0 + u32::from(split_rho), part.level.1 + u32::from(split_zeta)),
-                index: (
-                    part.index.0 * (1 + usize::from(split_rho)) + i,
-                    part.index.1 * (1 + usize::from(split_zeta)) + j,
-                ),
-            });
-        }
-    }
-    out
-}
-
-/// Coefficients seen on a part, `[lane][rho degree][zeta degree]`.
-type Seen = [[[f64; SEEN]; SEEN]; LANES];
-
-/// The patch restricted in ρ, kept for the many parts that share it.
-struct Strips<'a> {
-    patch: &'a Patch,
-    by_rho: Vec<Option<Vec<f64>>>,
-    by_zeta: Vec<Option<Vec<f64>>>,
-}
-
-impl<'a> Strips<'a> {
-    fn new(patch: &'a Patch) -> Self {
-        let count = 2usize << DEEPEST;
-        Self { patch, by_rho: vec![None; count], by_zeta: vec![None; count] }
-    }
-
-    fn leaf(&mut self, part: Part) -> Seen {
-        let (m, n) = self.patch.rectangle.points;
-        let patch = self.patch;
-        let strip = self.by_rho[(1 << part.level.0) + part.index.0].get_or_insert_with(|| {
-            let [low, high] = span((-1.0, 1.0), part.level.0, part.index.0);
-            let matrix = restriction(SEEN, m, low, high);
-            let mut strip = vec![0.0; LANES * SEEN * n];
-            for lane in 0..LANES {
-                for k in 0..SEEN {
-                    let out = &mut strip[(lane * SEEN + k) * n..(lane * SEEN + k + 1) * n];
-                    for i in 0..m {
-                        let a = matrix[k * m + i];
-                        for (o, c) in
-                            out.iter_mut().zip(&patch.coefficients[(lane * m + i) * n..(lane * m + i + 1) * n])
-                        {
-                            *o += a * c;
-                        }
-                    }
-                }
-            }
-            strip
-        });
-        let matrix = self.by_zeta[(1 << part.level.1) + part.index.1].get_or_insert_with(|| {
-            let [low, high] = span((-1.0, 1.0), part.level.1, part.index.1);
-            let matrix = restriction(SEEN, n, low, high);
-            (0..n).flat_map(|j| (0..SEEN).map(move |l| (j, l))).map(|(j, l)| matrix[l * n + j]).collect()
-        });
-        let mut seen = [[[0.0; SEEN]; SEEN]; LANES];
-        for (lane, seen) in seen.iter_mut().enumerate() {
-            for (k, row) in seen.iter_mut().enumerate() {
-                let strip = &strip[(lane * SEEN + k) * n..(lane * SEEN + k + 1) * n];
-                for (c, a) in strip.iter().zip(matrix.chunks_exact(SEEN)) {
-                    for (out, a) in row.iter_mut().zip(a) {
-                        *out += c * a;
-                    }
-                }
-            }
-        }
-        seen
-    }
-}
-
-/// Sums of the coefficients that a total degree of [`DEGREE`] leaves out, by the direction that has the higher degree;
-/// the largest over the three functions.
-fn dropped(seen: &Seen) -> (f64, f64) {
-    let (mut by_rho, mut by_zeta) = (0.0f64, 0.0f64);
-    for pair in seen.chunks_exact(2) {
-        let (mut rho, mut zeta) = (0.0, 0.0);
-        for k in 0..SEEN {
-            for l in 0..SEEN {
-                if k + l > DEGREE {
-                    let size = pair[0][k][l].abs().max(pair[1][k][l].abs());
-                    if k >= l {
-                        rho += size;
-                    }
-                    if l >= k {
-                        zeta += size;
-                    }
-                }
-            }
-        }
-        by_rho = by_rho.max(rho);
-        by_zeta = by_zeta.max(zeta);
-    }
-    (by_rho, by_zeta)
-}
-
-fn to_monomials(seen: &Seen) -> [[f64; LANES]; TERMS] {
+fn to_monomials(tensor: &Tensor) -> [[f64; LANES]; TERMS] {
     const SIDE: usize = DEGREE + 1;
     let basis = monomials::<SIDE>();
     let mut terms = [[0.0; LANES]; TERMS];
-    for (lane, seen) in seen.iter().enumerate() {
+    for lane in 0..LANES {
         let mut half = [[0.0; SIDE]; SIDE];
-        for k in 0..SIDE {
+        for (k, polynomial) in basis.iter().enumerate() {
             for l in 0..SIDE - k {
-                for (i, b) in basis[k].iter().enumerate().take(k + 1) {
-                    half[i][l] += b * seen[k][l];
+                let value = tensor.at(lane, [k, l, 0]);
+                for (row, b) in half.iter_mut().zip(polynomial).take(k + 1) {
+                    row[l] += b * value;
                 }
             }
         }
         let mut place = 0;
         for j in 0..SIDE {
             for row in half.iter().take(SIDE - j) {
-                terms[place][lane] = (j..SIDE).map(|l| basis[l][j] * row[l]).sum();
+                terms[place][lane] = basis.iter().zip(row).skip(j).map(|(polynomial, r)| polynomial[j] * r).sum();
                 place += 1;
             }
         }

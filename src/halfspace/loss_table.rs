@@ -76,7 +76,7 @@ fn sample(space: &HalfSpace, rectangle: Rectangle, fineness: Fineness) -> Patch 
             values[(2 * m + i) * n + j] -= image / rho.hypot(zeta);
         }
     }
-    Patch::from_values(rectangle, &values)
+    Patch::from_values(rectangle, values)
 }
 
 #[cfg(test)]

@@ -34,6 +34,7 @@ mod bessel;
 mod bessel_fast;
 mod chebyshev;
 mod dipole;
+mod ground_wave;
 mod leaves;
 mod loss;
 mod loss_table;

@@ -1,12 +1,13 @@
 //! One rectangle of (ρ, ζ): the remainders at a grid of Chebyshev points by one path shared by all of them.
 
-use super::chebyshev::{analysis, spread};
+use super::chebyshev::spread;
 use super::panels::Fineness;
 use super::potentials::tilt;
 use super::rule::{Node, Reach};
 use super::soil::{HalfSpace, Region};
 use super::spectral_sum::SpectralSum;
 use super::spectrum::{Spectral, Weights};
+use super::tensor::Tensor;
 use num_complex::Complex64;
 
 /// A rectangle and how many Chebyshev points it gets each way.
@@ -17,11 +18,11 @@ pub(super) struct Rectangle {
     pub points: (usize, usize),
 }
 
-/// Chebyshev coefficients over a rectangle, `[lane][rho degree][zeta degree]`.
+/// Chebyshev coefficients over a rectangle, by degree in ρ and ζ.
 #[derive(Debug, Clone)]
 pub(super) struct Patch {
     pub rectangle: Rectangle,
-    pub coefficients: Vec<f64>,
+    pub coefficients: Tensor,
 }
 
 impl Patch {
@@ -56,62 +57,13 @@ impl Patch {
                 values[(5 * m + i) * n + j] -= closed.im;
             }
         }
-        Self::from_values(rectangle, &values)
+        Self::from_values(rectangle, values)
     }
 
     /// From values `[lane][rho][zeta]` at the Chebyshev points.
-    pub(super) fn from_values(rectangle: Rectangle, values: &[f64]) -> Self {
+    pub(super) fn from_values(rectangle: Rectangle, data: Vec<f64>) -> Self {
         let (m, n) = rectangle.points;
-        Self { rectangle, coefficients: transform(values, m, n) }
-    }
-
-    /// The largest of the last two coefficients each way, summed over the other way: how well it is resolved.
-    pub(super) fn tail(&self) -> (f64, f64) {
-        let (m, n) = self.rectangle.points;
-        let (mut by_rho, mut by_zeta) = (0.0f64, 0.0f64);
-        for lane in self.coefficients.chunks_exact(m * n) {
-            let row = |i: usize| lane[i * n..(i + 1) * n].iter().map(|c| c.abs()).sum::<f64>();
-            let column = |j: usize| (0..m).map(|i| lane[i * n + j].abs()).sum::<f64>();
-            by_rho = by_rho.max(row(m - 1)).max(row(m - 2));
-            by_zeta = by_zeta.max(column(n - 1)).max(column(n - 2));
-        }
-        (by_rho, by_zeta)
-    }
-}
-
-fn transform(values: &[f64], m: usize, n: usize) -> Vec<f64> {
-    let (by_rho, by_zeta) = (analysis(m), analysis(n));
-    // Transposed, so that the inner loops below run along rows.
-    let turned: Vec<f64> = (0..n * n).map(|p| by_zeta[(p % n) * n + p / n]).collect();
-    let mut out = vec![0.0; values.len()];
-    let mut half = vec![0.0; m * n];
-    for (from, to) in values.chunks_exact(m * n).zip(out.chunks_exact_mut(m * n)) {
-        half.fill(0.0);
-        for (row, weights) in half.chunks_exact_mut(n).zip(by_rho.chunks_exact(m)) {
-            combine(row, weights, from);
-        }
-        for (row, weights) in to.chunks_exact_mut(n).zip(half.chunks_exact(n)) {
-            combine(row, weights, &turned);
-        }
-    }
-    out
-}
-
-/// row += Σ weights[i] · (row i of `rows`).
-pub(super) fn combine(row: &mut [f64], weights: &[f64], rows: &[f64]) {
-    let n = row.len();
-    let (weights4, rows4) = (weights.chunks_exact(4), rows.chunks_exact(4 * n));
-    let (rest_weights, rest_rows) = (weights4.remainder(), rows4.remainder());
-    for (w, r) in weights4.zip(rows4) {
-        let (a, b, c, d) = (&r[..n], &r[n..2 * n], &r[2 * n..3 * n], &r[3 * n..4 * n]);
-        for (k, out) in row.iter_mut().enumerate() {
-            *out += w[0] * a[k] + w[1] * b[k] + (w[2] * c[k] + w[3] * d[k]);
-        }
-    }
-    for (w, r) in rest_weights.iter().zip(rest_rows.chunks_exact(n)) {
-        for (out, r) in row.iter_mut().zip(r) {
-            *out += w * r;
-        }
+        Self { rectangle, coefficients: Tensor { size: [m, n, 1], data }.transformed() }
     }
 }
 

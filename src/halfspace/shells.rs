@@ -30,8 +30,32 @@ pub(super) struct Shells {
     least_m: f64,
     /// Below the surface nothing is left deeper than this.
     deepest_m: f64,
-    patches: Vec<Option<Leaves>>,
+    patches: Vec<Option<Block>>,
 }
+
+/// A rectangle of a shell: equal pieces, each sampled by itself, so that none spans too many wavelengths.
+#[derive(Debug, Clone)]
+struct Block {
+    low: (f64, f64),
+    pieces_per_m: (f64, f64),
+    pieces: (usize, usize),
+    leaves: Vec<Leaves>,
+}
+
+impl Block {
+    #[inline]
+    fn at(&self, rho_m: f64, zeta_m: f64) -> &Leaves {
+        if self.leaves.len() == 1 {
+            return &self.leaves[0];
+        }
+        let i = ((rho_m - self.low.0) * self.pieces_per_m.0) as usize;
+        let j = ((zeta_m - self.low.1) * self.pieces_per_m.1) as usize;
+        &self.leaves[i.min(self.pieces.0 - 1) * self.pieces.1 + j.min(self.pieces.1 - 1)]
+    }
+}
+
+/// Most Chebyshev points each way on one piece, as first guessed.
+const MOST_POINTS: usize = 44;
 
 /// A shell's number is the binary exponent of the larger of ρ and ζ, suitably scaled.
 #[inline]
@@ -65,7 +89,7 @@ impl Shells {
             })
             .collect::<Vec<_>>()
             .into_par_iter()
-            .map(|sides| sides.map(|sides| Task { space, region, tolerance, whole }.patch(sides, sample)))
+            .map(|sides| sides.map(|sides| Task { space, region, tolerance, whole }.block(sides, sample)))
             .collect();
         Self { distances, tolerance, first_shell, scale_per_m, least_m, deepest_m, patches }
     }
@@ -82,7 +106,7 @@ impl Shells {
 
     /// How many polynomials there are.
     pub(super) fn size(&self) -> usize {
-        self.patches.iter().flatten().map(|p| p.leaves.len()).sum()
+        self.patches.iter().flatten().flat_map(|block| &block.leaves).map(|piece| piece.leaves.len()).sum()
     }
 
     #[inline]
@@ -96,8 +120,8 @@ impl Shells {
         let shell = shell_of(size * self.scale_per_m);
         let near = f64::from_bits(((shell + 1023) as u64) << 52);
         let place = 2 * (shell - self.first_shell) as usize + usize::from(zeta * self.scale_per_m >= near);
-        let patch = self.patches.get(place)?.as_ref()?;
-        (zeta <= self.deepest_m).then_some((patch, rho, zeta))
+        let block = self.patches.get(place)?.as_ref()?;
+        (zeta <= self.deepest_m).then(|| (block.at(rho, zeta), rho, zeta))
     }
 
     /// The functions; zero outside the box where no polynomial is.
@@ -162,6 +186,22 @@ struct Task<'a> {
 }
 
 impl Task<'_> {
+    fn block(&self, (rho, zeta): Sides, sample: &Sampler<'_>) -> Block {
+        let (near, far) = (rho.0.hypot(zeta.0), rho.1.hypot(zeta.1));
+        let (wide, high) = (rho.1 - rho.0, zeta.1 - zeta.0);
+        let guess = self.points(near, far, (wide, high));
+        let pieces = (guess.0.div_ceil(MOST_POINTS), guess.1.div_ceil(MOST_POINTS));
+        let cut = |low: f64, width: f64, i: usize, of: usize| {
+            (low + width * i as f64 / of as f64, low + width * (i + 1) as f64 / of as f64)
+        };
+        let leaves = (0..pieces.0)
+            .flat_map(|i| (0..pieces.1).map(move |j| (i, j)))
+            .map(|(i, j)| self.patch((cut(rho.0, wide, i, pieces.0), cut(zeta.0, high, j, pieces.1)), sample))
+            .collect();
+        let pieces_per_m = (pieces.0 as f64 / wide, pieces.1 as f64 / high);
+        Block { low: (rho.0, zeta.0), pieces_per_m, pieces, leaves }
+    }
+
     fn patch(&self, (rho, zeta): Sides, sample: &Sampler<'_>) -> Leaves {
         let (near, far) = (rho.0.hypot(zeta.0), rho.1.hypot(zeta.1));
         let digits = self.digits(far);
@@ -180,10 +220,10 @@ impl Task<'_> {
         let allowed = 0.1 * self.tolerance / far;
         loop {
             let patch = sample(Rectangle { rho_m: rho, zeta_m: zeta, points }, fineness);
-            let (by_rho, by_zeta) = patch.tail();
+            let [by_rho, by_zeta, _] = patch.coefficients.tail();
             let settled = (by_rho < allowed || points.0 >= 160, by_zeta < allowed || points.1 >= 160);
             if settled == (true, true) {
-                return Leaves::cut(&patch, |rho, zeta| 0.8 * self.tolerance / rho.hypot(zeta));
+                return Leaves::cut(patch, |rho, zeta| 0.8 * self.tolerance / rho.hypot(zeta));
             }
             let more = |tail: f64| (2.0 + (tail / allowed).max(1.0).ln()).min(40.0) as usize;
             points.0 += if settled.0 { 0 } else { more(by_rho) };
@@ -207,7 +247,7 @@ impl Task<'_> {
         let guess = |width: f64, speed: f64| {
             let half = 0.5 * width / (0.75 * near);
             let rate = (half.recip() + (half.recip().powi(2) + 1.0).sqrt()).ln();
-            (4.0 + 0.42 * digits / rate.max(0.6) + 0.4 * speed * width).ceil().clamp(5.0, 96.0) as usize
+            (4.0 + 0.42 * digits / rate.max(0.6) + 0.4 * speed * width).ceil().clamp(5.0, 1e4) as usize
         };
         (guess(wide, speed), guess(high, depth_speed))
     }

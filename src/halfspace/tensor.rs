@@ -1,7 +1,6 @@
 //! Chebyshev coefficients over a box of three variables, and their restriction to half of it.
 
 use super::chebyshev::{analysis, restriction};
-use super::patch::combine;
 use super::spectral_sum::LANES;
 
 /// Values or coefficients `[lane][first][second][third]`.
@@ -11,19 +10,40 @@ pub(super) struct Tensor {
     pub data: Vec<f64>,
 }
 
+/// The matrices that restrict to a half, kept while a patch is cut.
+#[derive(Debug, Default)]
+pub(super) struct Halvings {
+    by_size: Vec<[Vec<f64>; 2]>,
+}
+
+impl Halvings {
+    fn matrix(&mut self, from: usize, to: usize, upper: bool) -> &[f64] {
+        if self.by_size.len() <= from {
+            self.by_size.resize(from + 1, [Vec::new(), Vec::new()]);
+        }
+        let matrix = &mut self.by_size[from][usize::from(upper)];
+        if matrix.len() != to * from {
+            let (low, high) = if upper { (0.0, 1.0) } else { (-1.0, 0.0) };
+            *matrix = restriction(to, from, low, high);
+        }
+        matrix
+    }
+}
+
 impl Tensor {
     /// From values at Chebyshev points to coefficients.
     pub(super) fn transformed(self) -> Self {
         let size = self.size;
-        (0..3).fold(self, |tensor, axis| tensor.along(axis, size[axis], &analysis(size[axis])))
+        (0..3)
+            .filter(|&axis| size[axis] > 1)
+            .fold(self, |tensor, axis| tensor.along(axis, size[axis], &analysis(size[axis])))
     }
 
-    /// Coefficients on the lower or upper half of one axis.
-    pub(super) fn half(&self, axis: usize, upper: bool, least: usize) -> Self {
+    /// Coefficients on the lower or upper half of one axis; no fewer than `least` along it.
+    pub(super) fn half(&self, axis: usize, upper: bool, least: usize, halvings: &mut Halvings) -> Self {
         let from = self.size[axis];
-        let to = (from / 2 + 4).max(least).min(from.max(least));
-        let (low, high) = if upper { (0.0, 1.0) } else { (-1.0, 0.0) };
-        self.along(axis, to, &restriction(to, from, low, high))
+        let to = (from / 2 + 3).max(least).min(from.max(least));
+        self.along(axis, to, halvings.matrix(from, to, upper))
     }
 
     /// Multiplies one axis by a `to` × `size[axis]` matrix.
@@ -104,5 +124,23 @@ impl Tensor {
             }
         }
         worst
+    }
+}
+
+/// row += Σ weights[i] · (row i of `rows`).
+fn combine(row: &mut [f64], weights: &[f64], rows: &[f64]) {
+    let n = row.len();
+    let (weights4, rows4) = (weights.chunks_exact(4), rows.chunks_exact(4 * n));
+    let (rest_weights, rest_rows) = (weights4.remainder(), rows4.remainder());
+    for (w, r) in weights4.zip(rows4) {
+        let (a, b, c, d) = (&r[..n], &r[n..2 * n], &r[2 * n..3 * n], &r[3 * n..4 * n]);
+        for (k, out) in row.iter_mut().enumerate() {
+            *out += w[0] * a[k] + w[1] * b[k] + (w[2] * c[k] + w[3] * d[k]);
+        }
+    }
+    for (w, r) in rest_weights.iter().zip(rest_rows.chunks_exact(n)) {
+        for (out, r) in row.iter_mut().zip(r) {
+            *out += w * r;
+        }
     }
 }

@@ -36,14 +36,14 @@ type UnknownMap = Vec<(usize, [f64; MAX_DEGREE + 1])>;
 /// A mesh with everything its matrices at all frequencies share.
 #[derive(Debug, Clone)]
 pub struct Interaction {
-    mesh: Mesh,
+    pub(super) mesh: Mesh,
     maps: Vec<UnknownMap>,
     /// Pairs both above, both below and across the surface.
     direct: [Pairs; 3],
     /// Mirrored pairs, both above and both below.
-    image: Option<[Pairs; 2]>,
-    nodes: Nodes,
-    image_nodes: Option<Nodes>,
+    pub(super) image: Option<[Pairs; 2]>,
+    pub(super) nodes: Nodes,
+    pub(super) image_nodes: Option<Nodes>,
 }
 
 impl Interaction {
@@ -272,7 +272,7 @@ fn scatter(one: &UnknownMap, two: &UnknownMap, block: &Block, twice: bool, z: &m
 }
 
 /// Derivative with respect to ξ of a Legendre series, of degree at most 3: P1′ = P0, P2′ = 3 P1, P3′ = 5 P2 + P0.
-fn derive(c: Legendre) -> Legendre {
+pub(super) fn derive(c: Legendre) -> Legendre {
     [c[1] + c[3], c[2] * 3.0, c[3] * 5.0, Complex64::ZERO]
 }
 

@@ -7,6 +7,7 @@
 //! - `quadrature`, `kernel`: Gauss rules and the vectorised wave
 //! - `line`, `near`, `pairs`: what depends only on geometry, kept for every frequency
 //! - `local`: metal and jackets
+//! - `surroundings`: the earth at one frequency; `rest`: what soil adds beyond images; `loss`: what its near field takes
 //! - `fill`: the matrix at one frequency
 //! - `factor`: its factorisation, checked
 
@@ -15,6 +16,7 @@ mod fill;
 pub mod kernel;
 mod line;
 mod local;
+mod loss;
 mod medium;
 mod near;
 mod pairs;

@@ -61,7 +61,7 @@ fn add(block: &mut Block, left: &[f64; 4], row: &[num_complex::Complex64; 4]) {
 /// The rest is smooth on the scale of its distance to the mirror point and of the wavelength or skin depth in the soil; crossed pairs
 /// (vertical with horizontal) add a bounded kink at the mirror point. Measured against 24 points everywhere: the
 /// feed impedance of the models moves by less than 2·10⁻⁴.
-fn points(e: &Element, gap: f64, soil: &SoilRest, crossed: bool) -> usize {
+pub(super) fn points(e: &Element, gap: f64, soil: &SoilRest, crossed: bool) -> usize {
     let ratio = gap / e.length_m;
     let k = soil.wavenumber().norm();
     // beyond a few skin depths only the wave in the air is left

@@ -3,7 +3,9 @@
 //! Built once a frequency and soil, shared by every pair, every mesh of the same station and every study there.
 
 use super::medium::Medium;
-use crate::halfspace::{Distances, HalfSpace, HalfSpaceError, Potentials, Region, SideTable};
+use crate::halfspace::{
+    AcrossDistances, AcrossTable, Distances, HalfSpace, HalfSpaceError, Potentials, Region, SideTable,
+};
 use crate::layout::{EarthAt, Layout};
 use num_complex::Complex64;
 
@@ -82,6 +84,13 @@ impl Extent {
         }
     }
 
+    /// Box of distances across the surface.
+    fn across(&self) -> Option<AcrossDistances> {
+        let (height_m, depth_m) = self.above_m.zip(self.below_m)?;
+        let least_rho = if height_m.0 + depth_m.0 < LEAST_RHO_M { LEAST_RHO_M } else { 0.0 };
+        Some(AcrossDistances { rho_m: (least_rho, self.rho_m.max(2.0 * LEAST_RHO_M)), height_m, depth_m })
+    }
+
     /// Box of distances for one side of the surface.
     fn distances(&self, side: Option<(f64, f64)>) -> Option<Distances> {
         side.map(|(low, high)| {
@@ -102,9 +111,10 @@ pub struct Surroundings {
 /// What soil adds beyond the closed-form families.
 #[derive(Debug, Clone)]
 pub(crate) struct SoilRest {
-    space: HalfSpace,
-    above: Option<SideTable>,
+    pub(super) space: HalfSpace,
+    pub(super) above: Option<SideTable>,
     below: Option<SideTable>,
+    across: Option<AcrossTable>,
 }
 
 impl Surroundings {
@@ -118,7 +128,8 @@ impl Surroundings {
                 let space = HalfSpace::new(frequency_hz, permittivity, conductivity_s_per_m)?;
                 let above = extent.distances(extent.above_m).map(|d| SideTable::above(&space, d, TABLE_TOLERANCE));
                 let below = extent.distances(extent.below_m).map(|d| SideTable::below(&space, d, TABLE_TOLERANCE));
-                Some(SoilRest { space, above, below })
+                let across = extent.across().map(|d| AcrossTable::build(&space, d, TABLE_TOLERANCE));
+                Some(SoilRest { space, above, below, across })
             }
             _ => None,
         };
@@ -196,20 +207,20 @@ impl SoilRest {
 
     /// What is left of the four potentials beyond the families, the image of `p_rho` included, 1/m.
     pub(crate) fn rest(&self, region: Region, rho_m: f64, z_m: f64, z_source_m: f64) -> Potentials {
-        let table = match region {
-            Region::Above => &self.above,
-            Region::Below => &self.below,
-            Region::Across => &None,
-        };
-        let mut rest = match table {
-            Some(table) => {
-                let [xx, zz, phi, p_rho] = table.eval(rho_m, z_m.abs() + z_source_m.abs());
-                Potentials { xx, zz, phi, p_rho }
+        let zeta = z_m.abs() + z_source_m.abs();
+        let tabulated = match region {
+            Region::Above => self.above.as_ref().map(|t| t.eval(rho_m, zeta)),
+            Region::Below => self.below.as_ref().map(|t| t.eval(rho_m, zeta)),
+            Region::Across => {
+                let (height, depth) = (z_m.max(z_source_m), -z_m.min(z_source_m));
+                self.across.as_ref().map(|t| t.eval(rho_m, height.max(0.0), depth.max(0.0)))
             }
+        };
+        let mut rest = match tabulated {
+            Some([xx, zz, phi, p_rho]) => Potentials { xx, zz, phi, p_rho },
             None => self.space.remainder(rho_m, z_m, z_source_m),
         };
         let c = self.space.image_coefficients(region);
-        let zeta = z_m.abs() + z_source_m.abs();
         let r = rho_m.hypot(zeta);
         if r > 0.0 {
             rest.p_rho += c.image.p_rho * (-Complex64::I * c.wavenumber_per_m * r).exp() * rho_m / (r * (r + zeta));

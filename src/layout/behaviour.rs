@@ -390,6 +390,21 @@ fn doubtful_things_are_computed_with_a_warning() {
 }
 
 #[test]
+fn soils_outside_their_range_are_computed_with_a_warning() {
+    let about = |earth: &str, frequency: &str| {
+        let mut station = usual(earth, "");
+        station.operation.frequencies_hz = vec![crate::quantity::frequency_hz(frequency).unwrap()];
+        placed(&station).warnings.iter().filter(|w| w.about == "earth").map(|w| w.message.clone()).collect::<String>()
+    };
+    let alipio = "conductivity = \"5 mS/m\"\ndispersion = \"alipio-visacro\"";
+    says(&about(alipio, "7.1 MHz"), &["up to 4 MHz", "longmire-smith"]);
+    assert_eq!(about(alipio, "3.6 MHz"), "");
+    assert_eq!(about(SOIL, "7.1 MHz"), "");
+    says(&about(SOIL, "70 MHz"), &["10 kHz to 60 MHz"]);
+    assert_eq!(about(PERFECT, "70 MHz"), "");
+}
+
+#[test]
 fn faults_of_one_step_come_together() {
     let text = refused(&usual(
         FREE,

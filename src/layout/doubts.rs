@@ -8,6 +8,9 @@ use crate::station::Earth;
 /// A leg this low over soil is close enough that every millimetre counts, m.
 const LOW_M: f64 = 0.005;
 
+/// Frequencies the potentials over soil are proved for, Hz.
+const PROVED_HZ: std::ops::RangeInclusive<f64> = 1e4..=6e7;
+
 impl Placing<'_> {
     /// Collects the warnings that need the finished geometry.
     pub(super) fn doubts(&mut self, feed: &Feed) {
@@ -140,9 +143,18 @@ impl Placing<'_> {
     }
 
     fn soil_model_range(&mut self) {
+        if matches!(self.station.earth.value, Earth::None | Earth::Perfect) {
+            return;
+        }
         let operation = &self.station.operation;
         let highest =
             operation.bands.iter().map(|b| b.2).chain(operation.frequencies_hz.iter().copied()).fold(0.0, f64::max);
+        if operation.frequencies_hz.iter().any(|f| !PROVED_HZ.contains(f)) {
+            self.warn(
+                "earth",
+                "the soil's tables are proved from 10 kHz to 60 MHz; outside that their error is not known",
+            );
+        }
         if matches!(self.station.earth.value, Earth::AlipioVisacro(_)) && highest > 4e6 {
             self.warn(
                 "earth",

@@ -5,7 +5,7 @@
 //! h(x) = min(h_max, min_k(h_k + g |x − x_k|)); between two forced nodes the elements take equal shares of ∫ dx/h, so that
 //! the division does not depend on the direction of the path. Sizes grow geometrically by e^g away from a feature.
 
-use super::unknowns::feed_gap;
+use super::unknowns::{feed_gap, gap_legs};
 use crate::layout::{Layout, Point};
 use crate::quantity::SPEED_OF_LIGHT_M_PER_S;
 
@@ -73,18 +73,10 @@ pub(super) fn divide(
 
 /// All gaps as (conductor, from, to).
 fn all_gaps(layout: &Layout, extra_gaps: &[(usize, f64, f64)]) -> Vec<(usize, f64, f64)> {
-    let mut out: Vec<_> = layout
-        .feed
-        .hot
-        .iter()
-        .map(|leg| {
-            let (from, to) = feed_gap(layout, leg);
-            (leg.conductor, from, to)
-        })
-        .collect();
-    out.extend(layout.parts.iter().map(|p| (p.conductor, p.from_m, p.to_m)));
-    out.extend_from_slice(extra_gaps);
-    out
+    let parts = layout.parts.iter().map(|p| (p.conductor, p.from_m, p.to_m));
+    let of_parts = parts.chain(extra_gaps.iter().copied()).flat_map(|gap| gap_legs(layout, gap));
+    let of_feed = layout.feed.hot.iter().map(|leg| feed_gap(layout, leg));
+    of_feed.chain(of_parts).map(|leg| (leg.conductor, leg.from_m, leg.to_m)).collect()
 }
 
 /// Ends, bends, junctions and gaps of a conductor itself.

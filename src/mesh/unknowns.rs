@@ -143,7 +143,8 @@ fn ports(
     ranges: &[std::ops::Range<usize>],
     extra_gaps: &[(usize, f64, f64)],
 ) -> Vec<Port> {
-    let within = |conductor: usize, from: f64, to: f64, sign: f64| -> Vec<(usize, f64)> {
+    let within = |gap: GapLeg| -> Vec<(usize, f64)> {
+        let GapLeg { conductor, from_m: from, to_m: to, sign } = gap;
         let slack = 1e-9 * (1.0 + to.abs());
         ranges[conductor]
             .clone()
@@ -151,18 +152,43 @@ fn ports(
             .map(|k| (k, sign * elements[k].length_m / (to - from)))
             .collect()
     };
-    let feed = layout.feed.hot.iter().flat_map(|leg| {
-        let (from, to) = feed_gap(layout, leg);
-        within(leg.conductor, from, to, if leg.forward { 1.0 } else { -1.0 })
-    });
-    let mut out = vec![Port { elements: feed.collect() }];
-    out.extend(layout.parts.iter().map(|p| Port { elements: within(p.conductor, p.from_m, p.to_m, 1.0) }));
-    out.extend(extra_gaps.iter().map(|&(c, from, to)| Port { elements: within(c, from, to, 1.0) }));
+    let port = |legs: Vec<GapLeg>| Port { elements: legs.into_iter().flat_map(within).collect() };
+    let mut out = vec![port(layout.feed.hot.iter().map(|leg| feed_gap(layout, leg)).collect())];
+    out.extend(layout.parts.iter().map(|p| port(gap_legs(layout, (p.conductor, p.from_m, p.to_m)))));
+    out.extend(extra_gaps.iter().map(|&gap| port(gap_legs(layout, gap))));
     out
 }
 
-/// Interval along the conductor that the feed gap takes on a hot leg, m.
-pub(super) fn feed_gap(layout: &Layout, leg: &FeedLeg) -> (f64, f64) {
+/// A stretch of a conductor that belongs to a gap.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct GapLeg {
+    pub(super) conductor: usize,
+    pub(super) from_m: f64,
+    pub(super) to_m: f64,
+    /// Direction of the port's current along the conductor.
+    pub(super) sign: f64,
+}
+
+/// Where the gap of a part acts.
+///
+/// Usually on its own stretch. A choke at 0 m of a coax on the cold terminal sits at the feed junction itself, between the shield and everything
+/// else there. A source in one leg of a junction does what the opposite sources in all other legs do; put there, over the feed gap's
+/// width, the choke and the feed share one gap, no charge collects between them, and without a counterpoise the
+/// choke is in series with the feed exactly.
+pub(super) fn gap_legs(layout: &Layout, (conductor, from_m, to_m): (usize, f64, f64)) -> Vec<GapLeg> {
+    let own = FeedLeg { conductor, vertex: 0, forward: true };
+    let is_shield = layout.coax.as_ref().is_some_and(|c| c.conductor == conductor);
+    if is_shield && from_m == 0.0 && layout.feed.cold.contains(&own) && !layout.feed.cold_is_earth {
+        let others = layout.feed.hot.iter().chain(layout.feed.cold.iter().filter(|leg| **leg != own));
+        return others.map(|leg| feed_gap(layout, leg)).map(|leg| GapLeg { sign: -leg.sign, ..leg }).collect();
+    }
+    vec![GapLeg { conductor, from_m, to_m, sign: 1.0 }]
+}
+
+/// The first gap width of a leg at the feed; its sign is that of a current out of the feed point.
+pub(super) fn feed_gap(layout: &Layout, leg: &FeedLeg) -> GapLeg {
     let at = layout.conductors[leg.conductor].distances_m()[leg.vertex];
-    if leg.forward { (at, at + layout.feed.gap_m) } else { (at - layout.feed.gap_m, at) }
+    let gap_m = layout.feed.gap_m;
+    let (from_m, to_m, sign) = if leg.forward { (at, at + gap_m, 1.0) } else { (at - gap_m, at, -1.0) };
+    GapLeg { conductor: leg.conductor, from_m, to_m, sign }
 }

@@ -34,6 +34,9 @@ pub struct Prediction {
     /// Where the file has variants.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub variants: Vec<VariantOutcome>,
+    /// Radiation patterns, where they were asked for.
+    #[serde(default, skip_serializing_if = "Vec::is_empty")]
+    pub patterns: Vec<pattern::PatternOutcome>,
 }
 
 /// One variant's results.

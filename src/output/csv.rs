@@ -1,5 +1,7 @@
 //! Results as comma-separated rows, units in the headers, for spreadsheets and scripts.
 
+pub use super::csv_studies::{cut, place};
+
 use super::OutputError;
 use crate::outcome::{FrequencyOutcome, PartOutcome, Prediction, ShieldEnd};
 use std::collections::BTreeSet;
@@ -81,7 +83,7 @@ fn parts(frequency: &FrequencyOutcome) -> impl Iterator<Item = &PartOutcome> {
 }
 
 /// Shortest digits that read back the same; nothing for what is missing or not a number.
-fn number(value: Option<f64>) -> String {
+pub(super) fn number(value: Option<f64>) -> String {
     value.filter(|v| v.is_finite()).map_or(String::new(), |v| v.to_string())
 }
 

@@ -197,7 +197,7 @@ mod tests {
     #[test]
     fn units_follow_the_size() {
         assert_eq!(amperes(0.0204), "20.4 mA");
-        assert_eq!(amperes(1.4142), "1.41 A");
+        assert_eq!(amperes(1.4127), "1.41 A");
         assert_eq!(amperes_rms_peak(0.1), "100 / 141 mA");
         assert_eq!(amperes_rms_peak(0.0), "under 0.100 mA");
         assert_eq!(volts(12_345.0), "12.3 kV");

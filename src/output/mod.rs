@@ -14,6 +14,7 @@ pub mod vary;
 
 mod bands;
 mod cautions;
+mod csv_studies;
 mod figures;
 mod whole;
 mod worst;

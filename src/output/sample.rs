@@ -1,5 +1,7 @@
 //! Made-up results for tests of tables and pictures: standing waves on a plausible Sallowford station, not solved.
 
+#![allow(clippy::unwrap_used)]
+
 use crate::layout::{BandEdge, Warning};
 use crate::outcome::*;
 use num_complex::Complex64;
@@ -163,6 +165,7 @@ pub(crate) fn prediction() -> Prediction {
         }],
         frequencies: frequencies(1.0),
         variants: vec![VariantOutcome { name: "wet".into(), frequencies: frequencies(1.3) }],
+        patterns: Vec::new(),
     }
 }
 

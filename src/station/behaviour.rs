@@ -244,6 +244,14 @@ fn several_faults_come_in_one_go() {
 }
 
 #[test]
+fn what_the_model_does_not_have_is_said() {
+    for (old, new) in [("[earth]", "[earth]\nslope = \"5 deg\""), ("[earth]", "[roof]\nsize = 3\n[earth]")] {
+        let text = Station::read(&FILE.replacen(old, new, 1), "hut.toml", &[], &Few).unwrap_err().to_string();
+        assert!(text.contains("outside the model"), "{text}");
+    }
+}
+
+#[test]
 fn an_outside_diameter_alone_estimates_the_shield() {
     let station = with(&[("coax.outside_diameter", "5 mm")]).unwrap();
     let coax = station.coax.unwrap();

@@ -1,7 +1,7 @@
 //! The station file: what the person wrote, in SI units, checked, every value still knowing where it stands.
 //!
 //! Takes the TOML text of section "The station file" of README and a [`Catalogue`]; gives a [`Station`], or a
-//! [`Refused`] with every fault found, each with line, column, reason and mend. The steps: [`source`] texts and places,
+//! [`Refused`] with every fault found, each with line, column, reason and mend. The steps: `source` texts and places,
 //! `node` the document as a tree, `path`, `change`, `protective` and
 //! `variant` values set by path, `raw` the tables as written, `check` the tables as
 //! meant. A [`Document`] is the file parsed once, for studies that set values many times.

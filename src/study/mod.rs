@@ -1,12 +1,17 @@
 //! Questions asked of a station: one prediction, or the same question many times.
 //!
-//! A study never touches a kernel: it goes through [`crate::ports`], [`crate::field`] and [`crate::network`].
+//! Takes a placed station; gives plain outcomes. A study never touches a kernel: it goes through [`crate::ports`], [`crate::field`] and
+//! [`crate::network`].
 
+mod barycentric;
+pub mod curve;
+pub mod earthing;
+mod pattern;
 mod predict;
+pub mod rational;
 mod shield;
-
 pub mod store;
-
 pub mod vary;
 
-pub use predict::{Failure, Options, predict};
+pub use pattern::pattern;
+pub use predict::{Failure, Options, predict, predict_variants};

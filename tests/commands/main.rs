@@ -1,4 +1,5 @@
 //! The program as a person runs it: station files good and bad, changes on the command line.
+#![allow(clippy::unwrap_used)]
 
 mod few;
 mod malformed;

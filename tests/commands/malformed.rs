@@ -73,3 +73,24 @@ fn one_mistake_is_one_fault() {
     let single = cases.iter().filter(|c| judge(c).is_err_and(|r| r.faults.len() == 1)).count();
     assert!(single * 10 >= cases.len() * 8, "only {single} of {} files are told one fault", cases.len());
 }
+
+#[test]
+fn the_program_refuses_them_with_status_two_and_nothing_on_standard_output() {
+    for case in cases() {
+        // Variants are read by the commands that compute them.
+        if case.name.starts_with("variant-") {
+            continue;
+        }
+        let folder = tempfile::tempdir().unwrap();
+        std::fs::write(folder.path().join(&case.name), &case.text).unwrap();
+        let mut program = std::process::Command::new(env!("CARGO_BIN_EXE_braidwise"));
+        let run = program.args(["predict", &case.name, "--json"]).current_dir(folder.path()).output().unwrap();
+        let told = String::from_utf8_lossy(&run.stderr);
+        let place = format!("{}:{}:", case.name, case.line);
+        assert_eq!(run.status.code(), Some(2), "{}: {told}", case.name);
+        assert!(run.stdout.is_empty(), "{}", case.name);
+        for part in [&place, &case.reason, &case.mend] {
+            assert!(told.contains(part), "{}: no {part:?} in\n{told}", case.name);
+        }
+    }
+}

@@ -1,3 +1,4 @@
 //! What must hold for any input.
+#![allow(clippy::unwrap_used)]
 
 mod curve;

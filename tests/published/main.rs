@@ -4,4 +4,6 @@
 
 mod catalogue;
 mod catalogue_soil_models;
+mod halfspace;
 mod network;
+mod rational;

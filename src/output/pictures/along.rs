@@ -127,13 +127,15 @@ fn places(drawing: &mut Drawing, curve: &Curve, frames: &[Frame; 2]) {
         for frame in frames {
             drawing.patterned(&[[x, frame.y.start], [x, frame.y.end]], 1.0, 0.35, PATTERNS[4]);
         }
-        let anchor = if x > 900.0 { Anchor::End } else { Anchor::Start };
-        let side = if x > 900.0 { -6.0 } else { 6.0 };
+        let (anchor, side, room) =
+            if x > 900.0 { (Anchor::End, -6.0, 500.0) } else { (Anchor::Start, 6.0, 1180.0 - x) };
+        let name = fitted(&name, EM, room.min(500.0));
         let rows = [492.0, 511.0, 530.0].map(|y| Words::new([x + side, y], EM, anchor, name.as_str()));
-        let free = rows.iter().find(|w| !taken.iter().any(|t| t.meets(&w.extent().grown(4.0)))).unwrap_or(&rows[2]);
+        if let Some(free) = rows.into_iter().find(|w| !taken.iter().any(|t| t.meets(&w.extent().grown(4.0)))) {
+            taken.push(free.extent());
+            drawing.words(free);
+        }
         drawing.patterned(&[[x, frames[0].y.start], [x, frames[1].y.end]], 1.0, 0.35, PATTERNS[4]);
-        taken.push(free.extent());
-        drawing.words(free.clone());
     }
 }
 

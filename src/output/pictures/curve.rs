@@ -43,9 +43,8 @@ pub(super) fn drawing(curve: &CurveOutcome) -> Result<Drawing, OutputError> {
         let both = curve.points.iter().flat_map(|p| [value(p).re, value(p).im]);
         let y = Scale::linear(run_of(both, true), bottom, top);
         boxes(&mut drawing, curve, &stretches, y, head);
-        let lines: [(&dyn Fn(&CurvePoint) -> f64, Pattern); 2] =
-            [(&|p| value(p).re, PATTERNS[0]), (&|p| value(p).im, PATTERNS[4])];
-        lines.into_iter().for_each(|(line, pattern)| draw_line(&mut drawing, &stretches, y, line, pattern));
+        draw_line(&mut drawing, &stretches, y, &|p| value(p).re, PATTERNS[0]);
+        draw_line(&mut drawing, &stretches, y, &|p| value(p).im, PATTERNS[4]);
         zero(&mut drawing, &stretches, y);
         key(&mut drawing, top - 12.0);
     }

@@ -229,21 +229,6 @@ pub(super) fn fitted(text: &str, em: f64, room: f64) -> String {
     String::new()
 }
 
-/// Breaks text into lines no wider than `room`.
-pub(super) fn wrapped(text: &str, em: f64, room: f64) -> Vec<String> {
-    let mut lines: Vec<String> = Vec::new();
-    for word in text.split_whitespace() {
-        match lines.last_mut() {
-            Some(line) if font::width(&format!("{line} {word}"), em) <= room => {
-                line.push(' ');
-                line.push_str(word);
-            }
-            _ => lines.push(word.to_string()),
-        }
-    }
-    lines
-}
-
 /// Cuts a polyline into strokes after a pattern.
 fn strokes(points: &[Spot], pattern: Pattern) -> Vec<Vec<Spot>> {
     let mut out = Vec::new();
@@ -296,6 +281,5 @@ mod tests {
         let cut = fitted("a station with a very long title indeed", 15.0, 120.0);
         assert!(cut.ends_with('…') && font::width(&cut, 15.0) <= 120.0, "{cut}");
         assert_eq!(fitted("short", 15.0, 120.0), "short");
-        assert!(wrapped("one two three four five", 15.0, 60.0).len() > 2);
     }
 }

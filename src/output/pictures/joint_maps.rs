@@ -16,6 +16,9 @@ const BOXES: [[f64; 2]; 2] = [[158.0, 508.0], [596.0, 946.0]];
 /// Values over `[first][second]`.
 type Plane = Vec<Vec<Option<f64>>>;
 
+/// Title of a map, title of its key, and how its values are said.
+type Said<'a> = (&'a str, &'a str, &'a dyn Fn(f64) -> String);
+
 /// What both maps share.
 struct Joint<'a> {
     station: &'a str,
@@ -92,7 +95,7 @@ fn drawing(joint: &Joint) -> Drawing {
     let mut drawing = Drawing::new(1104.0, joint.station, &joint.below);
     let amperes = |v: f64| figures::round(&figures::amperes(v));
     let ratio = |v: f64| figures::swr(v);
-    let says: [(&str, &str, &dyn Fn(f64) -> String); 2] = [
+    let says: [Said; 2] = [
         ("Current going on into the shack, RMS, worst of all frequencies and variants", "current", &amperes),
         ("Standing-wave ratio at the radio, worst of all frequencies and variants", "SWR", &ratio),
     ];

@@ -11,6 +11,9 @@ const EDGES: [f64; 2] = [104.0, 1164.0];
 /// Top and bottom of the boxes: resistance, reactance, standing-wave ratio, current.
 const BOXES: [[f64; 2]; 4] = [[176.0, 326.0], [352.0, 502.0], [528.0, 688.0], [714.0, 874.0]];
 
+/// A quantity against length, m.
+type Line = Vec<(f64, Option<f64>)>;
+
 /// One picture for every six bands, in the order of the file.
 ///
 /// # Errors
@@ -27,14 +30,14 @@ pub(super) fn drawings(cut: &CutOutcome) -> Result<Vec<Drawing>, OutputError> {
 }
 
 /// A quantity of a band against length: its worst over edges and variants.
-fn worst(cut: &CutOutcome, group: &Group, values: &OverLength<f64>, scale: f64) -> Vec<(f64, Option<f64>)> {
+fn worst(cut: &CutOutcome, group: &Group, values: &OverLength<f64>, scale: f64) -> Line {
     let cases = || (0..cut.variants.len()).flat_map(|v| group.members.iter().map(move |f| (v, *f)));
     let most = |l: usize| cases().filter_map(|(v, f)| values.get(v, f, l, 0)).copied().fold(0.0_f64, f64::max);
     cut.lengths_m.iter().enumerate().map(|(l, length_m)| (*length_m, Some(scale * most(l)))).collect()
 }
 
 /// The feed point in the middle of a band, nominal.
-fn feed(cut: &CutOutcome, group: &Group, part: fn(num_complex::Complex64) -> f64) -> Vec<(f64, Option<f64>)> {
+fn feed(cut: &CutOutcome, group: &Group, part: fn(num_complex::Complex64) -> f64) -> Line {
     let middle = group.members[group.members.len() / 2];
     let value = |l: usize| cut.feed_ohm.get(0, middle, l, 0).map(|z| part(*z));
     cut.lengths_m.iter().enumerate().map(|(l, length_m)| (*length_m, value(l))).collect()
@@ -45,7 +48,7 @@ fn drawing(cut: &CutOutcome, groups: &[Group]) -> Drawing {
     let ends = [cut.lengths_m[0], cut.lengths_m[cut.lengths_m.len() - 1]];
     let x = Scale::linear(ends, EDGES[0], EDGES[1]);
     key(&mut drawing, groups);
-    let curves: Vec<[Vec<(f64, Option<f64>)>; 4]> = groups
+    let curves: Vec<[Line; 4]> = groups
         .iter()
         .map(|g| {
             let current = worst(cut, g, &cut.entry_current_a, 1e3);
@@ -63,7 +66,7 @@ fn drawing(cut: &CutOutcome, groups: &[Group]) -> Drawing {
         } else {
             Scale::linear(run_of(values().chain(limits[index]), true), bottom, top)
         };
-        let lines: Vec<&[(f64, Option<f64>)]> = curves.iter().map(|c| c[index].as_slice()).collect();
+        let lines: Vec<&Line> = curves.iter().map(|c| &c[index]).collect();
         panel(&mut drawing, cut, Frame { x, y }, titles[index], (&lines, limits[index], index == 3));
     }
     present(&mut drawing, cut, x);
@@ -92,7 +95,7 @@ fn panel(
     cut: &CutOutcome,
     frame: Frame,
     title: &str,
-    (lines, limit, avoid): (&[&[(f64, Option<f64>)]], Option<f64>, bool),
+    (lines, limit, avoid): (&[&Line], Option<f64>, bool),
 ) {
     let area = frame.area();
     if let Some(pick) = cut.picks.first() {

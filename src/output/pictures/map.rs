@@ -129,7 +129,8 @@ pub(super) fn shade(drawing: &mut Drawing, frame: &Frame, grid: &Grid, levels: &
         for (class, left, right) in runs(&grid.x, &row, frame, levels) {
             let grey = levels.grey(class);
             if grey < 1.0 || holes {
-                drawing.rectangle(Area::new(left, top, right, top + high), grey);
+                // A little into the next strip, which covers it: no seams between strips.
+                drawing.rectangle(Area::new(left, top, right, (top + high + 0.3).min(area.bottom)), grey);
             }
         }
     }

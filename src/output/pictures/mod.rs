@@ -1,7 +1,7 @@
 //! Pictures in black and white: SVG and PNG of each, drawn in rectangular axes with plotters.
 //!
-//! Takes outcomes; gives files. A picture is first a list of marks ([`drawing`]), so that tests can ask whether texts
-//! overlap or leave it, and is then painted by plotters' two backends ([`paint`]) in the font carried in the program.
+//! Takes outcomes; gives files. A picture is first a list of marks (`drawing`), so that tests can ask whether texts
+//! overlap or leave it, and is then painted by plotters' two backends (`paint`) in the font carried in the program.
 
 mod along;
 mod axes;
@@ -24,6 +24,8 @@ mod symbols;
 
 #[cfg(test)]
 mod checks;
+#[cfg(test)]
+mod hard_cases;
 
 use super::OutputError;
 use crate::outcome::Prediction;

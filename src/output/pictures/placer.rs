@@ -2,7 +2,7 @@
 //! with hair lines that cross neither labels nor each other.
 
 use super::axes::clipped;
-use super::drawing::{Anchor, Area, Drawing, Spot, Words};
+use super::drawing::{Anchor, Area, Drawing, Spot, Words, fitted};
 
 /// What is taken already, and the box labels must stay in.
 pub(super) struct Placer {
@@ -83,7 +83,8 @@ impl Placer {
 
     /// Writes a text near a spot with a hair line to it. Left out where there is no room: the key names it anyway.
     pub(super) fn label(&mut self, drawing: &mut Drawing, spot: Spot, towards: Spot, (em, text): (f64, &str)) -> bool {
-        let probe = Words::centred([0.0, 0.0], em, Anchor::Middle, text).extent();
+        let text = fitted(text, em, 170.0);
+        let probe = Words::centred([0.0, 0.0], em, Anchor::Middle, text.as_str()).extent();
         let half = [0.5 * probe.width() + 1.0, 0.5 * probe.height() + 1.0];
         let Some(centre) = self.centre(spot, half, towards) else {
             return false;

@@ -133,7 +133,7 @@ fn draw(drawing: &mut Drawing, steps: &[Step], pattern: Pattern) {
             width: pair[0].width + t * (pair[1].width - pair[0].width),
             ..pair[0]
         };
-        let on = |phase: usize| phase % 2 == 0;
+        let on = |phase: usize| phase.is_multiple_of(2);
         if on(phase) && stroke.is_empty() {
             stroke.push(pair[0]);
         }

@@ -25,6 +25,9 @@ use super::node::{Node, NodeKind};
 use super::source::{Fault, Place, Written};
 use std::borrow::Cow;
 
+/// Words in keys that ask for what the model does not have.
+const OUTSIDE: [&str; 6] = ["slope", "layer", "sheet", "hull", "roof", "terrain"];
+
 /// What a reading carries along.
 pub(crate) struct Reader {
     /// Metres in the file's unit of bare lengths.
@@ -49,6 +52,15 @@ impl Reader {
             return false;
         };
         for entry in entries.iter().filter(|e| !known.contains(&e.key.as_str())) {
+            if OUTSIDE.iter().any(|word| entry.key.contains(word)) {
+                let reason = format!("`{}`: slopes, layers and sheet metal are outside the model", entry.key);
+                self.fault(
+                    entry.place,
+                    reason,
+                    "take the soil that lies within the first metres, level; model a rail, gutter or frame as wires",
+                );
+                continue;
+            }
             let mend = match super::nearest(&entry.key, known.iter().copied()) {
                 Some(name) => format!("did you mean `{name}`?"),
                 None => format!("the keys here are {}", super::listed(known.iter().copied())),

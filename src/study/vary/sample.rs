@@ -47,7 +47,7 @@ pub enum SampleError {
 ///
 /// # Errors
 /// [`SampleError`].
-pub fn points(axes: &[Axis], sampling: Sampling) -> Result<Vec<Vec<String>>, SampleError> {
+pub(super) fn points(axes: &[Axis], sampling: Sampling) -> Result<Vec<Vec<String>>, SampleError> {
     if axes.is_empty() {
         return Err(SampleError::NoAxis);
     }
