@@ -3,8 +3,10 @@
 //! One file per command; `flags` holds what they share, `load` reads the station, `stop` the exit statuses and Ctrl-C.
 
 mod check;
+mod cut;
 mod flags;
 mod load;
+mod place;
 mod predict;
 mod stop;
 mod vary;
@@ -26,6 +28,10 @@ enum Command {
     Check(check::Check),
     /// Feed point, current on the outside of the coax and power budget on every band
     Predict(predict::Predict),
+    /// Where a choke goes along the coax: every place, candidate, band and variant, and the one to choose
+    Place(place::Place),
+    /// How long a wire, a counterpoise or the coax should be
+    Cut(cut::Cut),
     /// Any values of the file varied together, on a grid or by Latin hypercube
     Vary(vary::Vary),
 }
@@ -37,6 +43,8 @@ pub fn run() -> ExitCode {
     let done = match Cli::parse().command {
         Command::Check(check) => check.run(),
         Command::Predict(predict) => predict.run(),
+        Command::Place(place) => place.run(),
+        Command::Cut(cut) => cut.run(),
         Command::Vary(vary) => vary.run(),
     };
     match done {

@@ -152,31 +152,34 @@ fn span(range: (f64, f64), level: u32, index: usize) -> (f64, f64) {
 fn to_monomials(tensor: &Tensor) -> [[f64; LANES]; TERMS] {
     let basis = monomials::<SIDE>();
     let mut terms = [[0.0; LANES]; TERMS];
-    for lane in 0..LANES {
-        let mut cube = [[[0.0; SIDE]; SIDE]; SIDE];
-        for a in 0..SIDE {
-            for b in 0..SIDE - a {
-                for c in 0..SIDE - a - b {
-                    let value = tensor.at(lane, [a, b, c]);
-                    for (i, x) in basis[a].iter().enumerate().take(a + 1) {
-                        for (j, y) in basis[b].iter().enumerate().take(b + 1) {
-                            for (k, t) in basis[c].iter().enumerate().take(c + 1) {
-                                cube[k][j][i] += value * x * y * t;
-                            }
+    for (lane, values) in (0..LANES).map(|lane| (lane, lane_to_monomials(tensor, lane, &basis))) {
+        for (term, value) in terms.iter_mut().zip(values) {
+            term[lane] = value;
+        }
+    }
+    terms
+}
+
+fn lane_to_monomials(tensor: &Tensor, lane: usize, basis: &[[f64; SIDE]; SIDE]) -> [f64; TERMS] {
+    let mut cube = [[[0.0; SIDE]; SIDE]; SIDE];
+    for a in 0..SIDE {
+        for b in 0..SIDE - a {
+            for c in 0..SIDE - a - b {
+                let value = tensor.at(lane, [a, b, c]);
+                for (layer, t) in cube.iter_mut().zip(&basis[c]).take(c + 1) {
+                    for (row, y) in layer.iter_mut().zip(&basis[b]).take(b + 1) {
+                        for (out, x) in row.iter_mut().zip(&basis[a]).take(a + 1) {
+                            *out += value * x * y * t;
                         }
                     }
                 }
             }
         }
-        let mut place = 0;
-        for (k, layer) in cube.iter().enumerate() {
-            for (j, row) in layer.iter().enumerate().take(SIDE - k) {
-                for value in row.iter().take(SIDE - k - j) {
-                    terms[place][lane] = *value;
-                    place += 1;
-                }
-            }
-        }
+    }
+    let mut terms = [0.0; TERMS];
+    let ordered = (0..SIDE).flat_map(|k| (0..SIDE - k).flat_map(move |j| (0..SIDE - k - j).map(move |i| (k, j, i))));
+    for (term, (k, j, i)) in terms.iter_mut().zip(ordered) {
+        *term = cube[k][j][i];
     }
     terms
 }

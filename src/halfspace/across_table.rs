@@ -187,7 +187,7 @@ fn sample(space: &HalfSpace, sides: Sides, count: [usize; 3], fineness: Fineness
     let columns = heights.len() * depths.len();
     let fill = |node: &Node, out: &mut [f64]| {
         let s = Spectral::at(space, node);
-        let deep: Vec<[Complex64; 3]> = depths.iter().map(|&depth| front(&weights, node, &s, depth)).collect();
+        let deep = fronts(&weights, node, &s, &depths);
         for (i, &height) in heights.iter().enumerate() {
             let fall = (-s.u0 * height).exp();
             for (j, deep) in deep.iter().enumerate() {
@@ -215,17 +215,19 @@ fn sample(space: &HalfSpace, sides: Sides, count: [usize; 3], fineness: Fineness
     Tensor { size: count, data }.transformed()
 }
 
-/// Weighted spectral functions at a depth, without the factor of the height.
-fn front(weights: &Weights, node: &Node, s: &Spectral, depth: f64) -> [Complex64; 3] {
-    let level = (-s.u0 * depth).exp();
-    let lag = exp_less_one(-(s.u1 - s.u0) * depth);
+/// Weighted spectral functions at every depth, without the factor of the height.
+fn fronts(weights: &Weights, node: &Node, s: &Spectral, depths: &[f64]) -> Vec<[Complex64; 3]> {
+    let weight = node.weight * s.lambda;
     let [h, q, p] = weights.reduced(s);
-    let weight = node.weight * s.lambda * level;
-    [
-        weight * (h + weights.full_h(s) * lag),
-        weight * (q + weights.full_q(s) * lag),
-        -node.weight * level * (p + (p + weights.slope) * lag),
-    ]
+    let (full_h, full_q, full_p) = (weight * weights.full_h(s), weight * weights.full_q(s), p + weights.slope);
+    let (h, q) = (weight * h, weight * q);
+    let (p, full_p) = (-node.weight * p, -node.weight * full_p);
+    let at = |&depth: &f64| {
+        let level = (-s.u0 * depth).exp();
+        let lag = exp_less_one(-(s.u1 - s.u0) * depth);
+        [level * (h + full_h * lag), level * (q + full_q * lag), level * (p + full_p * lag)]
+    };
+    depths.iter().map(at).collect()
 }
 
 #[cfg(test)]

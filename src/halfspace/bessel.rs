@@ -36,7 +36,7 @@ fn by_recurrence(x: f64) -> (f64, f64) {
     let (mut above, mut here, mut sum) = (0.0, 1e-30, 0.0);
     let mut order = start;
     while order > 0 {
-        if order % 2 == 0 {
+        if order.is_multiple_of(2) {
             sum += here;
         }
         (above, here) = (here, order as f64 * inverse * here - above);

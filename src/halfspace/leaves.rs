@@ -7,6 +7,7 @@ use super::tensor::{Halvings, Tensor};
 
 /// Total degree of a leaf's polynomial.
 pub(super) const DEGREE: usize = 5;
+const SIDE: usize = DEGREE + 1;
 /// Terms of total degree ≤ [`DEGREE`].
 pub(super) const TERMS: usize = (DEGREE + 1) * (DEGREE + 2) / 2;
 /// Halvings each way at most.
@@ -164,25 +165,31 @@ fn span(range: (f64, f64), level: u32, index: usize) -> (f64, f64) {
 }
 
 fn to_monomials(tensor: &Tensor) -> [[f64; LANES]; TERMS] {
-    const SIDE: usize = DEGREE + 1;
     let basis = monomials::<SIDE>();
     let mut terms = [[0.0; LANES]; TERMS];
-    for lane in 0..LANES {
-        let mut half = [[0.0; SIDE]; SIDE];
-        for (k, polynomial) in basis.iter().enumerate() {
-            for l in 0..SIDE - k {
-                let value = tensor.at(lane, [k, l, 0]);
-                for (row, b) in half.iter_mut().zip(polynomial).take(k + 1) {
-                    row[l] += b * value;
-                }
+    for (lane, values) in (0..LANES).map(|lane| (lane, lane_to_monomials(tensor, lane, &basis))) {
+        for (term, value) in terms.iter_mut().zip(values) {
+            term[lane] = value;
+        }
+    }
+    terms
+}
+
+fn lane_to_monomials(tensor: &Tensor, lane: usize, basis: &[[f64; SIDE]; SIDE]) -> [f64; TERMS] {
+    let mut half = [[0.0; SIDE]; SIDE];
+    for (k, polynomial) in basis.iter().enumerate() {
+        for l in 0..SIDE - k {
+            let value = tensor.at(lane, [k, l, 0]);
+            for (row, b) in half.iter_mut().zip(polynomial).take(k + 1) {
+                row[l] += b * value;
             }
         }
-        let mut place = 0;
-        for j in 0..SIDE {
-            for row in half.iter().take(SIDE - j) {
-                terms[place][lane] = basis.iter().zip(row).skip(j).map(|(polynomial, r)| polynomial[j] * r).sum();
-                place += 1;
-            }
+    }
+    let mut terms = [0.0; TERMS];
+    let mut place = terms.iter_mut();
+    for j in 0..SIDE {
+        for (row, term) in half.iter().take(SIDE - j).zip(place.by_ref()) {
+            *term = basis.iter().zip(row).skip(j).map(|(polynomial, r)| polynomial[j] * r).sum();
         }
     }
     terms

@@ -27,6 +27,15 @@
 //! E = −jω (μ₀/4π) K·J − ∇Φ, Φ = (1/4πε₀) K_Φ ρ_charge, H = (1/4π) ∇ × (K·J).
 //!
 //! K_xx, K_Φ and P are continuous across the surface; K_zz steps by (n²−1)Q there, as E_z must.
+//!
+//! | I want to | start in | prove in |
+//! |---|---|---|
+//! | change a spectral function or its static part | `spectrum`, `potentials` | `tests/published/halfspace.rs` |
+//! | change the path of integration | `rule`, `panels` | the same |
+//! | make tables smaller or faster | `shells` (what is sampled), `spectral_sum` (how), `leaves` (what is kept) | tests in `side_table` |
+//! | work on pairs across the surface | `across_table`, `across_leaves` | tests there |
+//! | change fields of an element, the ground wave | `dipole`, `ground_wave` | tests there and published ones |
+//! | change the earth loss | `loss`, `loss_table` | tests there: input = sky + ground |
 
 mod across_leaves;
 mod across_table;

@@ -82,7 +82,16 @@ impl Tensor {
         let [a, b, c] = self.size;
         for lane in self.data.chunks_exact(a * b * c) {
             let mut sums = [0.0; 3];
-            for (i, layer) in lane.chunks_exact(b * c).enumerate() {
+            if c == 1 {
+                for (i, row) in lane.chunks_exact(b).enumerate() {
+                    let from = (degree + 1).saturating_sub(i).min(b);
+                    let turn = (i + 1).clamp(from, b);
+                    sums[0] += row[from..turn].iter().map(|v| v.abs()).sum::<f64>();
+                    sums[1] += row[turn..].iter().map(|v| v.abs()).sum::<f64>();
+                }
+            }
+            let cubes = if c == 1 { &[] } else { lane };
+            for (i, layer) in cubes.chunks_exact(b * c).enumerate() {
                 for (j, row) in layer.chunks_exact(c).enumerate() {
                     let from = (degree + 1).saturating_sub(i + j).min(c);
                     let most = i.max(j);

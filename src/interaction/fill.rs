@@ -31,7 +31,7 @@ pub(super) struct PairBlocks {
 }
 
 /// How the unknowns enter the Legendre coefficients of an element's current.
-type UnknownMap = Vec<(usize, [f64; MAX_DEGREE + 1])>;
+pub(super) type UnknownMap = Vec<(usize, [f64; MAX_DEGREE + 1])>;
 
 /// A mesh with everything its matrices at all frequencies share.
 #[derive(Debug, Clone)]
@@ -52,7 +52,13 @@ impl Interaction {
     /// `with_image`: the earth is perfect or soil, so that mirror images occur.
     #[must_use]
     pub fn new(mesh: Mesh, with_image: bool) -> Self {
-        let pairs = |mirrored, region| Pairs::of(&mesh, mirrored, |e, f| region_of(e, f) == region);
+        Self::among(mesh, with_image, |_, _| true)
+    }
+
+    /// As [`Interaction::new`], only for some of the pairs i ≤ j of elements.
+    pub(super) fn among(mesh: Mesh, with_image: bool, keep: impl Fn(usize, usize) -> bool) -> Self {
+        let region = |i: usize, j: usize| region_of(&mesh.elements[i], &mesh.elements[j]);
+        let pairs = |mirrored, wanted| Pairs::of(&mesh, mirrored, |i, j| keep(i, j) && region(i, j) == wanted);
         let direct = [Region::Above, Region::Below, Region::Across].map(|region| pairs(false, region));
         let image = with_image.then(|| [Region::Above, Region::Below].map(|region| pairs(true, region)));
         let nodes = Nodes::of(&mesh.elements.iter().map(Line::of).collect::<Vec<_>>());
@@ -100,8 +106,46 @@ impl Interaction {
         z
     }
 
+    /// Scalar potential along a few elements as rows over the unknowns, V/A: `rows[n][u]` are the Legendre coefficients on
+    /// `elements[n]` for 1 A in unknown `u`. Walks only the pairs that these elements are in.
+    #[must_use]
+    pub fn potential_rows(&self, earth: &Surroundings, elements: &[usize]) -> Vec<Vec<Legendre>> {
+        let factor = -earth.air().electric();
+        let mut rows = vec![vec![[Complex64::ZERO; MAX_DEGREE + 1]; self.mesh.unknowns]; elements.len()];
+        let mut add = |row: usize, source: usize, block: &dyn Fn(usize, usize) -> Complex64| {
+            for (unknown, factors) in &self.maps[source] {
+                let charge = derive(factors.map(Complex64::from)).map(|x| x * 2.0);
+                for a in 0..=MAX_DEGREE {
+                    let sum: Complex64 = (0..=MAX_DEGREE).map(|b| block(a, b) * charge[b]).sum();
+                    rows[row][*unknown][a] += factor * (2.0 * a as f64 + 1.0) * sum;
+                }
+            }
+        };
+        self.walk_some(earth, &|i, j| elements.contains(&i) || elements.contains(&j), |i, j, blocks| {
+            for (row, &element) in elements.iter().enumerate() {
+                if element == i {
+                    add(row, j, &|a, b| blocks.potential[a][b]);
+                }
+                if element == j && i != j {
+                    add(row, i, &|a, b| blocks.potential[b][a]);
+                }
+            }
+        });
+        rows
+    }
+
     /// Hand every pair (i ≤ j) with its kernels, all images included, to a function. A pair may come in several parts.
-    pub(super) fn walk(&self, earth: &Surroundings, mut visit: impl FnMut(usize, usize, &PairBlocks)) {
+    pub(super) fn walk(&self, earth: &Surroundings, visit: impl FnMut(usize, usize, &PairBlocks)) {
+        self.walk_some(earth, &|_, _| true, visit);
+    }
+
+    /// The same for the pairs that `keep` lets through.
+    fn walk_some(
+        &self,
+        earth: &Surroundings,
+        keep: &impl Fn(usize, usize) -> bool,
+        mut visit: impl FnMut(usize, usize, &PairBlocks),
+    ) {
         for family in earth.families() {
             let place = match family.region {
                 Region::Above => 0,
@@ -109,14 +153,14 @@ impl Interaction {
                 Region::Across => 2,
             };
             match (family.mirrored, &self.image, &self.image_nodes) {
-                (false, ..) => self.walk_family(&self.direct[place], &self.nodes, &family, &mut visit),
-                (true, Some(image), Some(nodes)) => self.walk_family(&image[place], nodes, &family, &mut visit),
+                (false, ..) => self.walk_family(&self.direct[place], &self.nodes, &family, keep, &mut visit),
+                (true, Some(image), Some(nodes)) => self.walk_family(&image[place], nodes, &family, keep, &mut visit),
                 (true, ..) => debug_assert!(false, "an earth with images needs an interaction prepared with them"),
             }
         }
         let Some(soil) = earth.soil() else { return };
         for (pairs, region) in self.direct.iter().zip([Region::Above, Region::Below, Region::Across]) {
-            for pair in &pairs.list {
+            for pair in pairs.list.iter().filter(|p| keep(p.one, p.two)) {
                 let (e, f) = (&self.mesh.elements[pair.one], &self.mesh.elements[pair.two]);
                 visit(pair.one, pair.two, &rest::blocks(e, f, soil, region));
             }
@@ -128,11 +172,12 @@ impl Interaction {
         pairs: &Pairs,
         sources: &Nodes,
         family: &Family,
+        keep: &impl Fn(usize, usize) -> bool,
         visit: &mut impl FnMut(usize, usize, &PairBlocks),
     ) {
         let (k, weight) = (family.k, family.weight);
         let half_k2 = 0.5 * k * k;
-        for pair in &pairs.list {
+        for pair in pairs.list.iter().filter(|p| keep(p.one, p.two)) {
             let (e, f) = (&self.mesh.elements[pair.one], &self.mesh.elements[pair.two]);
             let (n, m) = (usize::from(pair.points.0), usize::from(pair.points.1));
             let points = PointPair {
@@ -163,7 +208,7 @@ impl Interaction {
 }
 
 /// Which sides of the surface the two elements lie on.
-fn region_of(e: &Element, f: &Element) -> Region {
+pub(super) fn region_of(e: &Element, f: &Element) -> Region {
     match (e.below, f.below) {
         (false, false) => Region::Above,
         (true, true) => Region::Below,
@@ -232,7 +277,7 @@ fn add_block(sum: &mut Block, block: &Block) {
 }
 
 /// Metal loss and jacket of one element.
-fn add_local(e: &Element, map: &UnknownMap, earth: &Surroundings, z: &mut Matrix) {
+pub(super) fn add_local(e: &Element, map: &UnknownMap, earth: &Surroundings, z: &mut Matrix) {
     let medium = earth.air();
     let mut a = Complex64::ZERO;
     let mut p = Complex64::ZERO;
@@ -258,7 +303,7 @@ fn add_local(e: &Element, map: &UnknownMap, earth: &Surroundings, z: &mut Matrix
 }
 
 /// Add an element block, given in Legendre coefficients, to the unknowns' matrix.
-fn scatter(one: &UnknownMap, two: &UnknownMap, block: &Block, twice: bool, z: &mut Matrix) {
+pub(super) fn scatter(one: &UnknownMap, two: &UnknownMap, block: &Block, twice: bool, z: &mut Matrix) {
     for (v, y) in two {
         let column: Legendre = std::array::from_fn(|a| (0..=MAX_DEGREE).map(|b| block[a][b] * y[b]).sum());
         for (u, x) in one {
@@ -277,7 +322,7 @@ pub(super) fn derive(c: Legendre) -> Legendre {
 }
 
 /// a · M + p · D N Dᵗ, D the transposed derivative.
-fn combine(m: &Block, a: Complex64, n: &Block, p: Complex64) -> Block {
+pub(super) fn combine(m: &Block, a: Complex64, n: &Block, p: Complex64) -> Block {
     let raise = |row: Legendre| [Complex64::ZERO, row[0], row[1] * 3.0, row[2] * 5.0 + row[0]];
     let rows = [raise(n[0]), raise(n[1]), raise(n[2])];
     let mut out = ZERO;

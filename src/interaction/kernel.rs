@@ -81,6 +81,24 @@ pub(super) fn pair_block(pair: &PointPair, k_per_m: f64, alpha_per_m: f64) -> Sp
     pair_loop::<false>(pair, k_per_m, alpha_per_m)
 }
 
+/// e^{−j(k − jα)R}/R for many squared distances; all slices of one length.
+pub(super) fn waves(squared_m2: &[f64], k_per_m: f64, alpha_per_m: f64, re: &mut [f64], im: &mut [f64]) {
+    #[cfg(target_arch = "x86_64")]
+    {
+        if std::is_x86_feature_detected!("avx2") && std::is_x86_feature_detected!("fma") {
+            // SAFETY: the processor has AVX2 and FMA, checked on the line above.
+            return unsafe { waves_avx2(squared_m2, k_per_m, alpha_per_m, re, im) };
+        }
+    }
+    wave::<false>(squared_m2, k_per_m, alpha_per_m, re, im);
+}
+
+#[cfg(target_arch = "x86_64")]
+#[target_feature(enable = "avx2,fma")]
+fn waves_avx2(squared_m2: &[f64], k: f64, alpha: f64, re: &mut [f64], im: &mut [f64]) {
+    wave::<true>(squared_m2, k, alpha, re, im);
+}
+
 #[cfg(target_arch = "x86_64")]
 #[target_feature(enable = "avx512f")]
 fn pair_avx512(pair: &PointPair, k: f64, alpha: f64) -> SplitBlock {

@@ -10,21 +10,29 @@
 //! - `surroundings`: the earth at one frequency; `rest`: what soil adds beyond images; `loss`: what its near field takes
 //! - `fill`: the matrix at one frequency
 //! - `factor`: its factorisation, checked
+//! - `probe`: potentials at a few places as rows over the unknowns
+//! - `added`, `leading`: the columns that a few further elements add, and a factorisation that serves every smaller system it begins with
 
+mod added;
 pub mod factor;
 mod fill;
 pub mod kernel;
+mod leading;
 mod line;
 mod local;
 mod loss;
 mod medium;
 mod near;
 mod pairs;
+mod probe;
 pub mod quadrature;
 mod rest;
 mod surroundings;
 
+pub use added::{Added, Columns};
 pub use factor::{Factored, SingularMatrix};
 pub use fill::{Interaction, Legendre, Matrix, PotentialMap};
+pub use leading::{Bordered, Leading};
 pub use local::internal_impedance;
+pub use probe::Spot;
 pub use surroundings::{Extent, Surroundings};

@@ -32,15 +32,15 @@ const NEAR_LENGTHS: f64 = 0.8;
 const NEAR_POINTS: u8 = 6;
 
 impl Pairs {
-    pub(crate) fn of(mesh: &Mesh, mirrored: bool, keep: impl Fn(&Element, &Element) -> bool) -> Self {
+    pub(crate) fn of(mesh: &Mesh, mirrored: bool, keep: impl Fn(usize, usize) -> bool) -> Self {
         let lines: Vec<Line> = mesh.elements.iter().map(Line::of).collect();
         let others: Vec<Line> =
             if mirrored { mesh.elements.iter().map(Line::mirrored).collect() } else { lines.clone() };
         let mut list = Vec::new();
         let mut statics = Vec::new();
-        for (i, one) in mesh.elements.iter().enumerate() {
-            for (j, two) in mesh.elements.iter().enumerate().skip(i) {
-                if !keep(one, two) {
+        for i in 0..mesh.elements.len() {
+            for j in i..mesh.elements.len() {
+                if !keep(i, j) {
                     continue;
                 }
                 let pair = classify(mesh, (i, &lines[i]), (j, &others[j]), mirrored);
@@ -85,7 +85,7 @@ fn shares_node(e: &Element, f: &Element) -> bool {
 ///
 /// With the nearest singularity at x = 1 + 2 gap/length the rule's error falls as (x + √(x² − 1))^{−2n}; the table keeps it below 10⁻⁶
 /// of the pair's moment, measured in the test below.
-fn far_points(e: &Element, gap: f64) -> u8 {
+pub(super) fn far_points(e: &Element, gap: f64) -> u8 {
     let ratio = gap / e.length_m;
     let least = e.degree as u8 + 1;
     match ratio {

@@ -29,10 +29,10 @@ pub(super) fn blocks(e: &Element, f: &Element, soil: &SoilRest, region: Region) 
             let right = legendre(*eta).map(|x| 0.5 * v * x);
             let d = (p - q).xy();
             let rho = d.norm();
-            let k = soil.rest(region, rho, p.z, q.z);
+            let k = soil.rest(region, rho, p.z, q.z, crossed);
             let (t, u) = (e.tangent, f.tangent);
             let mut c = k.xx * (t.x * u.x + t.y * u.y) + k.zz * (t.z * u.z);
-            if rho > 0.0 {
+            if crossed && rho > 0.0 {
                 let toward = d / rho;
                 // K_zx = p_rho cos φ, K_xz = −p_rho cos φ, φ from source to observer
                 c += k.p_rho * (t.z * toward.dot(&u.xy()) - toward.dot(&t.xy()) * u.z);

@@ -115,6 +115,8 @@ pub(crate) struct SoilRest {
     pub(super) above: Option<SideTable>,
     below: Option<SideTable>,
     across: Option<AcrossTable>,
+    /// Use reflection coefficients instead of the rest: for comparison only.
+    reflected: bool,
 }
 
 impl Surroundings {
@@ -129,7 +131,25 @@ impl Surroundings {
                 let above = extent.distances(extent.above_m).map(|d| SideTable::above(&space, d, TABLE_TOLERANCE));
                 let below = extent.distances(extent.below_m).map(|d| SideTable::below(&space, d, TABLE_TOLERANCE));
                 let across = extent.across().map(|d| AcrossTable::build(&space, d, TABLE_TOLERANCE));
-                Some(SoilRest { space, above, below, across })
+                Some(SoilRest { space, above, below, across, reflected: false })
+            }
+            _ => None,
+        };
+        Ok(Self { frequency_hz, earth, soil })
+    }
+
+    /// The same soil by reflection coefficients, for comparison only: what the approximation that this program does not use would give.
+    ///
+    /// Each spectral coefficient is taken at the specular ray, λ = k0 ρ/R', in front of e^{−jk0R'}/R' (the method of
+    /// stationary phase). Good only for conductors a good part of a wavelength above the surface; none may lie below it.
+    ///
+    /// # Errors
+    /// [`HalfSpaceError`] for soil constants that no half-space can have.
+    pub fn by_reflection_coefficients(frequency_hz: f64, earth: EarthAt) -> Result<Self, HalfSpaceError> {
+        let soil = match earth {
+            EarthAt::Soil { permittivity, conductivity_s_per_m } => {
+                let space = HalfSpace::new(frequency_hz, permittivity, conductivity_s_per_m)?;
+                Some(SoilRest { space, above: None, below: None, across: None, reflected: true })
             }
             _ => None,
         };
@@ -205,9 +225,13 @@ impl SoilRest {
         self.space.k1_per_m()
     }
 
-    /// What is left of the four potentials beyond the families, the image of `p_rho` included, 1/m.
-    pub(crate) fn rest(&self, region: Region, rho_m: f64, z_m: f64, z_source_m: f64) -> Potentials {
+    /// What is left of the four potentials beyond the families, 1/m; with `crossed` the image of `p_rho` is included, without it `p_rho`
+    /// is of no use (only vertical with horizontal currents meet it).
+    pub(crate) fn rest(&self, region: Region, rho_m: f64, z_m: f64, z_source_m: f64, crossed: bool) -> Potentials {
         let zeta = z_m.abs() + z_source_m.abs();
+        if self.reflected {
+            return self.specular(rho_m, zeta);
+        }
         let tabulated = match region {
             Region::Above => self.above.as_ref().map(|t| t.eval(rho_m, zeta)),
             Region::Below => self.below.as_ref().map(|t| t.eval(rho_m, zeta)),
@@ -220,11 +244,34 @@ impl SoilRest {
             Some([xx, zz, phi, p_rho]) => Potentials { xx, zz, phi, p_rho },
             None => self.space.remainder(rho_m, z_m, z_source_m),
         };
-        let c = self.space.image_coefficients(region);
-        let r = rho_m.hypot(zeta);
-        if r > 0.0 {
+        let r = (rho_m * rho_m + zeta * zeta).sqrt();
+        if crossed && r > 0.0 {
+            let c = self.space.image_coefficients(region);
             rest.p_rho += c.image.p_rho * (-Complex64::I * c.wavenumber_per_m * r).exp() * rho_m / (r * (r + zeta));
         }
         rest
+    }
+
+    /// The reflection-coefficient approximation of the rest above the surface, less the quasi-static images.
+    fn specular(&self, rho_m: f64, zeta_m: f64) -> Potentials {
+        let r = rho_m.hypot(zeta_m);
+        let (sin, cos) = (rho_m / r, zeta_m / r);
+        let k = Complex64::I * self.space.k0_per_m();
+        let n2 = self.space.index_squared();
+        // u0 and u1 over jk0 at the specular ray
+        let (u0, u1) = (cos, (n2 - sin * sin).sqrt());
+        let u1 = if u1.im > 0.0 { -u1 } else { u1 };
+        let wave = (-k * r).exp() / r;
+        let c = self.space.image_coefficients(Region::Above).image;
+        let horizontal = (u0 - u1) / (u0 + u1);
+        let charge = 2.0 * u0 / (u1 + n2 * u0) - 1.0;
+        let vertical = horizontal + (n2 - 1.0) * 2.0 * u0 / (u1 + n2 * u0);
+        let coupling = 2.0 * (n2 - 1.0) * u0 / ((u0 + u1) * (u1 + n2 * u0)) / k;
+        Potentials {
+            xx: (horizontal - c.xx) * wave,
+            zz: (vertical - c.zz) * wave,
+            phi: (charge - c.phi) * wave,
+            p_rho: coupling * (-k * sin) * wave,
+        }
     }
 }

@@ -193,6 +193,8 @@ pub struct Coax {
     pub length_m: f64,
     /// Line data of the inside.
     pub line: LineData,
+    /// Stretches where a hand can reach the line to put a choke on, m from the feed end; empty: all of it.
+    pub reachable_m: Vec<(f64, f64)>,
 }
 
 /// The inside of the coax as data.

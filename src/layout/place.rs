@@ -170,7 +170,8 @@ impl Placing<'_> {
             velocity_factor: coax.velocity_factor,
             loss: coax.loss.clone(),
         };
-        Some(Coax { conductor, entry_m, length_m, line })
+        let reachable_m = coax.reachable_m.iter().map(|r| r.value).collect();
+        Some(Coax { conductor, entry_m, length_m, line, reachable_m })
     }
 
     fn entry_vertex(&mut self, conductor: usize, coax: &station::Coax) -> Option<usize> {

@@ -5,6 +5,7 @@
 //! h(x) = min(h_max, min_k(h_k + g |x − x_k|)); between two forced nodes the elements take equal shares of ∫ dx/h, so that
 //! the division does not depend on the direction of the path. Sizes grow geometrically by e^g away from a feature.
 
+use super::anchor::{Anchor, end_pattern};
 use super::unknowns::{feed_gap, gap_legs};
 use crate::layout::{Layout, Point};
 use crate::quantity::SPEED_OF_LIGHT_M_PER_S;
@@ -31,7 +32,7 @@ const END_RADII: f64 = 6.0;
 /// Element size at a bend or junction, in radii.
 const JOINT_RADII: f64 = 6.0;
 /// Growth rate of the size with distance from a feature.
-const GROWTH: f64 = 1.1;
+pub(super) const GROWTH: f64 = 1.1;
 /// A bend below this angle (radians) is no feature.
 const BEND_RADIANS: f64 = 0.05;
 
@@ -59,14 +60,19 @@ pub(super) fn divide(
     highest_hz: f64,
     density: Density,
     extra_gaps: &[(usize, f64, f64)],
+    anchor: &Anchor,
 ) -> Vec<Vec<Piece>> {
     let wavelength_m = SPEED_OF_LIGHT_M_PER_S / highest_hz;
     let gaps = all_gaps(layout, extra_gaps);
     (0..layout.conductors.len())
         .map(|index| {
-            let mut features = own_features(layout, index, &gaps);
-            features.extend(neighbour_features(layout, index, LONGEST_WAVELENGTHS * wavelength_m));
-            divide_one(layout, index, &gaps, &features, wavelength_m, density)
+            let mut features = own_features(layout, index, &gaps, anchor);
+            features.extend(neighbour_features(layout, index, LONGEST_WAVELENGTHS * wavelength_m, anchor));
+            let end = anchor.moves(index).then(|| {
+                let last = layout.conductors[index].points.len() - 1;
+                vertex_size_radii(layout, index, last).map(|radii| radii * layout.conductors[index].radius_m)
+            });
+            divide_one(layout, index, &gaps, &features, (wavelength_m, density, end))
         })
         .collect()
 }
@@ -80,11 +86,11 @@ fn all_gaps(layout: &Layout, extra_gaps: &[(usize, f64, f64)]) -> Vec<(usize, f6
 }
 
 /// Ends, bends, junctions and gaps of a conductor itself.
-fn own_features(layout: &Layout, index: usize, gaps: &[(usize, f64, f64)]) -> Vec<Feature> {
+fn own_features(layout: &Layout, index: usize, gaps: &[(usize, f64, f64)], anchor: &Anchor) -> Vec<Feature> {
     let c = &layout.conductors[index];
     let at = c.distances_m();
     let mut out = Vec::new();
-    for (vertex, &at_m) in at.iter().enumerate() {
+    for (vertex, &at_m) in at.iter().enumerate().filter(|v| !(anchor.moves(index) && v.0 + 1 == at.len())) {
         if let Some(radii) = vertex_size_radii(layout, index, vertex) {
             out.push(Feature { at_m, size_m: radii * c.radius_m });
         }
@@ -127,8 +133,9 @@ fn vertex_size_radii(layout: &Layout, index: usize, vertex: usize) -> Option<f64
     }
 }
 
-/// Places where an end or bend of another conductor, or a crossing, comes close without touching.
-fn neighbour_features(layout: &Layout, index: usize, longest_m: f64) -> Vec<Feature> {
+/// Places where an end or bend of another conductor, or a crossing, comes close without touching. What moves with an end makes
+/// no feature on conductors that stay, so that their division stays too.
+fn neighbour_features(layout: &Layout, index: usize, longest_m: f64, anchor: &Anchor) -> Vec<Feature> {
     let c = &layout.conductors[index];
     let at = c.distances_m();
     let mut out = Vec::new();
@@ -144,11 +151,13 @@ fn neighbour_features(layout: &Layout, index: usize, longest_m: f64) -> Vec<Feat
                 if other == index && k.abs_diff(leg) <= 1 {
                     continue;
                 }
-                for p in pair {
+                let ignored = |vertex: usize| !anchor.carries(index) && anchor.displaces(layout, other, vertex);
+                for p in pair.iter().enumerate().filter(|(n, _)| !ignored(k + n)).map(|(_, p)| p) {
                     let (place, clearance) = foot(ends[0], ends[1], *p);
                     consider(place, clearance);
                 }
-                if let Some((place, clearance)) = crossing(ends, pair) {
+                let carried = anchor.carries(other) && !anchor.carries(index);
+                if let Some((place, clearance)) = crossing(ends, pair).filter(|_| !carried) {
                     consider(place, clearance);
                 }
             }
@@ -185,8 +194,7 @@ fn divide_one(
     index: usize,
     gaps: &[(usize, f64, f64)],
     features: &[Feature],
-    wavelength_m: f64,
-    density: Density,
+    (wavelength_m, density, end): (f64, Density, Option<Option<f64>>),
 ) -> Vec<Piece> {
     let c = &layout.conductors[index];
     let at = c.distances_m();
@@ -201,9 +209,12 @@ fn divide_one(
     nodes.sort_by(|a, b| a.0.total_cmp(&b.0));
     let size = Size { features, longest_m: LONGEST_WAVELENGTHS * wavelength_m };
     let mut out = Vec::new();
-    for pair in nodes.windows(2) {
+    for (n, pair) in nodes.windows(2).enumerate() {
         let (from, to) = (pair[0].0, pair[1].0);
-        let cuts = size.cut(from, to, density.factor);
+        let cuts = match end {
+            Some(end_m) if n + 2 == nodes.len() => anchored(&size, (from, to), end_m, density.factor),
+            _ => size.cut(from, to, density.factor),
+        };
         for (k, ends) in cuts.windows(2).enumerate() {
             let last = k + 2 == cuts.len();
             let length = ends[1] - ends[0];
@@ -230,13 +241,58 @@ fn point_at(points: &[Point], at: &[f64], x: f64) -> Point {
     points[leg] * (1.0 - t) + points[leg + 1] * t
 }
 
+/// Ends of the elements of a last stretch whose end moves: whole steps from its start, whole steps back from its end
+/// (`end_m`: size wanted there), and the few elements between shared as everywhere else.
+fn anchored(size: &Size, (from, to): (f64, f64), end_m: Option<f64>, factor: f64) -> Vec<f64> {
+    let end_m = end_m.unwrap_or(size.longest_m).min(size.longest_m);
+    let back = end_pattern(end_m, to - from, factor, |d| size.at(to - d));
+    let bridge_to = to - back.last().copied().unwrap_or(0.0);
+    let mut trunk = size.steps(from, bridge_to, factor);
+    if trunk.len() > 1 && trunk.last().is_some_and(|t| bridge_to - t < 0.6 * size.at(bridge_to) / factor) {
+        trunk.pop();
+    }
+    let mut features = size.features.to_vec();
+    features.push(Feature { at_m: to, size_m: end_m });
+    let both = Size { features: &features, longest_m: size.longest_m };
+    let mut out = trunk;
+    let bridge_from = out.pop().unwrap_or(from);
+    out.extend(both.cut(bridge_from, bridge_to, factor));
+    out.extend(back.iter().rev().skip(1).map(|d| to - d));
+    if !back.is_empty() {
+        out.push(to);
+    }
+    out
+}
+
 /// The wanted size along one conductor.
 struct Size<'a> {
     features: &'a [Feature],
     longest_m: f64,
 }
 
+/// Far beyond any conductor, m: steps laid towards it do not know where the conductor ends.
+const HORIZON_M: f64 = 1e5;
+
 impl Size<'_> {
+    /// Places at whole steps of ∫ dx/h from a start, the start included, up to a limit.
+    fn steps(&self, from: f64, limit: f64, factor: f64) -> Vec<f64> {
+        let knots = self.knots(from, from + HORIZON_M);
+        let mut out = vec![from];
+        let mut before = 0.0;
+        for pair in knots.windows(2) {
+            let share = factor * self.share(pair[0], pair[1]);
+            while out.len() as f64 <= before + share {
+                let place = self.inverse(pair[0], pair[1], (out.len() as f64 - before) / factor);
+                if place > limit {
+                    return out;
+                }
+                out.push(place);
+            }
+            before += share;
+        }
+        out
+    }
+
     fn at(&self, x: f64) -> f64 {
         self.features.iter().map(|f| f.size_m + GROWTH * (x - f.at_m).abs()).fold(self.longest_m, f64::min)
     }

@@ -4,12 +4,14 @@
 //! degree 1 to 3, the map from element currents to unknowns (Kirchhoff's current law holds exactly at every junction), and
 //! the ports. The mesh knows no frequency itself: everything in it holds at any lower one.
 //!
-//! `divide` decides where elements end, `unknowns` numbers the currents.
+//! `divide` decides where elements end, `anchor` how meshes of different lengths nest, `unknowns` numbers the currents.
 
+mod anchor;
 mod divide;
 mod unknowns;
 
 use crate::layout::{Jacket, Layout, Point};
+pub use anchor::Anchor;
 pub use divide::Density;
 use num_complex::Complex64;
 
@@ -131,7 +133,15 @@ impl Mesh {
     /// - `extra_gaps`: further gaps (conductor, from m, to m) that become ports after those of the parts
     #[must_use]
     pub fn new(layout: &Layout, highest_hz: f64, density: Density, extra_gaps: &[(usize, f64, f64)]) -> Self {
-        let pieces = divide::divide(layout, highest_hz, density, extra_gaps);
+        let pieces = divide::divide(layout, highest_hz, density, extra_gaps, &Anchor::default());
         unknowns::number(layout, &pieces, extra_gaps)
+    }
+
+    /// As [`Mesh::new`], but so that meshes of the same station with ends moved along their last leg share every element
+    /// away from those ends.
+    #[must_use]
+    pub fn anchored(layout: &Layout, highest_hz: f64, density: Density, anchor: &Anchor) -> Self {
+        let pieces = divide::divide(layout, highest_hz, density, &[], anchor);
+        unknowns::number(layout, &pieces, &[])
     }
 }

@@ -5,8 +5,10 @@
 
 mod barycentric;
 pub mod curve;
+pub mod cut;
 pub mod earthing;
 mod pattern;
+mod place;
 mod predict;
 pub mod rational;
 mod shield;
@@ -14,4 +16,6 @@ pub mod store;
 pub mod vary;
 
 pub use pattern::pattern;
+pub use place::timing;
+pub use place::{Candidate, DEFAULT_RESISTANCES_OHM, PlaceFailure, PlaceOptions, place};
 pub use predict::{Failure, Options, predict, predict_variants};

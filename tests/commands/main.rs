@@ -1,6 +1,8 @@
 //! The program as a person runs it: station files good and bad, changes on the command line.
 #![allow(clippy::unwrap_used)]
 
+mod cut;
 mod few;
 mod malformed;
+mod place;
 mod vary;

@@ -1,4 +1,6 @@
-//! What must hold for any input.
+//! Laws: what must hold whatever the station.
 #![allow(clippy::unwrap_used)]
 
 mod curve;
+mod cut;
+mod place;

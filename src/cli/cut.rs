@@ -1,0 +1,193 @@
+//! `braidwise cut`.
+
+use super::flags::StationArgs;
+use super::load::load;
+use super::stop::Stop;
+use crate::mesh::Density;
+use crate::outcome::cut::CutOutcome;
+use crate::quantity::{engineering, length_m, metres_and_feet};
+use crate::station::Embedded;
+use crate::study::cut::{self, CutFailure, Lengths, MOST_LENGTHS, Method, Question};
+use clap::Args;
+use std::io::Write;
+
+/// Arguments of `cut`.
+#[derive(Debug, Args)]
+pub(super) struct Cut {
+    #[command(flatten)]
+    station: StationArgs,
+    /// Whose length is scanned: "coax", a wire or a star of radials by name
+    #[arg(long, value_name = "NAME")]
+    conductor: String,
+    /// Its lengths, e.g. "4 m .. 25 m by 0.5 m" or "41 ft .. 66 ft by 1 ft"
+    #[arg(long, value_name = "RANGE")]
+    range: String,
+    /// A second conductor scanned jointly
+    #[arg(long, value_name = "NAME", requires = "with_range")]
+    with: Option<String>,
+    /// The lengths of the second
+    #[arg(long, value_name = "RANGE", requires = "with")]
+    with_range: Option<String>,
+    /// Lengths one can buy, e.g. "25, 33, 50 ft"
+    #[arg(long, value_name = "LENGTHS")]
+    stock: Option<String>,
+    /// One JSON document on standard output, nothing else
+    #[arg(long)]
+    json: bool,
+}
+
+impl Cut {
+    pub(super) fn run(&self) -> Result<(), Stop> {
+        let question = self.question()?;
+        let loaded = load(&self.station)?;
+        let stations = cut::variants_of(&loaded.document, &Embedded)?;
+        let outcome = cut::cut(&stations, &question)?;
+        let text = if self.json {
+            serde_json::to_string(&outcome).map_err(|e| Stop::Could(e.to_string()))?
+        } else {
+            plain(&outcome)
+        };
+        writeln!(std::io::stdout().lock(), "{text}")?;
+        Ok(())
+    }
+
+    fn question(&self) -> Result<Question, Stop> {
+        let lengths = |conductor: &str, range: &str, flag: &str| -> Result<Lengths, Stop> {
+            let lengths_m = lengths(range).map_err(|e| Stop::Usage(format!("{flag} \"{range}\": {e}")))?;
+            Ok(Lengths { conductor: conductor.to_owned(), lengths_m })
+        };
+        Ok(Question {
+            first: lengths(&self.conductor, &self.range, "--range")?,
+            second: match (&self.with, &self.with_range) {
+                (Some(name), Some(range)) => Some(lengths(name, range, "--with-range")?),
+                _ => None,
+            },
+            stock: self.stock.as_deref().map_or(Ok(Vec::new()), stock).map_err(Stop::Usage)?,
+            method: Method::default(),
+            density: Density::default(),
+        })
+    }
+}
+
+impl From<CutFailure> for Stop {
+    fn from(failure: CutFailure) -> Self {
+        match failure {
+            CutFailure::Question(text) => Stop::Usage(text),
+            CutFailure::Refused(refused) => Stop::Refused(refused),
+            CutFailure::Solving(failure) => failure.into(),
+        }
+    }
+}
+
+/// "4 m .. 25 m by 0.5 m" as lengths in metres, both ends included where the steps reach them.
+fn lengths(range: &str) -> Result<Vec<f64>, String> {
+    let shape = "write it as \"4 m .. 25 m by 0.5 m\"";
+    let (from, rest) = range.split_once("..").ok_or_else(|| format!("this is no range; {shape}"))?;
+    let (to, step) = rest.split_once("by").ok_or_else(|| format!("the step is missing; {shape}"))?;
+    let read = |text: &str| length_m(text.trim()).map_err(|e| e.to_string());
+    let (from, to, step) = (read(from)?, read(to)?, read(step)?);
+    if step <= 0.0 {
+        return Err("the step must be longer than zero".to_owned());
+    }
+    if from <= 0.0 {
+        return Err("a length must be longer than zero".to_owned());
+    }
+    if to < from {
+        return Err(format!("the range is reversed; write the shorter length first: {shape}"));
+    }
+    let steps = ((to - from) / step + 1e-9).floor();
+    if steps >= MOST_LENGTHS as f64 {
+        return Err(format!("that is {steps} lengths and {MOST_LENGTHS} are the most; take longer steps"));
+    }
+    // to the micrometre, so that 10 + 3 × 0.1 reads 10.3
+    let at = |n: usize| ((from + step * n as f64) * 1e6).round() / 1e6;
+    Ok((0..=steps as usize).map(at).collect())
+}
+
+/// "25, 33, 50 ft" as names and metres; a bare number takes the unit of the last.
+fn stock(text: &str) -> Result<Vec<(String, f64)>, String> {
+    let parts: Vec<&str> = text.split(',').map(str::trim).collect();
+    let unit = parts.last().map_or("", |last| last.trim_start_matches(|c: char| c.is_ascii_digit() || c == '.')).trim();
+    let read = |part: &&str| {
+        let bare = part.parse::<f64>().is_ok() && !unit.is_empty();
+        let name = if bare { format!("{part} {unit}") } else { (*part).to_owned() };
+        match length_m(&name) {
+            Ok(length) if length > 0.0 => Ok((name, length)),
+            Ok(_) => Err(format!("--stock \"{part}\": a length must be longer than zero")),
+            Err(e) => Err(format!("--stock \"{part}\": {e}")),
+        }
+    };
+    parts.iter().map(read).collect()
+}
+
+/// The answer in plain words.
+fn plain(outcome: &CutOutcome) -> String {
+    let mut out = vec![
+        outcome.station.clone(),
+        format!("length of {}; what moves is {}", outcome.conductor, outcome.moving_end),
+        String::new(),
+        outcome.why.clone(),
+    ];
+    for pick in &outcome.picks {
+        out.push(format!("  {}: {}", metres_and_feet(pick.length_m), pick.why));
+    }
+    for stock in &outcome.stock {
+        let state = if stock.within_limits { "within limits" } else { "beyond a limit" };
+        out.push(format!(
+            "  in stock, {}: {state}; at worst {} {:.3}",
+            stock.name, stock.worst.quantity, stock.worst.value
+        ));
+    }
+    for avoid in &outcome.lengths_to_avoid {
+        out.push(format!(
+            "  avoid {} at {} ({}): {} peaks at {:.3}",
+            metres_and_feet(avoid.length_m),
+            engineering(avoid.frequency_hz, "Hz"),
+            avoid.variant,
+            avoid.quantity,
+            avoid.value
+        ));
+    }
+    for trim in &outcome.trim {
+        let khz_per_cm = trim.hz_per_m / 1e5;
+        out.push(format!(
+            "  trim: match at {}, {khz_per_cm:+.2} kHz per cm, {:+.2} kHz per inch added",
+            engineering(trim.frequency_hz, "Hz"),
+            2.54 * khz_per_cm
+        ));
+    }
+    out.extend(outcome.warnings.iter().map(|w| format!("  {}: {}", w.about, w.message)));
+    out.join("\n")
+}
+
+#[cfg(test)]
+mod tests {
+    #![allow(clippy::unwrap_used)]
+    use super::*;
+
+    #[test]
+    fn ranges_are_read_and_bad_ones_say_why() {
+        assert_eq!(lengths("10 m .. 10.4 m by 10 cm").unwrap(), [10.0, 10.1, 10.2, 10.3, 10.4]);
+        assert_eq!(lengths("10 ft .. 12 ft by 1 ft").unwrap(), [3.048, 3.3528, 3.6576]);
+        for (bad, says) in [
+            ("25 m .. 4 m by 1 m", "reversed"),
+            ("4 m .. 25 m by 0 m", "step"),
+            ("4 m .. 25 m", "step is missing"),
+            ("4 m to 25 m by 1 m", "no range"),
+            ("0 m .. 25 m by 1 m", "longer than zero"),
+            ("4 m .. 25 m by 1 mHz", "length"),
+            ("4 m .. 25 m by 1 um", ""),
+        ] {
+            let error = lengths(bad).unwrap_err();
+            assert!(error.contains(says), "{bad}: {error}");
+        }
+    }
+
+    #[test]
+    fn a_stock_takes_the_unit_of_its_last() {
+        let read = stock("25, 33, 50 ft").unwrap();
+        assert_eq!(read[0].0, "25 ft");
+        assert!((read[1].1 - 33.0 * 0.3048).abs() < 1e-12);
+        assert!(stock("25, 33, 50").is_err());
+    }
+}

@@ -1,0 +1,407 @@
+//! The columns that a few new elements add to a system already known.
+//!
+//! New elements and those near them are paired as everywhere. Seen from further away, a straight run of new elements is one line on
+//! which the kernels are smooth: they are evaluated at its Gauss nodes only and interpolated, whatever the elements on it. The
+//! rest of the soil's potentials is integrated pair by pair, as in the full matrix.
+
+use super::fill::{Interaction, Legendre, Matrix, UnknownMap, add_local, combine, region_of};
+use super::kernel::waves;
+use super::line::{Line, Tubes, clearance, tubes};
+use super::pairs::far_points;
+use super::probe::{Spot, slope, value_weights};
+use super::quadrature::{gauss, legendre};
+use super::rest;
+use super::surroundings::Surroundings;
+use crate::mesh::{Element, MAX_DEGREE, Mesh};
+use faer::linalg::matmul::matmul;
+use faer::{Accum, Mat, Par};
+use num_complex::Complex64;
+
+/// Gauss nodes of a run.
+const NODES: usize = 16;
+/// Elements nearer to a run than this share of its length are paired with its elements one by one. With the nearest singularity at
+/// x = 1 + 2 · 0.3 the interpolation error falls as (x + √(x² − 1))^−n = 2.85^−16, 5·10⁻⁸.
+const NEAR_LENGTHS: f64 = 0.3;
+
+/// New elements of a mesh, and how they see the rest of it.
+#[derive(Debug, Clone)]
+pub struct Added {
+    elements: Vec<Element>,
+    /// For every unknown of the mesh its place: the leading ones first, then the further ones.
+    places: Vec<usize>,
+    leading: usize,
+    /// New elements first, then those near them, with their indices in the mesh.
+    close: Interaction,
+    close_ids: Vec<usize>,
+    new_count: usize,
+    far_ids: Vec<usize>,
+    runs: Vec<Run>,
+    with_image: bool,
+}
+
+/// A system's further part.
+#[derive(Debug, Clone)]
+pub struct Columns {
+    /// Against the leading unknowns; shape (leading, further).
+    pub columns: Matrix,
+    /// Among themselves; shape (further, further).
+    pub corner: Matrix,
+    /// Scalar potential at each spot, V per A of every unknown in the order of the places. For a spot on a new element all are
+    /// there; for another one only the further unknowns.
+    pub potentials: Vec<Vec<Complex64>>,
+}
+
+/// New elements on one straight line.
+#[derive(Debug, Clone)]
+struct Run {
+    line: Element,
+    /// Element, and the ξ of the run at its start and end.
+    members: Vec<(usize, f64, f64)>,
+    /// For every member, weights of P_0..P_3 (means over the element) at the nodes.
+    weights: Vec<[[f64; NODES]; MAX_DEGREE + 1]>,
+}
+
+impl Added {
+    /// Prepare the new elements of a mesh.
+    ///
+    /// # Inputs
+    /// - `is_new`: for every element
+    /// - `places`: for every unknown; those from `leading` on are the further ones, which live on new elements only
+    #[must_use]
+    pub fn new(mesh: &Mesh, is_new: &[bool], places: Vec<usize>, leading: usize, with_image: bool) -> Self {
+        let new_ids: Vec<usize> = (0..mesh.elements.len()).filter(|&k| is_new[k]).collect();
+        let runs = runs(mesh, &new_ids);
+        let is_near = |k: usize| {
+            let e = Line::of(&mesh.elements[k]);
+            runs.iter().any(|run| {
+                let limit = NEAR_LENGTHS * run.line.length_m;
+                clearance(&e, &Line::of(&run.line)) < limit
+                    || with_image && clearance(&e, &Line::mirrored(&run.line)) < limit
+            })
+        };
+        let (near_ids, far_ids): (Vec<usize>, Vec<usize>) =
+            (0..mesh.elements.len()).filter(|&k| !is_new[k]).partition(|&k| is_near(k));
+        let new_count = new_ids.len();
+        let close_ids: Vec<usize> = new_ids.into_iter().chain(near_ids).collect();
+        let close = Mesh {
+            elements: close_ids.iter().map(|&k| mesh.elements[k].clone()).collect(),
+            unknowns: 0,
+            ports: Vec::new(),
+            conductor_elements: Vec::new(),
+        };
+        let close = Interaction::among(close, with_image, |i, _| i < new_count);
+        Self {
+            elements: mesh.elements.clone(),
+            places,
+            leading,
+            close,
+            close_ids,
+            new_count,
+            far_ids,
+            runs,
+            with_image,
+        }
+    }
+
+    /// Columns at a frequency, and potentials at spots (elements of the mesh).
+    #[must_use]
+    pub fn columns(&self, earth: &Surroundings, spots: &[Spot]) -> Columns {
+        let further = self.places.iter().filter(|&&p| p >= self.leading).count();
+        let all = self.leading + further;
+        let mut z = Mat::zeros(all, further);
+        let mut potentials = vec![vec![Complex64::ZERO; all]; spots.len()];
+        self.close_pairs(earth, spots, &mut z, &mut potentials);
+        self.far_pairs(earth, spots, &mut z, &mut potentials);
+        Columns {
+            columns: z.get(0..self.leading, ..).to_owned(),
+            corner: z.get(self.leading..all, ..).to_owned(),
+            potentials,
+        }
+    }
+
+    fn map(&self, element: usize) -> UnknownMap {
+        self.elements[element].legendre_map().into_iter().map(|(u, f)| (self.places[u], f)).collect()
+    }
+
+    /// New elements among themselves and with those near.
+    fn close_pairs(&self, earth: &Surroundings, spots: &[Spot], z: &mut Matrix, potentials: &mut [Vec<Complex64>]) {
+        // only the places that occur, so that the matrix stays small
+        let mut used: Vec<usize> = Vec::new();
+        let mut maps: Vec<UnknownMap> = self.close_ids.iter().map(|&k| self.map(k)).collect();
+        for (unknown, _) in maps.iter_mut().flatten() {
+            let local = used.iter().position(|p| p == unknown).unwrap_or_else(|| {
+                used.push(*unknown);
+                used.len() - 1
+            });
+            *unknown = local;
+        }
+        let local: Vec<(usize, Spot)> = spots
+            .iter()
+            .enumerate()
+            .filter_map(|(n, s)| {
+                let element = self.close_ids.iter().position(|&k| k == s.element)?;
+                Some((n, Spot { element, xi: s.xi }))
+            })
+            .collect();
+        let wanted: Vec<Spot> = local.iter().map(|l| l.1).collect();
+        let (mut block, rows) = self.close.gather(earth, &wanted, &maps, used.len());
+        for (element, map) in self.close.mesh().elements.iter().zip(&maps).take(self.new_count) {
+            add_local(element, map, earth, &mut block);
+        }
+        for (j, &v) in used.iter().enumerate().filter(|(_, v)| **v >= self.leading) {
+            for (i, &u) in used.iter().enumerate() {
+                z[(u, v - self.leading)] += block[(i, j)];
+            }
+        }
+        for ((n, spot), row) in local.iter().zip(&rows) {
+            for (i, &u) in used.iter().enumerate() {
+                if spot.element < self.new_count || u >= self.leading {
+                    potentials[*n][u] += row[i];
+                }
+            }
+        }
+    }
+
+    /// New elements with all others.
+    fn far_pairs(&self, earth: &Surroundings, spots: &[Spot], z: &mut Matrix, potentials: &mut [Vec<Complex64>]) {
+        let medium = earth.air();
+        let further = z.ncols();
+        for run in &self.runs {
+            // columns: vector potential at the nodes, then scalar potential
+            let mut seen: Matrix = Mat::zeros(self.leading, 2 * NODES);
+            let mut entry_rows: Vec<(usize, [Complex64; NODES])> = Vec::new();
+            for &k in &self.far_ids {
+                let (current, potential) = self.kernels(k, run, earth);
+                let e = &self.elements[k];
+                for (u, factors) in self.map(k) {
+                    let charge = slope(&factors);
+                    for q in 0..NODES {
+                        let a: Complex64 = (0..=MAX_DEGREE).map(|n| current[n][q] * factors[n]).sum();
+                        let p: Complex64 = (0..=MAX_DEGREE).map(|n| potential[n][q] * charge[n]).sum();
+                        seen[(u, q)] += a * e.length_m;
+                        seen[(u, NODES + q)] += p;
+                    }
+                }
+                for (n, spot) in spots.iter().enumerate().filter(|(_, s)| s.element == k) {
+                    let w = value_weights(spot.xi);
+                    let at = |q: usize| (0..=MAX_DEGREE).map(|a| potential[a][q] * w[a]).sum::<Complex64>();
+                    entry_rows.push((n, std::array::from_fn(at)));
+                }
+            }
+            let (magnetic, electric) = (medium.magnetic(), medium.electric() * 4.0);
+            let (mut laid, charge) = self.laid(run, further);
+            for v in 0..further {
+                for q in 0..NODES {
+                    laid[(q, v)] *= magnetic;
+                    laid[(NODES + q, v)] = electric * charge[(q, v)];
+                }
+            }
+            let top = z.get_mut(0..self.leading, ..);
+            matmul(top, Accum::Add, seen.as_ref(), laid.as_ref(), Complex64::ONE, Par::Seq);
+            let factor = -2.0 * medium.electric();
+            for (n, row) in entry_rows {
+                for v in 0..further {
+                    let sum: Complex64 = (0..NODES).map(|q| row[q] * charge[(q, v)]).sum();
+                    potentials[n][self.leading + v] += factor * sum;
+                }
+            }
+            for (n, spot) in spots.iter().enumerate() {
+                let Some(m) = run.members.iter().position(|m| m.0 == spot.element) else { continue };
+                let w = value_weights(spot.xi);
+                let at = |q: usize| (0..=MAX_DEGREE).map(|b| run.weights[m][b][q] * w[b]).sum::<f64>();
+                let weights: [f64; NODES] = std::array::from_fn(at);
+                for u in 0..self.leading {
+                    let sum: Complex64 = (0..NODES).map(|q| seen[(u, NODES + q)] * weights[q]).sum();
+                    potentials[n][u] += factor * sum;
+                }
+            }
+        }
+        self.soil_pairs(earth, spots, z, potentials);
+    }
+
+    /// How the further unknowns lie on the nodes of a run: currents (times length; the charges' half left empty), and charges.
+    fn laid(&self, run: &Run, further: usize) -> (Matrix, Matrix) {
+        let mut laid = Mat::zeros(2 * NODES, further);
+        let mut charges = Mat::zeros(NODES, further);
+        for ((k, ..), weights) in run.members.iter().zip(&run.weights) {
+            let length_m = self.elements[*k].length_m;
+            for (place, factors) in self.map(*k) {
+                let Some(v) = place.checked_sub(self.leading) else { continue };
+                let charge = slope(&factors);
+                for q in 0..NODES {
+                    let current: f64 = (0..=MAX_DEGREE).map(|b| weights[b][q] * factors[b]).sum();
+                    let amount: f64 = (0..=MAX_DEGREE).map(|b| weights[b][q] * charge[b]).sum();
+                    laid[(q, v)] += Complex64::from(length_m * current);
+                    charges[(q, v)] += Complex64::from(amount);
+                }
+            }
+        }
+        (laid, charges)
+    }
+
+    /// Means over an element of P_a times the kernels of the closed-form families, at the nodes of a run.
+    fn kernels(&self, k: usize, run: &Run, earth: &Surroundings) -> ([[Complex64; NODES]; 4], [[Complex64; NODES]; 4]) {
+        let e = &self.elements[k];
+        let mut current = [[Complex64::ZERO; NODES]; 4];
+        let mut potential = current;
+        let rule = gauss(NODES);
+        for family in earth.families() {
+            if region_of(e, &run.line) != family.region || family.mirrored && !self.with_image {
+                continue;
+            }
+            let line = if family.mirrored { Line::mirrored(&run.line) } else { Line::of(&run.line) };
+            let one = Line::of(e);
+            let offset_m2 = match tubes(&one, &line, false) {
+                Tubes::Offset(c2) => c2,
+                Tubes::Coaxial => e.radius_m.powi(2) + run.line.radius_m.powi(2),
+            };
+            let points = gauss(usize::from(far_points(e, clearance(&one, &line))).max(e.degree + 1));
+            let nodes: [_; NODES] = std::array::from_fn(|q| line.at(rule.nodes[q]));
+            let (t, u) = (e.tangent, run.line.tangent);
+            let w = family.weight;
+            let along = w.horizontal * (t.x * u.x + t.y * u.y) + w.vertical * (t.z * u.z);
+            let (mut squared, mut re, mut im) = ([0.0; NODES], [0.0; NODES], [0.0; NODES]);
+            for (xi, weight) in points.nodes.iter().zip(&points.weights) {
+                let p = one.at(*xi);
+                for (s, node) in squared.iter_mut().zip(&nodes) {
+                    *s = (p - node).norm_squared() + offset_m2;
+                }
+                waves(&squared, family.k.re, -family.k.im, &mut re, &mut im);
+                let left = legendre(*xi).map(|x| 0.5 * weight * x);
+                for (a, l) in left.iter().enumerate() {
+                    for q in 0..NODES {
+                        let g = Complex64::new(re[q] * l, im[q] * l);
+                        current[a][q] += along * g;
+                        potential[a][q] += w.potential * g;
+                    }
+                }
+            }
+        }
+        (current, potential)
+    }
+
+    /// The rest of the soil's potentials between new elements and those far from them.
+    fn soil_pairs(&self, earth: &Surroundings, spots: &[Spot], z: &mut Matrix, potentials: &mut [Vec<Complex64>]) {
+        let Some(soil) = earth.soil() else { return };
+        let medium = earth.air();
+        let all = z.nrows();
+        for &new in &self.close_ids[..self.new_count] {
+            let f = &self.elements[new];
+            let map = self.map(new);
+            for &k in &self.far_ids {
+                let e = &self.elements[k];
+                // in the order of the full matrix, so that the rule is the same
+                let (first, second) = if k < new { (e, f) } else { (f, e) };
+                let blocks = rest::blocks(first, second, soil, region_of(first, second));
+                let area = medium.magnetic() * (e.length_m * f.length_m);
+                let block = combine(&blocks.current, area, &blocks.potential, medium.electric() * 4.0);
+                let other = self.map(k);
+                let turned = k >= new;
+                for (v, y) in map.iter().filter(|(v, _)| *v >= self.leading) {
+                    let column = applied(&block, y, turned);
+                    for (u, x) in &other {
+                        let value: Complex64 = (0..=MAX_DEGREE).map(|a| column[a] * x[a]).sum();
+                        debug_assert!(*u < all);
+                        z[(*u, v - self.leading)] += value;
+                    }
+                }
+                for (spot, row) in spots.iter().zip(potentials.iter_mut()) {
+                    let factor = -2.0 * medium.electric();
+                    let w = value_weights(spot.xi);
+                    if spot.element == k {
+                        for (v, y) in map.iter().filter(|(v, _)| *v >= self.leading) {
+                            let column = applied(&blocks.potential, &slope(y), turned);
+                            row[*v] += factor * (0..=MAX_DEGREE).map(|a| column[a] * w[a]).sum::<Complex64>();
+                        }
+                    } else if spot.element == new {
+                        for (u, x) in &other {
+                            let column = applied(&blocks.potential, &slope(x), !turned);
+                            row[*u] += factor * (0..=MAX_DEGREE).map(|a| column[a] * w[a]).sum::<Complex64>();
+                        }
+                    }
+                }
+            }
+        }
+    }
+}
+
+/// A block applied to coefficients of its second element, or of its first where turned.
+fn applied(block: &super::fill::Block, y: &[f64; MAX_DEGREE + 1], turned: bool) -> Legendre {
+    std::array::from_fn(|a| (0..=MAX_DEGREE).map(|b| if turned { block[b][a] } else { block[a][b] } * y[b]).sum())
+}
+
+/// New elements gathered into straight runs.
+fn runs(mesh: &Mesh, new_ids: &[usize]) -> Vec<Run> {
+    let mut groups: Vec<Vec<usize>> = Vec::new();
+    for &k in new_ids {
+        let follows = |last: &usize| {
+            let (d, e) = (&mesh.elements[*last], &mesh.elements[k]);
+            *last + 1 == k
+                && d.conductor == e.conductor
+                && d.tangent.dot(&e.tangent) > 1.0 - 1e-12
+                && d.below == e.below
+        };
+        match groups.last_mut() {
+            Some(group) if group.last().is_some_and(follows) => group.push(k),
+            _ => groups.push(vec![k]),
+        }
+    }
+    groups.iter().filter_map(|group| run(mesh, group)).collect()
+}
+
+fn run(mesh: &Mesh, group: &[usize]) -> Option<Run> {
+    let (first, last) = (&mesh.elements[*group.first()?], &mesh.elements[*group.last()?]);
+    let mut line = first.clone();
+    line.end = last.end;
+    line.to_m = last.to_m;
+    line.length_m = (last.end - first.start).norm();
+    line.tangent = (last.end - first.start) / line.length_m;
+    let mut members = Vec::new();
+    let mut weights = Vec::new();
+    for &k in group {
+        let e = &mesh.elements[k];
+        let from = 2.0 * (e.start - line.start).dot(&line.tangent) / line.length_m - 1.0;
+        let to = 2.0 * (e.end - line.start).dot(&line.tangent) / line.length_m - 1.0;
+        members.push((k, from, to));
+        weights.push(member_weights(from, to));
+    }
+    Some(Run { line, members, weights })
+}
+
+/// Means over a stretch of a run of P_b times the Lagrange polynomials of its Gauss nodes.
+///
+/// ℓ_q(x) = w_q Σ_n (n + ½) P_n(x_q) P_n(x), exact for the Gauss rule's own nodes (discrete orthogonality).
+fn member_weights(from: f64, to: f64) -> [[f64; NODES]; MAX_DEGREE + 1] {
+    let nodes = gauss(NODES);
+    let rule = gauss((NODES + MAX_DEGREE).div_ceil(2));
+    let mut out = [[0.0; NODES]; MAX_DEGREE + 1];
+    for (eta, w) in rule.nodes.iter().zip(&rule.weights) {
+        let x = all_legendre(0.5 * ((1.0 - eta) * from + (1.0 + eta) * to));
+        let p = legendre(*eta);
+        for q in 0..NODES {
+            let y = node_values(q);
+            let lagrange: f64 = nodes.weights[q] * (0..NODES).map(|n| (n as f64 + 0.5) * x[n] * y[n]).sum::<f64>();
+            for b in 0..=MAX_DEGREE {
+                out[b][q] += 0.5 * w * p[b] * lagrange;
+            }
+        }
+    }
+    out
+}
+
+/// P_0..P_15 at a node.
+fn node_values(q: usize) -> &'static [f64; NODES] {
+    static VALUES: std::sync::OnceLock<Vec<[f64; NODES]>> = std::sync::OnceLock::new();
+    &VALUES.get_or_init(|| gauss(NODES).nodes.iter().map(|x| all_legendre(*x)).collect())[q]
+}
+
+/// P_0..P_15 at x.
+fn all_legendre(x: f64) -> [f64; NODES] {
+    let mut p = [1.0; NODES];
+    p[1] = x;
+    for n in 2..NODES {
+        let m = n as f64;
+        p[n] = ((2.0 * m - 1.0) * x * p[n - 1] - (m - 1.0) * p[n - 2]) / m;
+    }
+    p
+}

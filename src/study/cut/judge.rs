@@ -1,0 +1,282 @@
+//! Windows of lengths that hold on every frequency and variant, and the choice among them.
+
+use super::CutFailure;
+use super::lengths::Axis;
+use super::reading::Reading;
+use super::scan::{Grid, Scan};
+use crate::outcome::cut::{CutPick, CutVerdict, StockOutcome};
+use crate::outcome::place::WorstCase;
+use crate::quantity::{engineering, metres, metres_and_feet};
+
+/// Another length counts as better than the present one when its worst case is below this share of the present one's.
+const MUCH_BETTER: f64 = 0.8;
+/// With no length within the limits, the window of the least bad reaches to where the worst case has grown by this factor.
+const SLACK: f64 = 1.1;
+/// Most picks.
+const PICKS: usize = 3;
+
+/// The answer.
+#[derive(Debug, Clone)]
+pub(super) struct Judged {
+    pub(super) verdict: CutVerdict,
+    pub(super) why: String,
+    pub(super) picks: Vec<CutPick>,
+}
+
+/// Which limits can be kept by a length at all.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum Judging {
+    /// Both.
+    All,
+    /// No length keeps the current, so lengths are judged by the match.
+    MatchAlone,
+}
+
+/// The quantities with limits at one reading: name, value, limit.
+fn limited(scan: &Scan, r: &Reading) -> [(&'static str, f64, f64); 3] {
+    let limits = scan.nominal().limits;
+    [
+        ("swr", r.swr, limits.swr),
+        ("entry_current_a", r.entry_current_a, limits.entry_current_a),
+        ("last_metre_current_a", r.last_metre_current_a, limits.entry_current_a),
+    ]
+}
+
+/// The worst case of one combination of lengths: largest value over its limit.
+fn worst(scan: &Scan, grid: &Grid, (l, s): (usize, usize), judging: Judging) -> (f64, WorstCase) {
+    let mut out: Option<(f64, WorstCase)> = None;
+    for (v, variant) in scan.list.iter().enumerate() {
+        for (f, &frequency_hz) in scan.frequencies_hz.iter().enumerate() {
+            let count = if judging == Judging::All { 3 } else { 1 };
+            for (quantity, value, limit) in limited(scan, grid.at(v, f, l, s)).into_iter().take(count) {
+                let ratio = value / limit;
+                if out.as_ref().is_none_or(|o| ratio > o.0) {
+                    let variant = variant.name.clone();
+                    out =
+                        Some((ratio, WorstCase { frequency_hz, variant, quantity: quantity.to_owned(), value, limit }));
+                }
+            }
+        }
+    }
+    out.unwrap_or_else(|| {
+        let none = WorstCase {
+            frequency_hz: 0.0,
+            variant: "nominal".to_owned(),
+            quantity: "swr".to_owned(),
+            value: 1.0,
+            limit: scan.nominal().limits.swr,
+        };
+        (0.0, none)
+    })
+}
+
+/// Worst ratios along the first length, each at the best second length.
+struct Scores {
+    ratio: Vec<f64>,
+    second: Vec<usize>,
+}
+
+impl Scores {
+    fn of(scan: &Scan, grid: &Grid, judging: Judging) -> Self {
+        let best = |l: usize| {
+            let all = (0..grid.seconds).map(|s| (worst(scan, grid, (l, s), judging).0, s));
+            all.min_by(|a, b| a.0.total_cmp(&b.0)).unwrap_or((f64::INFINITY, 0))
+        };
+        let (ratio, second) = (0..grid.lengths).map(best).unzip();
+        Self { ratio, second }
+    }
+
+    /// The worst of a length and its neighbours: what a cut that is a step off would give.
+    fn robust(&self, l: usize) -> f64 {
+        let (from, to) = (l.saturating_sub(1), (l + 1).min(self.ratio.len() - 1));
+        self.ratio[from..=to].iter().copied().fold(0.0, f64::max)
+    }
+
+    /// Runs of lengths at most this bad, widest first.
+    fn runs(&self, most: f64) -> Vec<(usize, usize)> {
+        let mut out: Vec<(usize, usize)> = Vec::new();
+        for l in (0..self.ratio.len()).filter(|&l| self.ratio[l] <= most) {
+            match out.last_mut() {
+                Some(run) if run.1 + 1 == l => run.1 = l,
+                _ => out.push((l, l)),
+            }
+        }
+        out.sort_by_key(|run| std::cmp::Reverse(run.1 - run.0));
+        out
+    }
+
+    /// The best length of a run, one that still holds when the cut is a step off.
+    fn best(&self, (from, to): (usize, usize)) -> usize {
+        let key = |l: &usize| self.robust(*l);
+        (from..=to).min_by(|a, b| key(a).total_cmp(&key(b))).unwrap_or(from)
+    }
+
+    /// Local minima, best first.
+    fn minima(&self) -> Vec<usize> {
+        let r = &self.ratio;
+        let low = |l: &usize| (*l == 0 || r[*l] <= r[l - 1]) && (*l + 1 == r.len() || r[*l] < r[l + 1]);
+        let mut out: Vec<usize> = (0..r.len()).filter(low).collect();
+        out.sort_by(|a, b| r[*a].total_cmp(&r[*b]));
+        out
+    }
+}
+
+/// Judge a scan.
+pub(super) fn judge(scan: &Scan, grid: &Grid, first: &Axis, second: Option<&Axis>) -> Judged {
+    let all = Scores::of(scan, grid, Judging::All);
+    let kept = all.ratio.iter().any(|r| *r <= 1.0);
+    let (judging, scores) =
+        if kept { (Judging::All, all) } else { (Judging::MatchAlone, Scores::of(scan, grid, Judging::MatchAlone)) };
+    let mut found: Vec<(usize, (usize, usize))> =
+        scores.runs(1.0).into_iter().map(|run| (scores.best(run), run)).collect();
+    if found.is_empty() {
+        let around = |l: usize| {
+            let runs = scores.runs(SLACK * scores.ratio[l]);
+            (l, runs.into_iter().find(|run| (run.0..=run.1).contains(&l)).unwrap_or((l, l)))
+        };
+        found = scores.minima().into_iter().map(around).collect();
+    }
+    found.truncate(PICKS);
+    let picks: Vec<CutPick> = found
+        .iter()
+        .map(|&(l, run)| {
+            let worst_case = worst(scan, grid, (l, scores.second[l]), Judging::All).1;
+            let judged_case = worst(scan, grid, (l, scores.second[l]), judging).1;
+            let window_m = [first.lengths_m[run.0], first.lengths_m[run.1]];
+            CutPick {
+                length_m: first.lengths_m[l],
+                second_length_m: second.map(|s| s.lengths_m[scores.second[l]]),
+                window_m,
+                why: reason(scan, window_m, &judged_case),
+                worst: worst_case,
+            }
+        })
+        .collect();
+    let present = present(&scores, first);
+    let keeps =
+        kept && present.is_some_and(|l| {
+            let best = found.first().map_or(f64::INFINITY, |p| scores.ratio[p.0]);
+            scores.ratio[l] <= 1.0 && best >= MUCH_BETTER * scores.ratio[l]
+        }) && second.is_none();
+    let verdict = match (kept, keeps) {
+        (false, _) => CutVerdict::NoLength,
+        (true, true) => CutVerdict::Keep,
+        (true, false) => CutVerdict::Cut,
+    };
+    let why = sentence(scan, first, verdict, &picks, (grid, scores.ratio.iter().any(|r| *r <= 1.0)));
+    Judged { verdict, why, picks }
+}
+
+/// Index of the length in the file, where the range has it within a step.
+fn present(scores: &Scores, first: &Axis) -> Option<usize> {
+    let off = |l: usize| (first.lengths_m[l] - first.present_m).abs();
+    let nearest = (0..scores.ratio.len()).min_by(|a, b| off(*a).total_cmp(&off(*b)))?;
+    let step = first.lengths_m.windows(2).map(|w| w[1] - w[0]).fold(f64::INFINITY, f64::min);
+    (off(nearest) <= 0.51 * step).then_some(nearest)
+}
+
+/// "SWR 1.8" or "412 mA at the entry".
+fn figure(case: &WorstCase) -> String {
+    match case.quantity.as_str() {
+        "swr" => format!("SWR {:.2}", case.value),
+        "entry_current_a" => format!("{} into the shack", engineering(case.value, "A")),
+        _ => format!("{} in the last metre", engineering(case.value, "A")),
+    }
+}
+
+fn at(scan: &Scan, case: &WorstCase) -> String {
+    let variant = if scan.list.len() > 1 { format!(", {}", case.variant) } else { String::new() };
+    format!("{} at {:.3} MHz{variant}", figure(case), case.frequency_hz / 1e6)
+}
+
+fn span(window_m: [f64; 2]) -> String {
+    if window_m[0] == window_m[1] {
+        metres_and_feet(window_m[0])
+    } else {
+        format!("{} to {}", metres_and_feet(window_m[0]), metres_and_feet(window_m[1]))
+    }
+}
+
+fn reason(scan: &Scan, window_m: [f64; 2], judged: &WorstCase) -> String {
+    let state = if judged.value <= judged.limit { "holds from" } else { "least bad from" };
+    format!("{state} {}; at worst {}", span(window_m), at(scan, judged))
+}
+
+fn sentence(
+    scan: &Scan,
+    first: &Axis,
+    verdict: CutVerdict,
+    picks: &[CutPick],
+    (grid, matched): (&Grid, bool),
+) -> String {
+    let Some(pick) = picks.first() else { return "nothing was computed".to_owned() };
+    let all = |many: usize, what: &str| if many > 1 { format!("all {many} {what}") } else { String::new() };
+    let over = [all(grid.frequencies, "frequencies"), all(grid.variants, "variants")];
+    let over = over.iter().filter(|o| !o.is_empty()).cloned().collect::<Vec<_>>().join(" and ");
+    let over = if over.is_empty() { String::new() } else { format!(" over {over}") };
+    let with = pick.second_length_m.map_or_else(String::new, |s| format!(" with {} beside it", metres(s)));
+    match verdict {
+        CutVerdict::Keep => format!(
+            "{} may stay at {}: within limits{over}, and no other length does better by much",
+            first.target.called(),
+            metres_and_feet(first.present_m)
+        ),
+        CutVerdict::Cut => format!(
+            "{} of {}{with}: within limits{over} from {}; at worst {}",
+            first.target.called(),
+            metres_and_feet(pick.length_m),
+            span(pick.window_m),
+            at(scan, &pick.worst)
+        ),
+        CutVerdict::NoLength if matched => format!(
+            "no length keeps the current off the shack (at {} it is still {}): that takes a choke or a counterpoise. The match \
+             alone holds{over} from {}",
+            metres(pick.length_m),
+            at(scan, &pick.worst),
+            span(pick.window_m)
+        ),
+        CutVerdict::NoLength => format!(
+            "no length keeps the limits{over}; the least bad is {}{with}, with {}",
+            metres_and_feet(pick.length_m),
+            at(scan, &pick.worst)
+        ),
+    }
+}
+
+/// Lengths that can be bought, best first.
+///
+/// # Errors
+/// [`CutFailure`] of the first that cannot be solved.
+pub(super) fn stock(
+    scan: &Scan,
+    stock: &[(String, f64)],
+    second_m: Option<f64>,
+) -> Result<Vec<StockOutcome>, CutFailure> {
+    if stock.is_empty() {
+        return Ok(Vec::new());
+    }
+    let lengths_m: Vec<f64> = stock.iter().map(|s| s.1).collect();
+    let second = second_m.map(|s| [s]);
+    let grid = scan.grid(&lengths_m, second.as_ref().map(<[f64; 1]>::as_slice))?;
+    let by_current = (0..stock.len()).any(|l| worst(scan, &grid, (l, 0), Judging::All).0 <= 1.0);
+    let judging = if by_current { Judging::All } else { Judging::MatchAlone };
+    let mut ranked: Vec<(f64, StockOutcome)> = stock
+        .iter()
+        .enumerate()
+        .map(|(l, (name, length_m))| {
+            let (ratio, worst_case) = worst(scan, &grid, (l, 0), Judging::All);
+            let rank = worst(scan, &grid, (l, 0), judging).0;
+            (
+                rank,
+                StockOutcome {
+                    name: name.clone(),
+                    length_m: *length_m,
+                    within_limits: ratio <= 1.0,
+                    worst: worst_case,
+                },
+            )
+        })
+        .collect();
+    ranked.sort_by(|a, b| a.0.total_cmp(&b.0));
+    Ok(ranked.into_iter().map(|r| r.1).collect())
+}

@@ -1,0 +1,315 @@
+//! Many lengths for the price of a few: what their meshes have in common is filled and factored once.
+//!
+//! Lengths that end on the same leg of the route make a family. The longest one's matrix, ordered from what all share outward along
+//! the scanned conductor, is factored once; each shorter one is a leading block of it bordered by the elements near its
+//! own end. Every answer is checked by its residual; where that is not small, or meshes do not nest, the length is solved alone.
+
+use super::CutFailure;
+use super::reading::{Reading, Spots};
+use super::scan::{Scan, Variant, finish, singular, solve};
+use crate::interaction::{Added, Bordered, Interaction, Leading, Surroundings};
+use crate::layout::{Earth, Layout};
+use crate::mesh::{Element, Mesh};
+use crate::ports::{PortModel, excitations};
+use faer::Mat;
+use nalgebra::DMatrix;
+use num_complex::Complex64;
+use rayon::prelude::*;
+use std::collections::HashMap;
+
+/// Largest residual, relative to the right side, of an answer that stands.
+const MOST_RESIDUAL: f64 = 1e-9;
+/// A family of fewer lengths than this is solved one by one.
+const LEAST_FAMILY: usize = 3;
+
+/// One combination of lengths, placed and meshed.
+struct Placed {
+    index: usize,
+    layout: Layout,
+    mesh: Mesh,
+}
+
+/// An element by where it lies, so that it is recognised in the mesh of another length.
+type ElementKey = (usize, usize, [i64; 8]);
+/// An unknown by the elements it lives on and how.
+type UnknownKey = Vec<(usize, [i8; 4])>;
+
+/// A length as a leading block and a border.
+struct Member {
+    placed: Placed,
+    is_new: Vec<bool>,
+    places: Vec<usize>,
+    leading: usize,
+    added: Added,
+}
+
+/// Lengths that share a factorisation.
+struct Family {
+    layout: Layout,
+    interaction: Interaction,
+    /// Unknown of the longest for every place.
+    order: Vec<usize>,
+    members: Vec<Member>,
+}
+
+/// Readings `[combination][frequency]`.
+///
+/// # Errors
+/// [`CutFailure`] of the first length that cannot be solved.
+pub(super) fn readings(
+    scan: &Scan,
+    variant: &Variant,
+    combinations: &[Vec<f64>],
+) -> Result<Vec<Vec<Reading>>, CutFailure> {
+    let placed = combinations
+        .par_iter()
+        .enumerate()
+        .map(|(index, lengths_m)| {
+            let layout = scan.place(variant, lengths_m)?;
+            let mesh = scan.mesh(&layout);
+            Ok(Placed { index, layout, mesh })
+        })
+        .collect::<Result<Vec<_>, CutFailure>>()?;
+    let mut groups: HashMap<Vec<u64>, Vec<Placed>> = HashMap::new();
+    for one in placed {
+        let key = kind(&one.layout, &combinations[one.index]);
+        groups.entry(key).or_default().push(one);
+    }
+    let mut groups: Vec<Vec<Placed>> = groups.into_values().collect();
+    groups.sort_by_key(|g| g.first().map_or(0, |p| p.index));
+    let mut done: Vec<(usize, Vec<Reading>)> = Vec::new();
+    for group in groups {
+        let (family, alone) = Family::of(group, &variant.earth);
+        let rest = alone.par_iter().map(|p| Ok((p.index, p.alone(&variant.earth)?)));
+        done.extend(rest.collect::<Result<Vec<_>, CutFailure>>()?);
+        if let Some(family) = family {
+            done.extend(family.readings(&variant.earth)?);
+        }
+    }
+    done.sort_by_key(|d| d.0);
+    Ok(done.into_iter().map(|d| d.1).collect())
+}
+
+/// Lengths of one kind may nest: as many vertices everywhere, and any second length the same.
+fn kind(layout: &Layout, lengths_m: &[f64]) -> Vec<u64> {
+    let vertices = layout.conductors.iter().map(|c| c.points.len() as u64);
+    vertices.chain(lengths_m.iter().skip(1).map(|l| l.to_bits())).collect()
+}
+
+impl Placed {
+    fn alone(&self, earths: &[Surroundings]) -> Result<Vec<Reading>, CutFailure> {
+        let interaction = Interaction::new(self.mesh.clone(), self.layout.earth != Earth::None);
+        earths.par_iter().map(|earth| solve(&self.layout, &interaction, earth)).collect()
+    }
+}
+
+fn element_key(e: &Element) -> ElementKey {
+    let fine = |x: f64| (x * 1e7).round() as i64;
+    let at = [e.from_m, e.to_m, e.start.x, e.start.y, e.start.z, e.end.x, e.end.y, e.end.z];
+    (e.conductor, e.degree, at.map(fine))
+}
+
+/// For every unknown of a mesh the elements it lives on.
+fn unknown_keys(mesh: &Mesh, ids: &[usize]) -> Vec<UnknownKey> {
+    let mut out = vec![UnknownKey::new(); mesh.unknowns];
+    for (element, id) in mesh.elements.iter().zip(ids) {
+        for (unknown, factors) in element.legendre_map() {
+            out[unknown].push((*id, factors.map(|f| (4.0 * f) as i8)));
+        }
+    }
+    for key in &mut out {
+        key.sort_unstable();
+    }
+    out
+}
+
+impl Family {
+    /// The lengths of a group that nest, and the others.
+    fn of(mut group: Vec<Placed>, earths: &[Surroundings]) -> (Option<Self>, Vec<Placed>) {
+        if group.len() < LEAST_FAMILY || earths.is_empty() {
+            return (None, group);
+        }
+        group.sort_by_key(|p| p.index);
+        let mut known: HashMap<ElementKey, usize> = HashMap::new();
+        let ids: Vec<Vec<usize>> = group
+            .iter()
+            .map(|p| {
+                let id = |e: &Element| {
+                    let next = known.len();
+                    *known.entry(element_key(e)).or_insert(next)
+                };
+                p.mesh.elements.iter().map(id).collect()
+            })
+            .collect();
+        let mut count = vec![0_usize; known.len()];
+        for id in ids.iter().flatten() {
+            count[*id] += 1;
+        }
+        let master = group.len() - 1;
+        let levels = levels(&group[master].mesh, &ids[master], &count, group.len());
+        let master_keys = unknown_keys(&group[master].mesh, &ids[master]);
+        let level_of = |key: &UnknownKey| {
+            key.iter().map(|(id, _)| levels.get(id).copied()).max_by_key(|l| l.unwrap_or(usize::MAX)).flatten()
+        };
+        let mut order: Vec<(usize, usize)> =
+            master_keys.iter().enumerate().filter_map(|(u, key)| Some((level_of(key)?, u))).collect();
+        order.sort_unstable();
+        let places: HashMap<&UnknownKey, (usize, usize)> =
+            order.iter().enumerate().map(|(place, &(level, u))| (&master_keys[u], (level, place))).collect();
+        let with_image = group[master].layout.earth != Earth::None;
+        let layout = group[master].layout.clone();
+        let interaction = Interaction::new(group[master].mesh.clone(), with_image);
+        let border = |(placed, ids): (Placed, Vec<usize>)| {
+            Member::new(placed, &ids, (&levels, &order, &places), with_image).map_err(Box::new)
+        };
+        let bordered: Vec<Result<Member, Box<Placed>>> =
+            group.into_iter().zip(ids.clone()).collect::<Vec<_>>().into_par_iter().map(border).collect();
+        let (mut members, mut alone) = (Vec::new(), Vec::new());
+        for one in bordered {
+            match one {
+                Ok(member) => members.push(member),
+                Err(placed) => alone.push(*placed),
+            }
+        }
+        let order = order.iter().map(|o| o.1).collect();
+        (Some(Self { layout, interaction, order, members }), alone)
+    }
+
+    fn readings(&self, earths: &[Surroundings]) -> Result<Vec<(usize, Vec<Reading>)>, CutFailure> {
+        let by_frequency =
+            earths.par_iter().map(|earth| self.at(earth)).collect::<Result<Vec<Vec<Reading>>, CutFailure>>()?;
+        let of = |m: usize| by_frequency.iter().map(|row| row[m]).collect();
+        Ok(self.members.iter().enumerate().map(|(m, member)| (member.placed.index, of(m))).collect())
+    }
+
+    /// All members at one frequency.
+    fn at(&self, earth: &Surroundings) -> Result<Vec<Reading>, CutFailure> {
+        let mesh = self.interaction.mesh();
+        let spots = Spots::of_potential(Spots::of(&self.layout, mesh, earth.frequency_hz()).as_ref());
+        let (z, rows) = self.interaction.fill_probed(earth, &spots);
+        let n = self.order.len();
+        let common = Leading::new(Mat::from_fn(n, n, |i, j| z[(self.order[i], self.order[j])]));
+        let rows: Vec<Vec<Complex64>> = rows.iter().map(|row| self.order.iter().map(|&u| row[u]).collect()).collect();
+        self.members
+            .par_iter()
+            .map(|member| match &common {
+                Ok(common) => member.solve(common, &rows, earth),
+                Err(_) => member.alone(earth),
+            })
+            .collect()
+    }
+}
+
+/// How far out along the scanned conductors each shared element of the longest lies: 0 where all lengths have it.
+fn levels(mesh: &Mesh, ids: &[usize], count: &[usize], members: usize) -> HashMap<usize, usize> {
+    let mut out = HashMap::new();
+    let mut outward: Vec<(f64, usize)> = Vec::new();
+    for (element, &id) in mesh.elements.iter().zip(ids) {
+        match count[id] {
+            n if n == members => {
+                out.insert(id, 0);
+            }
+            1 => {}
+            _ => outward.push((element.from_m, id)),
+        }
+    }
+    outward.sort_by(|a, b| a.0.total_cmp(&b.0));
+    let mut level = 0;
+    let mut last_m = f64::NEG_INFINITY;
+    for (from_m, id) in outward {
+        if from_m > last_m + 1e-6 {
+            level += 1;
+            last_m = from_m;
+        }
+        out.insert(id, level);
+    }
+    out
+}
+
+/// Levels of elements, places of the longest's unknowns in order with their levels, and the places by unknown.
+type Common<'a> = (&'a HashMap<usize, usize>, &'a [(usize, usize)], &'a HashMap<&'a UnknownKey, (usize, usize)>);
+
+impl Member {
+    /// A length against the common part; given back where it does not nest.
+    fn new(placed: Placed, ids: &[usize], (levels, order, known): Common, with_image: bool) -> Result<Self, Placed> {
+        let here: std::collections::HashSet<usize> = ids.iter().copied().collect();
+        // the outermost level up to which every element is here
+        let missing = levels.iter().filter(|(id, _)| !here.contains(id)).map(|(_, level)| *level).min();
+        let below = missing.unwrap_or(usize::MAX);
+        let mut is_new: Vec<bool> = ids.iter().map(|id| levels.get(id).is_none_or(|level| *level >= below)).collect();
+        let leading = order.partition_point(|(level, _)| *level < below);
+        let keys = unknown_keys(&placed.mesh, ids);
+        let mut places = vec![usize::MAX; keys.len()];
+        let mut found = 0;
+        let mut further = leading;
+        for (unknown, key) in keys.iter().enumerate() {
+            match known.get(key) {
+                Some((level, place)) if *level < below => {
+                    places[unknown] = *place;
+                    found += 1;
+                }
+                _ => {
+                    places[unknown] = further;
+                    further += 1;
+                }
+            }
+        }
+        if found != leading || leading == 0 {
+            return Err(placed);
+        }
+        for (k, element) in placed.mesh.elements.iter().enumerate() {
+            if element.legendre_map().iter().any(|(u, _)| places[*u] >= leading) {
+                is_new[k] = true;
+            }
+        }
+        let added = Added::new(&placed.mesh, &is_new, places.clone(), leading, with_image);
+        Ok(Self { placed, is_new, places, leading, added })
+    }
+
+    fn alone(&self, earth: &Surroundings) -> Result<Reading, CutFailure> {
+        let layout = &self.placed.layout;
+        solve(layout, &Interaction::new(self.placed.mesh.clone(), layout.earth != Earth::None), earth)
+    }
+
+    /// As a leading block of the common factors with its own border.
+    fn solve(
+        &self,
+        common: &Leading,
+        common_rows: &[Vec<Complex64>],
+        earth: &Surroundings,
+    ) -> Result<Reading, CutFailure> {
+        let (layout, mesh) = (&self.placed.layout, &self.placed.mesh);
+        let spots = Spots::of(layout, mesh, earth.frequency_hz());
+        let wanted = Spots::of_potential(spots.as_ref());
+        let border = self.added.columns(earth, &wanted);
+        let excite = excitations(mesh);
+        let ports = excite.ncols();
+        let mut right = Mat::zeros(mesh.unknowns, ports);
+        for (unknown, &place) in self.places.iter().enumerate() {
+            for port in 0..ports {
+                right[(place, port)] = excite[(unknown, port)];
+            }
+        }
+        let system = Bordered { leading: self.leading, columns: &border.columns, corner: &border.corner };
+        let (x, residual) = common.solve(system, &right).map_err(|source| singular(earth, source))?;
+        if residual > MOST_RESIDUAL {
+            return self.alone(earth);
+        }
+        let currents_a = Mat::from_fn(mesh.unknowns, ports, |u, port| x[(self.places[u], port)]);
+        let admittance_s = DMatrix::from_fn(ports, ports, |i, j| {
+            (0..mesh.unknowns).map(|k| excite[(k, i)] * currents_a[(k, j)]).sum()
+        });
+        let model = PortModel { admittance_s, currents_a };
+        let rows: Vec<Vec<Complex64>> = wanted
+            .iter()
+            .zip(&border.potentials)
+            .zip(common_rows)
+            .map(|((spot, own), common)| {
+                let known = !self.is_new[spot.element];
+                let at = |place: usize| if known && place < self.leading { common[place] } else { own[place] };
+                self.places.iter().map(|&place| at(place)).collect()
+            })
+            .collect();
+        finish(layout, mesh, earth, (&model, spots, &rows))
+    }
+}

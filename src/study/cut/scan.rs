@@ -1,0 +1,241 @@
+//! Every length solved at every frequency and variant.
+
+use super::lengths::{self, Axis};
+use super::moving::Target;
+use super::nested;
+use super::reading::{Reading, Solved, Spots};
+use super::{CutFailure, Method, Question};
+use crate::field::{FarField, Solution};
+use crate::interaction::{Extent, Factored, Interaction, SingularMatrix, Surroundings};
+use crate::layout::{Earth, Layout};
+use crate::mesh::{Anchor, Density, Mesh};
+use crate::network;
+use crate::ports::PortModel;
+use crate::station::{Refused, Station};
+use crate::study::Failure;
+use num_complex::Complex64;
+use rayon::prelude::*;
+
+/// Readings on all axes.
+#[derive(Debug, Clone)]
+pub(super) struct Grid {
+    pub(super) variants: usize,
+    pub(super) frequencies: usize,
+    pub(super) lengths: usize,
+    pub(super) seconds: usize,
+    readings: Vec<Reading>,
+}
+
+impl Grid {
+    pub(super) fn at(&self, variant: usize, frequency: usize, length: usize, second: usize) -> &Reading {
+        let row = (variant * self.frequencies + frequency) * self.lengths + length;
+        &self.readings[row * self.seconds + second]
+    }
+}
+
+/// One variant with its earth at every frequency.
+pub(super) struct Variant {
+    pub(super) name: String,
+    pub(super) station: Station,
+    pub(super) earth: Vec<Surroundings>,
+}
+
+/// Everything all lengths share.
+pub(super) struct Scan {
+    pub(super) frequencies_hz: Vec<f64>,
+    pub(super) list: Vec<Variant>,
+    pub(super) targets: Vec<Target>,
+    present: Layout,
+    extents: Vec<Extent>,
+    density: Density,
+    highest_hz: f64,
+    method: Method,
+}
+
+impl Scan {
+    /// Prepare: the space all lengths take up, and the earth once a frequency and variant.
+    ///
+    /// # Errors
+    /// [`CutFailure`] when a variant names no frequency or its soil cannot be.
+    pub(super) fn new(
+        stations: &[(String, Station)],
+        first: &Axis,
+        second: Option<&Axis>,
+        extra_m: &[f64],
+        question: &Question,
+    ) -> Result<Self, CutFailure> {
+        let present = Layout::place(&stations[0].1).map_err(|faults| refused(&stations[0].1, faults))?;
+        let frequencies_hz: Vec<f64> = present.operation.frequencies.iter().map(|f| f.frequency_hz).collect();
+        let highest_hz = frequencies_hz.iter().copied().fold(0.0, f64::max);
+        if highest_hz <= 0.0 {
+            return Err(Failure::NoFrequency.into());
+        }
+        let ends = |axis: &Axis| [axis.lengths_m[0], axis.anchor_m()];
+        let mut extents = Vec::new();
+        for (_, station) in stations {
+            let firsts = first.lengths_m.iter().chain(extra_m).copied().chain([first.present_m]);
+            let seconds = second.map_or_else(|| vec![None], |s| ends(s).into_iter().map(Some).collect());
+            let mut extent: Option<Extent> = None;
+            for length_m in firsts {
+                for other_m in &seconds {
+                    let mut sets = vec![(&first.target, length_m)];
+                    sets.extend(second.zip(*other_m).map(|(s, m)| (&s.target, m)));
+                    if let Ok(layout) = lengths::place(station, &sets) {
+                        let one = Extent::of(&layout);
+                        extent = Some(extent.map_or(one, |all| all.union(one)));
+                    }
+                }
+            }
+            extents.push(extent.unwrap_or_else(|| Extent::of(&present)));
+        }
+        let list = stations
+            .par_iter()
+            .zip(&extents)
+            .map(|((name, station), extent)| {
+                let layout = Layout::place(station).map_err(|faults| refused(station, faults))?;
+                let earth = frequencies_hz
+                    .par_iter()
+                    .map(|&f| Ok(Surroundings::new(f, layout.earth.at(f), extent).map_err(Failure::Soil)?))
+                    .collect::<Result<Vec<_>, CutFailure>>()?;
+                Ok(Variant { name: name.clone(), station: station.clone(), earth })
+            })
+            .collect::<Result<Vec<_>, CutFailure>>()?;
+        let targets = std::iter::once(first).chain(second).map(|a| a.target.clone()).collect();
+        let (density, method) = (question.density, question.method);
+        Ok(Self { frequencies_hz, list, targets, present, extents, density, highest_hz, method })
+    }
+
+    /// The station as written, placed.
+    pub(super) fn nominal(&self) -> &Layout {
+        &self.present
+    }
+
+    pub(super) fn variants(&self) -> Vec<String> {
+        self.list.iter().map(|v| v.name.clone()).collect()
+    }
+
+    /// Solve every combination of lengths.
+    ///
+    /// # Errors
+    /// [`CutFailure`] of the first that cannot be solved.
+    pub(super) fn grid(&self, firsts: &[f64], seconds: Option<&[f64]>) -> Result<Grid, CutFailure> {
+        let combinations: Vec<Vec<f64>> = match seconds {
+            None => firsts.iter().map(|&l| vec![l]).collect(),
+            Some(seconds) => firsts.iter().flat_map(|&l| seconds.iter().map(move |&s| vec![l, s])).collect(),
+        };
+        let mut readings = Vec::new();
+        for variant in &self.list {
+            let by_length = match self.method {
+                Method::Alone => self.alone(variant, &combinations)?,
+                Method::Shared => nested::readings(self, variant, &combinations)?,
+            };
+            readings.extend((0..self.frequencies_hz.len()).flat_map(|f| by_length.iter().map(move |row| row[f])));
+        }
+        Ok(Grid {
+            variants: self.list.len(),
+            frequencies: self.frequencies_hz.len(),
+            lengths: firsts.len(),
+            seconds: seconds.map_or(1, <[f64]>::len),
+            readings,
+        })
+    }
+
+    /// The layout of a variant at some lengths.
+    ///
+    /// # Errors
+    /// [`CutFailure::Refused`] when it cannot be built.
+    pub(super) fn place(&self, variant: &Variant, lengths_m: &[f64]) -> Result<Layout, CutFailure> {
+        let sets: Vec<(&Target, f64)> = self.targets.iter().zip(lengths_m.iter().copied()).collect();
+        Ok(lengths::place(&variant.station, &sets).map_err(|faults| refused(&variant.station, faults))?)
+    }
+
+    /// The mesh of a layout, nested with those of other lengths.
+    pub(super) fn mesh(&self, layout: &Layout) -> Mesh {
+        let moving: Vec<usize> = self.targets.iter().flat_map(|t| t.conductors(layout)).collect();
+        Mesh::anchored(layout, self.highest_hz, self.density, &Anchor::new(layout, &moving))
+    }
+
+    /// Readings `[length][frequency]`, every length on its own.
+    pub(super) fn alone(&self, variant: &Variant, combinations: &[Vec<f64>]) -> Result<Vec<Vec<Reading>>, CutFailure> {
+        combinations
+            .par_iter()
+            .map(|lengths_m| {
+                let layout = self.place(variant, lengths_m)?;
+                let interaction = Interaction::new(self.mesh(&layout), layout.earth != Earth::None);
+                variant.earth.par_iter().map(|earth| solve(&layout, &interaction, earth)).collect()
+            })
+            .collect()
+    }
+
+    /// Feed impedances of the nominal station at any lengths and frequencies, ohm, `[lengths][frequency]`.
+    ///
+    /// # Errors
+    /// [`CutFailure`] of the first that cannot be solved.
+    pub(super) fn feeds(&self, combinations: &[Vec<f64>], at_hz: &[f64]) -> Result<Vec<Vec<Complex64>>, CutFailure> {
+        let nominal = &self.list[0];
+        let earths = at_hz
+            .par_iter()
+            .map(|&f| Ok(Surroundings::new(f, self.present.earth.at(f), &self.extents[0]).map_err(Failure::Soil)?))
+            .collect::<Result<Vec<_>, CutFailure>>()?;
+        combinations
+            .par_iter()
+            .map(|lengths_m| {
+                let layout = self.place(nominal, lengths_m)?;
+                let interaction = Interaction::new(self.mesh(&layout), layout.earth != Earth::None);
+                earths.par_iter().map(|earth| feed_ohm(&layout, &interaction, earth)).collect()
+            })
+            .collect()
+    }
+}
+
+fn refused(station: &Station, faults: Vec<crate::station::Fault>) -> Refused {
+    Refused { sources: station.sources.clone(), faults }
+}
+
+/// One length at one frequency from nothing.
+///
+/// # Errors
+/// [`CutFailure::Solving`] when the matrix is singular or no power can flow.
+pub(super) fn solve(layout: &Layout, interaction: &Interaction, earth: &Surroundings) -> Result<Reading, CutFailure> {
+    let mesh = interaction.mesh();
+    let spots = Spots::of(layout, mesh, earth.frequency_hz());
+    let (z, rows) = interaction.fill_probed(earth, &Spots::of_potential(spots.as_ref()));
+    let model = Factored::new(z).and_then(|f| PortModel::from_factored(mesh, &f));
+    let model = model.map_err(|source| singular(earth, source))?;
+    finish(layout, mesh, earth, (&model, spots, &rows))
+}
+
+/// The failure of a singular matrix.
+pub(super) fn singular(earth: &Surroundings, source: SingularMatrix) -> CutFailure {
+    CutFailure::Solving(Failure::Singular { frequency_hz: earth.frequency_hz(), source })
+}
+
+/// From the port model, and potentials as rows over the unknowns, to a reading.
+///
+/// # Errors
+/// [`CutFailure::Solving`] when no power can flow.
+pub(super) fn finish(
+    layout: &Layout,
+    mesh: &Mesh,
+    earth: &Surroundings,
+    (model, spots, rows): (&PortModel, Option<Spots>, &[Vec<Complex64>]),
+) -> Result<Reading, CutFailure> {
+    let parts = parts(layout, earth);
+    let port_currents = model.loaded_currents(&parts);
+    let unknowns = model.unknowns(&parts, &port_currents);
+    let potentials_v = rows.iter().map(|row| row.iter().zip(&unknowns).map(|(r, x)| r * x).sum()).collect();
+    let currents = Solution::new(mesh, &unknowns);
+    let radiated_w = FarField::new(mesh, &currents, earth.frequency_hz(), earth.earth()).radiated_w();
+    let feed_a = port_currents[0];
+    Ok(Solved { layout, mesh, earth, feed_a, currents, spots, potentials_v, radiated_w }.reading()?)
+}
+
+fn parts(layout: &Layout, earth: &Surroundings) -> Vec<Complex64> {
+    layout.parts.iter().map(|p| network::impedance(&p.law, earth.frequency_hz())).collect()
+}
+
+/// Feed impedance of one length at one frequency, ohm.
+fn feed_ohm(layout: &Layout, interaction: &Interaction, earth: &Surroundings) -> Result<Complex64, CutFailure> {
+    let model = PortModel::solve(interaction, earth).map_err(|source| singular(earth, source))?;
+    Ok(model.loaded_currents(&parts(layout, earth))[0].inv())
+}

@@ -1,0 +1,272 @@
+//! From arrays to one choice: what keeps the limits, with which window, and why.
+//!
+//! A place is judged by its worst over all frequencies and variants of four quantities: the current into the shack and the largest
+//! current within a metre of the radio, both against `entry_current`; the standing-wave ratio against `swr`; and the voltage of
+//! the shield at the radio, which a choke may not raise above the worst the station shows without it. So an open end, where the
+//! current is nothing by definition, cannot pass as a quiet one.
+//!
+//! The default of 20 mA is what test level 2 of IEC 61000-4-6 drives through its common-mode impedance: 3 V over 150 ohm (values from
+//! memory). A standing-wave ratio of 2 is common practice.
+
+use super::words;
+use crate::outcome::place::{OverFrequency, OverPlace, PlaceOutcome, PlacePick, PlaceVerdict, WorstCase};
+
+/// A hand may set a choke this far beside the mark, m.
+const SLACK_M: f64 = 0.05;
+/// Voltage at the radio below which none is held against a choke, V: the source voltage of IEC 61000-4-6 test level 2.
+const LEAST_VOLTAGE_V: f64 = 3.0;
+/// A choke may raise the worst voltage at the radio by this factor.
+const VOLTAGE_SLACK: f64 = 1.05;
+/// Heat in the choke worth naming, as a share of the power.
+const LARGE_HEAT: f64 = 0.05;
+/// What is not within limits may get worse by this much inside a window.
+const WINDOW_WORSE: f64 = 1.1;
+
+const QUANTITIES: [&str; 4] = ["entry_current_a", "last_metre_current_a", "swr", "end_voltage_v"];
+
+/// One value against its limit.
+#[derive(Debug, Clone, Copy)]
+struct Case {
+    variant: usize,
+    frequency: usize,
+    quantity: usize,
+    value: f64,
+    limit: f64,
+}
+
+impl Case {
+    fn ratio(&self) -> f64 {
+        self.value / self.limit
+    }
+
+    fn outcome(&self, of: &PlaceOutcome) -> WorstCase {
+        WorstCase {
+            frequency_hz: of.frequencies_hz[self.frequency],
+            variant: of.variants[self.variant].clone(),
+            quantity: QUANTITIES[self.quantity].to_string(),
+            value: self.value,
+            limit: self.limit,
+        }
+    }
+}
+
+/// How a place stands.
+#[derive(Debug, Clone, Copy)]
+struct Judged {
+    /// Cases beyond a limit.
+    beyond: usize,
+    /// Their logarithms summed; with none, that of the worst case, which is negative.
+    excess: f64,
+    worst: Case,
+}
+
+impl Judged {
+    fn of(cases: impl Iterator<Item = Case>) -> Option<Self> {
+        let mut out: Option<Self> = None;
+        let mut total = 0.0;
+        let mut beyond = 0;
+        for case in cases {
+            if case.ratio() > 1.0 {
+                beyond += 1;
+                total += case.ratio().ln();
+            }
+            if out.is_none_or(|o| case.ratio() > o.worst.ratio()) {
+                out = Some(Self { beyond: 0, excess: 0.0, worst: case });
+            }
+        }
+        out.map(|o| Self { beyond, excess: if beyond > 0 { total } else { o.worst.ratio().ln() }, worst: o.worst })
+    }
+
+    fn better(&self, other: &Self) -> std::cmp::Ordering {
+        self.beyond.cmp(&other.beyond).then(self.excess.total_cmp(&other.excess))
+    }
+}
+
+/// Limits in the order of [`QUANTITIES`].
+fn limits(outcome: &PlaceOutcome) -> [f64; 4] {
+    let highest = outcome.without.end_voltage_v.iter().flatten().flatten().fold(0.0_f64, |m, v| m.max(*v));
+    let volts = (VOLTAGE_SLACK * highest).max(LEAST_VOLTAGE_V);
+    [outcome.limits.entry_current_a, outcome.limits.entry_current_a, outcome.limits.swr, volts]
+}
+
+fn cases<'a>(
+    outcome: &'a PlaceOutcome,
+    limits: [f64; 4],
+    value: impl Fn(usize, usize, usize) -> Option<f64> + 'a,
+) -> impl Iterator<Item = Case> + 'a {
+    let (variants, frequencies) = (outcome.variants.len(), outcome.frequencies_hz.len());
+    let all = (0..variants).flat_map(move |v| (0..frequencies).flat_map(move |f| (0..4).map(move |q| (v, f, q))));
+    all.filter_map(move |(variant, frequency, quantity)| {
+        let value = value(variant, frequency, quantity)?;
+        Some(Case { variant, frequency, quantity, value, limit: limits[quantity] })
+    })
+}
+
+fn judge_without(outcome: &PlaceOutcome, limits: [f64; 4]) -> Option<Judged> {
+    let w = &outcome.without;
+    let plain = |of: &OverFrequency<f64>, v: usize, f: usize| Some(of[v][f]);
+    Judged::of(cases(outcome, limits, |v, f, q| match q {
+        0 => plain(&w.entry_current_a, v, f),
+        1 => plain(&w.last_metre_current_a, v, f),
+        2 => plain(&w.swr, v, f),
+        _ => w.end_voltage_v[v][f],
+    }))
+}
+
+fn judge(outcome: &PlaceOutcome, limits: [f64; 4], choke: usize, place: usize) -> Option<Judged> {
+    let plain = |of: &OverPlace<f64>, v: usize, f: usize| Some(of[v][choke][f][place]);
+    Judged::of(cases(outcome, limits, |v, f, q| match q {
+        0 => plain(&outcome.entry_current_a, v, f),
+        1 => plain(&outcome.last_metre_current_a, v, f),
+        2 => plain(&outcome.swr, v, f),
+        _ => outcome.end_voltage_v[v][choke][f][place],
+    }))
+}
+
+/// Fill in verdict, reason and picks.
+pub(super) fn decide(outcome: &mut PlaceOutcome) {
+    let limits = limits(outcome);
+    let offered = offered(outcome);
+    let judged: Vec<Vec<Judged>> = (0..outcome.chokes.len())
+        .map(|c| (0..outcome.places_m.len()).filter_map(|p| judge(outcome, limits, c, p)).collect())
+        .collect();
+    let mut found: Vec<(Judged, PlacePick)> =
+        (0..outcome.chokes.len()).filter_map(|c| pick(outcome, c, &judged[c], &offered)).collect();
+    let width = |p: &PlacePick| p.window_m[1] - p.window_m[0];
+    found.sort_by(|a, b| a.0.better(&b.0).then(width(&b.1).total_cmp(&width(&a.1))));
+    let without = judge_without(outcome, limits);
+    let (verdict, why) = match (without.filter(|w| w.beyond == 0), found.first()) {
+        (Some(worst), _) => (PlaceVerdict::NoneNeeded, none_needed(outcome, &worst)),
+        (None, Some((best, pick))) if best.beyond == 0 => {
+            (PlaceVerdict::Place, format!("{} choke {}", pick.choke, pick.why))
+        }
+        (None, Some((_, pick))) => (PlaceVerdict::NoPlace, no_place(outcome, pick, &judged, &offered)),
+        (None, None) => (
+            PlaceVerdict::NoPlace,
+            "no place meets the limits, because no place of the coax is within the stretches that can be reached"
+                .to_string(),
+        ),
+    };
+    outcome.verdict = verdict;
+    outcome.why = why;
+    outcome.picks = found.into_iter().map(|f| f.1).collect();
+}
+
+/// Which places a hand can reach.
+fn offered(outcome: &PlaceOutcome) -> Vec<bool> {
+    let within = |x: f64| outcome.reachable_m.iter().any(|r| x >= r[0] - 1e-9 && x <= r[1] + 1e-9);
+    outcome.places_m.iter().map(|x| outcome.reachable_m.is_empty() || within(*x)).collect()
+}
+
+/// The best place of a choke that also holds a hand's breadth to either side, with its window.
+fn pick(outcome: &PlaceOutcome, choke: usize, judged: &[Judged], offered: &[bool]) -> Option<(Judged, PlacePick)> {
+    let places = &outcome.places_m;
+    let beside = |p: usize| {
+        let near = |q: usize| (places[q] - places[p]).abs() <= SLACK_M + 1e-9;
+        let low = (0..=p).rev().take_while(|q| near(*q)).last().unwrap_or(p);
+        let high = (p..places.len()).take_while(|q| near(*q)).last().unwrap_or(p);
+        judged[low..=high].iter().max_by(|a, b| a.better(b)).copied().unwrap_or(judged[p])
+    };
+    let robust: Vec<Option<Judged>> = (0..places.len()).map(|p| offered[p].then(|| beside(p))).collect();
+    let best = robust.iter().enumerate().filter_map(|(p, r)| r.map(|r| (p, r))).min_by(|a, b| a.1.better(&b.1))?.0;
+    let here = judged[best];
+    let holds = |q: usize| {
+        let worse = if here.beyond == 0 { 0.0 } else { WINDOW_WORSE.ln() * here.beyond as f64 };
+        let near = here.beyond == 0 || judged[q].excess <= here.excess + worse;
+        offered[q] && judged[q].beyond <= here.beyond && near
+    };
+    let low = (0..=best).rev().take_while(|q| holds(*q)).last().unwrap_or(best);
+    let high = (best..places.len()).take_while(|q| holds(*q)).last().unwrap_or(best);
+    let mut pick = PlacePick {
+        choke: outcome.chokes[choke].name.clone(),
+        at_m: places[best],
+        window_m: [places[low], places[high]],
+        worst: here.worst.outcome(outcome),
+        why: String::new(),
+    };
+    pick.why = why(outcome, choke, best, &here, &pick);
+    Some((here, pick))
+}
+
+fn why(outcome: &PlaceOutcome, choke: usize, place: usize, here: &Judged, pick: &PlacePick) -> String {
+    let at = words::window(pick.window_m);
+    let count = outcome.variants.len() * outcome.frequencies_hz.len() * QUANTITIES.len();
+    let mut text = if here.beyond == 0 {
+        format!("at {at}: within limits on {}{}", words::bands(outcome), words::variants(outcome))
+    } else {
+        format!("at {at}: {} of {count} values beyond a limit; {}", here.beyond, words::case(&pick.worst))
+    };
+    if let Some((share, frequency, variant)) = hottest(outcome, choke, place).filter(|h| h.0 > LARGE_HEAT) {
+        let with = if variant == 0 { String::new() } else { format!(" with \"{}\"", outcome.variants[variant]) };
+        text.push_str(&format!(
+            "; the choke turns up to {:.0} % of the power into heat (at {}{with})",
+            100.0 * share,
+            words::megahertz(outcome.frequencies_hz[frequency])
+        ));
+    }
+    text
+}
+
+/// Largest share of the power in the choke: (share, frequency, variant).
+fn hottest(outcome: &PlaceOutcome, choke: usize, place: usize) -> Option<(f64, usize, usize)> {
+    let all =
+        outcome.choke_w.iter().enumerate().flat_map(|(v, c)| {
+            c[choke].iter().enumerate().map(move |(f, places)| (places[place] / outcome.power_w, f, v))
+        });
+    all.max_by(|a, b| a.0.total_cmp(&b.0))
+}
+
+fn none_needed(outcome: &PlaceOutcome, judged: &Judged) -> String {
+    format!(
+        "no choke is needed: the station keeps its limits without one on {}{}; what comes closest: {}",
+        words::bands(outcome),
+        words::variants(outcome),
+        words::case(&judged.worst.outcome(outcome))
+    )
+}
+
+/// Which limit cannot be met: the quantity whose best over all places and chokes is furthest beyond.
+fn no_place(outcome: &PlaceOutcome, first: &PlacePick, judged: &[Vec<Judged>], offered: &[bool]) -> String {
+    let limits = limits(outcome);
+    let mut impossible: Vec<(f64, Case)> = (0..QUANTITIES.len())
+        .filter_map(|q| {
+            let each = judged.iter().enumerate().flat_map(|(c, places)| {
+                let open = (0..places.len()).filter(|p| offered[*p]);
+                open.filter_map(move |p| worst_of(outcome, limits, c, p, q))
+            });
+            each.min_by(|a, b| a.ratio().total_cmp(&b.ratio())).map(|case| (case.ratio(), case))
+        })
+        .filter(|(ratio, _)| *ratio > 1.0)
+        .collect();
+    impossible.sort_by(|a, b| b.0.total_cmp(&a.0));
+    let reasons: Vec<String> = impossible
+        .iter()
+        .map(|(_, case)| {
+            let worst = case.outcome(outcome);
+            let (name, value, limit) = words::quantity(&worst);
+            let with = if case.variant == 0 { String::new() } else { format!(" with \"{}\"", worst.variant) };
+            format!(
+                "{name} is {value} (limit {limit}) at {}{with} even with the choke and the place that are best for it",
+                words::megahertz(worst.frequency_hz)
+            )
+        })
+        .collect();
+    let because = if reasons.is_empty() {
+        "none keeps them all on every frequency and in every variant at once".to_string()
+    } else {
+        reasons.join(", and ")
+    };
+    format!("no place meets the limits, because {because}; least bad: {} choke {}", first.choke, first.why)
+}
+
+/// The worst case of one quantity at a place.
+fn worst_of(outcome: &PlaceOutcome, limits: [f64; 4], choke: usize, place: usize, quantity: usize) -> Option<Case> {
+    let value = |v: usize, f: usize| match quantity {
+        0 => Some(outcome.entry_current_a[v][choke][f][place]),
+        1 => Some(outcome.last_metre_current_a[v][choke][f][place]),
+        2 => Some(outcome.swr[v][choke][f][place]),
+        _ => outcome.end_voltage_v[v][choke][f][place],
+    };
+    cases(outcome, limits, |v, f, q| if q == quantity { value(v, f) } else { None })
+        .max_by(|a, b| a.ratio().total_cmp(&b.ratio()))
+}

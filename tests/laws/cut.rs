@@ -1,0 +1,251 @@
+//! Length scans: the fast answer is the slow one, results run smoothly, and the worst lengths come out where theory puts them.
+
+use braidwise::layout::Layout;
+use braidwise::mesh::{Anchor, Density, Mesh};
+use braidwise::outcome::cut::{CutOutcome, OverLength};
+use braidwise::station::{Document, Embedded, Station};
+use braidwise::study::cut::{Lengths, Method, Question, cut};
+use braidwise::study::{Options, predict};
+
+fn station(text: &str) -> Station {
+    Document::parse(text, "test").and_then(|d| d.station(&Embedded)).unwrap()
+}
+
+fn model(name: &str) -> String {
+    std::fs::read_to_string(format!("{}/models/{name}.toml", env!("CARGO_MANIFEST_DIR"))).unwrap()
+}
+
+fn question(conductor: &str, lengths_m: Vec<f64>) -> Question {
+    Question {
+        first: Lengths { conductor: conductor.into(), lengths_m },
+        second: None,
+        stock: Vec::new(),
+        method: Method::Shared,
+        density: Density::default(),
+    }
+}
+
+fn steps(from: f64, to: f64, step: f64) -> Vec<f64> {
+    (0..=((to - from) / step + 1e-9) as usize).map(|n| from + step * n as f64).collect()
+}
+
+fn scan(text: &str, question: &Question) -> CutOutcome {
+    cut(&[("nominal".into(), station(text))], question).unwrap()
+}
+
+/// Largest difference of two scans, relative to the largest value of each quantity along the scan.
+fn difference(a: &CutOutcome, b: &CutOutcome) -> f64 {
+    let numbers = |c: &CutOutcome| -> Vec<Vec<f64>> {
+        let plain = |v: &OverLength<f64>| match v {
+            OverLength::One(v) => v.iter().flatten().flatten().copied().collect::<Vec<f64>>(),
+            OverLength::Two(v) => v.iter().flatten().flatten().flatten().copied().collect(),
+        };
+        let volts = |v: &OverLength<Option<f64>>| match v {
+            OverLength::One(v) => v.iter().flatten().flatten().map(|x| x.unwrap_or(0.0)).collect::<Vec<f64>>(),
+            OverLength::Two(v) => v.iter().flatten().flatten().flatten().map(|x| x.unwrap_or(0.0)).collect(),
+        };
+        vec![
+            plain(&c.swr),
+            plain(&c.entry_current_a),
+            plain(&c.last_metre_current_a),
+            plain(&c.radiated_fraction),
+            volts(&c.entry_voltage_v),
+            volts(&c.end_voltage_v),
+        ]
+    };
+    let mut worst = 0.0_f64;
+    for (x, y) in numbers(a).iter().zip(&numbers(b)) {
+        assert_eq!(x.len(), y.len());
+        let scale = x.iter().fold(1e-12_f64, |m, v| m.max(v.abs()));
+        worst = x.iter().zip(y).fold(worst, |w, (p, q)| w.max((p - q).abs() / scale));
+    }
+    worst
+}
+
+/// Small reproducible random numbers (a linear congruential generator, Knuth's constants, from memory).
+struct Dice(u64);
+
+impl Dice {
+    fn roll(&mut self, from: f64, to: f64) -> f64 {
+        self.0 = self.0.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+        from + (to - from) * ((self.0 >> 11) as f64 / (1_u64 << 53) as f64)
+    }
+}
+
+fn random_station(dice: &mut Dice, kind: usize) -> String {
+    let earth =
+        ["kind = \"none\"", "kind = \"perfect\"", "kind = \"soil\"\npermittivity = 13\nconductivity = \"5 mS/m\""]
+            [kind % 3];
+    let up = dice.roll(3.0, 8.0);
+    let tip = [dice.roll(-8.0, 8.0), dice.roll(8.0, 22.0), dice.roll(3.0, 12.0)];
+    let low = dice.roll(0.3, 2.5);
+    let entry = [dice.roll(-2.0, 2.0), dice.roll(-6.0, -3.0), low];
+    let rig = [dice.roll(-4.0, 4.0), dice.roll(-26.0, -20.0), dice.roll(0.6, 2.5)];
+    let choke = if dice.roll(0.0, 1.0) > 0.5 {
+        "[[choke]]\nname = \"c\"\nat = 2.0\nimpedance = { resistance = \"2 kohm\", reactance = \"500 ohm\" }\n"
+    } else {
+        ""
+    };
+    let body = if dice.roll(0.0, 1.0) > 0.5 { "\"0.3 m\"" } else { "\"none\"" };
+    let (counterpoise, cold) = if dice.roll(0.0, 1.0) > 0.5 {
+        (
+            "[[wire]]\nname = \"counterpoise\"\npath = [\"feed\", [3, 2, 2.5]]\nlength = 2\ndiameter = \"1.6 mm\"\n",
+            "\"coax\", \"counterpoise\"",
+        )
+    } else {
+        ("", "\"coax\"")
+    };
+    format!(
+        "title = \"drawn\"\nunit = \"m\"\n[earth]\n{earth}\n[points]\nfeed = [0, 0, {up}]\nfoot = [0, -0.4, {low}]\n\
+         tip = {tip:?}\nentry = {entry:?}\nrig = {rig:?}\n[[wire]]\nname = \"radiator\"\npath = [\"feed\", \"tip\"]\ndiameter = \"1.6 mm\"\n\
+         jacket = {{ permittivity = 2.3, thickness = \"0.6 mm\" }}\n{counterpoise}[coax]\ncable = \"RG-58\"\n\
+         path = [\"feed\", \"foot\", \"entry\", \"rig\"]\n[feed]\nat = \"feed\"\nhot = [\"radiator\"]\ncold = [{cold}]\n\
+         transformer = {{ ratio = \"49:1\" }}\n{choke}[radio]\nbody = {body}\n[operation]\npower = \"100 W\"\n\
+         frequencies = [\"{:.3} MHz\", \"{:.3} MHz\"]\n",
+        dice.roll(3.5, 10.0),
+        dice.roll(10.0, 28.0)
+    )
+}
+
+#[test]
+fn the_shared_scan_equals_every_length_alone() {
+    let mut dice = Dice(7);
+    for n in 0..20 {
+        let text = random_station(&mut dice, n);
+        let conductor = if n % 5 == 4 { "radiator" } else { "coax" };
+        let from = if conductor == "coax" { 15.0 } else { 9.0 };
+        let mut question = question(conductor, steps(from, from + 3.5, 0.5));
+        let shared = scan(&text, &question);
+        question.method = Method::Alone;
+        let alone = scan(&text, &question);
+        assert!(shared.lengths_m.len() == 8, "{text}");
+        let off = difference(&shared, &alone);
+        assert!(off < 1e-6, "station {n}: {off:.2e}\n{text}");
+        // another mesh must show
+        if n == 0 {
+            question.density = Density { factor: 1.3 };
+            assert!(difference(&shared, &scan(&text, &question)) > 1e-5);
+        }
+    }
+}
+
+#[test]
+fn two_lengths_scanned_jointly_equal_each_alone() {
+    let text = model("gauge-hut-counterpoise");
+    let mut question = question("coax", steps(10.2, 11.4, 0.4));
+    question.second = Some(Lengths { conductor: "counterpoise".into(), lengths_m: vec![1.5, 2.0] });
+    let shared = scan(&text, &question);
+    question.method = Method::Alone;
+    assert!(difference(&shared, &scan(&text, &question)) < 1e-6);
+    assert_eq!(shared.second_lengths_m, Some(vec![1.5, 2.0]));
+}
+
+#[test]
+fn meshes_of_two_lengths_share_all_but_the_elements_near_the_end() {
+    let mut short = station(&model("weir-gallery-40"));
+    let long = Layout::place(&short).unwrap();
+    short.coax.as_mut().unwrap().length_m = Some(10.63.into());
+    let short = Layout::place(&short).unwrap();
+    let shield = long.coax.as_ref().unwrap().conductor;
+    let mesh = |layout: &Layout| Mesh::anchored(layout, 29.7e6, Density::default(), &Anchor::new(layout, &[shield]));
+    let (one, two) = (mesh(&long), mesh(&short));
+    let shared = |a: &Mesh, b: &Mesh| {
+        let there = |e: &braidwise::mesh::Element| {
+            b.elements.iter().any(|f| (e.start - f.start).norm() < 1e-9 && (e.end - f.end).norm() < 1e-9)
+        };
+        a.elements.iter().filter(|e| !there(e)).count()
+    };
+    assert!(shared(&one, &two) <= 10, "{} of {}", shared(&one, &two), one.elements.len());
+    let plain = |layout: &Layout| Mesh::new(layout, 29.7e6, Density::default(), &[]);
+    assert!(shared(&plain(&long), &plain(&short)) > 15, "without the anchor they must not");
+}
+
+#[test]
+fn results_against_length_are_smooth() {
+    let text = model("weir-gallery-40").replace("bands = [\"40\"]", "frequencies = [\"28.5 MHz\"]");
+    let lengths = steps(9.0, 13.0, 0.04);
+    let shared = scan(&text, &question("coax", lengths.clone()));
+    let nested: Vec<f64> = (0..lengths.len()).map(|n| shared.feed_ohm.get(0, 0, n, 0).unwrap().inv().norm()).collect();
+    // the feed admittance repeats within a half wave of 5.3 m: a smooth curve's third difference over 4 cm is below 10^-4 of it
+    let third = |y: &[f64]| {
+        let scale = y.iter().fold(0.0_f64, |m, v| m.max(*v));
+        y.windows(4).map(|w| (w[3] - 3.0 * w[2] + 3.0 * w[1] - w[0]).abs() / scale).fold(0.0, f64::max)
+    };
+    assert!(third(&nested) < 2e-3, "{:.2e}", third(&nested));
+    let own_mesh: Vec<f64> = lengths
+        .iter()
+        .map(|&l| {
+            let mut one = station(&text);
+            one.coax.as_mut().unwrap().length_m = Some(l.into());
+            let p = predict(&Layout::place(&one).unwrap(), &Options::default()).unwrap();
+            let feed = &p.frequencies[0].feed;
+            1.0 / feed.resistance_ohm.hypot(feed.reactance_ohm)
+        })
+        .collect();
+    eprintln!("third differences: nested {:.2e}, own meshes {:.2e}", third(&nested), third(&own_mesh));
+    assert!(third(&own_mesh) > 1.5 * third(&nested), "a mesh of its own for every length must be rougher");
+}
+
+#[test]
+fn the_present_length_reads_as_predict_does() {
+    let text = model("gauge-hut");
+    let mut built = station(&text);
+    built.coax.as_mut().unwrap().length_m = Some(11.5.into());
+    let prediction = predict(&Layout::place(&built).unwrap(), &Options::default()).unwrap();
+    let shared = scan(&text, &question("coax", vec![10.5, 11.0, 11.5]));
+    for (f, at) in prediction.frequencies.iter().enumerate() {
+        let feed = num_complex::Complex64::new(at.feed.resistance_ohm, at.feed.reactance_ohm);
+        let reflection = |z: num_complex::Complex64| (z - 2450.0) / (z + 2450.0);
+        let z = *shared.feed_ohm.get(0, f, 2, 0).unwrap();
+        assert!((reflection(z) - reflection(feed)).norm() < 0.02, "{} MHz: {z} {feed}", at.frequency_hz / 1e6);
+        let entry = *shared.entry_current_a.get(0, f, 2, 0).unwrap();
+        let shield = at.shield.as_ref().unwrap();
+        assert!((entry - shield.entry_current_a).abs() < 0.03 * shield.largest_current_a);
+        let fraction = *shared.radiated_fraction.get(0, f, 2, 0).unwrap();
+        assert!((fraction - at.power.radiated_w / at.power.input_w).abs() < 0.02);
+    }
+}
+
+/// Common practice: 115 to 135 ft for 80 m and 60 to 68 ft for 40 m, shorter for the top of the band.
+#[test]
+fn the_best_cut_of_an_end_fed_half_wave_is_where_practice_has_it() {
+    let foot = 0.3048;
+    for (name, range, practice) in [
+        ("weir-gallery-80", steps(30.0, 45.0, 0.5), [115.0 * foot, 135.0 * foot]),
+        ("weir-gallery-40", steps(16.0, 24.0, 0.25), [60.0 * foot, 68.0 * foot]),
+    ] {
+        let found = scan(&model(name), &question("radiator", range));
+        let best = found.picks[0].length_m;
+        assert!((practice[0]..=practice[1]).contains(&best), "{name}: {best} m");
+        let rule = &found.trim[0];
+        assert!(rule.hz_per_m < 0.0, "a shorter wire is higher");
+        // a half wave: df/dl is about -f/l
+        let whole = rule.hz_per_m * best / rule.frequency_hz;
+        assert!((-1.15..-0.75).contains(&whole), "{name}: {whole}");
+    }
+}
+
+/// Common practice: an open shield is worst near half-wave multiples of its outside, a bonded one near odd quarter waves.
+#[test]
+fn open_coax_is_worst_near_half_waves_and_bonded_coax_near_odd_quarters() {
+    let open = model("weir-gallery-40").replace("bands = [\"40\"]", "frequencies = [\"7.1 MHz\"]");
+    let wave = 299.792_458 / 7.1;
+    let peaks = |text: &str, quantity: &str| -> Vec<f64> {
+        let found = scan(text, &question("coax", steps(4.0, 60.0, 0.5)));
+        found.lengths_to_avoid.iter().filter(|a| a.quantity == quantity).map(|a| a.length_m).collect()
+    };
+    let worst = peaks(&open, "swr");
+    eprintln!("open: {worst:?}, half wave {:.2} m", wave / 2.0);
+    assert!(!worst.is_empty());
+    for n in [1.0, 2.0] {
+        assert!(worst.iter().any(|l| (l / (n * wave / 2.0) - 1.0).abs() < 0.08), "no worst length near {n} half waves");
+    }
+    let bonded = format!("{open}\n[[rod]]\nat = \"far\"\nlength = 1.5\ndiameter = \"14 mm\"\n")
+        .replace("8.6]", "1.0]")
+        .replace(", 9]", ", 1.4]");
+    let open_low = open.replace("8.6]", "1.0]").replace(", 9]", ", 1.4]");
+    let (bonded, open_low) = (peaks(&bonded, "swr"), peaks(&open_low, "swr"));
+    eprintln!("bonded: {bonded:?}, low and open {open_low:?}, quarter wave {:.2} m", wave / 4.0);
+    assert!(bonded.iter().any(|l| (l / (0.75 * wave) - 1.0).abs() < 0.12));
+    assert!(!bonded.iter().any(|l| (l / (0.5 * wave) - 1.0).abs() < 0.12));
+}
