@@ -3,7 +3,7 @@
 use super::flags::{Length, StationArgs};
 use super::load::{load, references};
 use super::stop::Stop;
-use crate::layout::{BandEdge, FrequencyPoint};
+use crate::layout::{BandEdge, FrequencyPoint, Layout};
 use crate::mesh::Density;
 use crate::outcome::Prediction;
 use crate::outcome::curve::InterpolatedCurve;
@@ -77,15 +77,7 @@ impl Predict {
                 prediction.patterns.push(pattern(&loaded.layout, frequency_hz)?);
             }
         }
-        let options = CurveOptions { density, ..CurveOptions::default() };
-        let curve = match range {
-            Some((low, high)) => {
-                let curve = PortCurve::new(&loaded.layout, low, high, options)?;
-                Some(curve.outcome(&spaced(low, high, CURVE_POINTS))?)
-            }
-            None if self.curve => Some(of_bands(&loaded.layout, BAND_POINTS, options)?),
-            None => None,
-        };
+        let curve = self.curve(&loaded.layout, range)?;
         if let Some(path) = &self.csv {
             output::whole_file(path, |w| output::csv::prediction(&prediction, w))?;
         }
@@ -97,11 +89,11 @@ impl Predict {
             let references = references(&loaded.layout);
             let mut drawn =
                 output::pictures::write_all_prediction(&prediction, &references, folder, self.units.into())?;
-            if let Some(curve) = &curve {
-                drawn.extend(output::pictures::write_curve(&curve.curve, folder)?);
-            }
             for pattern in &prediction.patterns {
                 drawn.extend(output::pictures::write_pattern(pattern, folder)?);
+            }
+            if let Some(curve) = &curve {
+                drawn.extend(output::pictures::write_curve(&curve.curve, folder)?);
             }
             for path in drawn {
                 eprintln!("drew {}", path.display());
@@ -122,6 +114,18 @@ impl Predict {
         Ok(())
     }
 
+    /// The interpolated curve where one was asked for.
+    fn curve(&self, layout: &Layout, range: Option<(f64, f64)>) -> Result<Option<InterpolatedCurve>, Stop> {
+        let options = CurveOptions { density: Density { factor: self.density }, ..CurveOptions::default() };
+        Ok(match range {
+            Some((low, high)) => {
+                Some(PortCurve::new(layout, low, high, options)?.outcome(&spaced(low, high, CURVE_POINTS))?)
+            }
+            None if self.curve => Some(of_bands(layout, BAND_POINTS, options)?),
+            None => None,
+        })
+    }
+
     /// Ends of the range where a curve was asked for, Hz.
     fn range(&self) -> Result<Option<(f64, f64)>, Stop> {
         let (Some(from), Some(to)) = (&self.from, &self.to) else { return Ok(None) };
@@ -134,21 +138,6 @@ impl Predict {
         }
         Ok(Some((low, high)))
     }
-}
-
-/// One frequency a band: its middle, or the first that was asked for.
-fn pattern_frequencies(prediction: &Prediction) -> Vec<f64> {
-    let mut out: Vec<(Option<&str>, f64)> = Vec::new();
-    for f in &prediction.frequencies {
-        let room = out.len() < 12;
-        match out.iter_mut().find(|(band, _)| band.is_some() && *band == f.band.as_deref()) {
-            Some(known) if f.edge == Some(BandEdge::Middle) => known.1 = f.frequency_hz,
-            Some(_) => {}
-            None if f.band.is_some() || room => out.push((f.band.as_deref(), f.frequency_hz)),
-            None => {}
-        }
-    }
-    out.into_iter().map(|(_, frequency_hz)| frequency_hz).collect()
 }
 
 /// What `--json` prints: the prediction, and the curve where one was asked for.
@@ -190,4 +179,19 @@ fn of_the_curve(curve: &InterpolatedCurve) -> String {
         100.0 * curve.error_estimate,
         100.0 * curve.tolerance,
     )
+}
+
+/// One frequency a band: its middle, or the first that was asked for.
+fn pattern_frequencies(prediction: &Prediction) -> Vec<f64> {
+    let mut out: Vec<(Option<&str>, f64)> = Vec::new();
+    for f in &prediction.frequencies {
+        let room = out.len() < 12;
+        match out.iter_mut().find(|(band, _)| band.is_some() && *band == f.band.as_deref()) {
+            Some(known) if f.edge == Some(BandEdge::Middle) => known.1 = f.frequency_hz,
+            Some(_) => {}
+            None if f.band.is_some() || room => out.push((f.band.as_deref(), f.frequency_hz)),
+            None => {}
+        }
+    }
+    out.into_iter().map(|(_, frequency_hz)| frequency_hz).collect()
 }

@@ -84,8 +84,11 @@ const PLAIN: [(&str, Reader); 31] = [
     ("discretisation.reactance_ohm", |f| Some(f.discretisation.reactance_ohm)),
 ];
 
+/// How a quantity is read off a choke or inline part.
+type PartReader = fn(&PartOutcome) -> f64;
+
 /// What can be asked of a choke or inline part.
-const OF_A_PART: [(&str, fn(&PartOutcome) -> f64); 3] =
+const OF_A_PART: [(&str, PartReader); 3] =
     [("dissipated_w", |p| p.dissipated_w), ("current_a", |p| p.current_a), ("voltage_v", |p| p.voltage_v)];
 
 /// What is asked for where nothing is.
@@ -104,7 +107,7 @@ fn total_w(parts: &[PartOutcome]) -> f64 {
 #[derive(Debug, Clone, Copy)]
 enum Source {
     Plain(Reader),
-    Part { inline: bool, read: fn(&PartOutcome) -> f64 },
+    Part { inline: bool, read: PartReader },
     Joint,
 }
 
@@ -170,6 +173,12 @@ impl Quantity {
             Source::Joint => outcome.joints.iter().find(|j| j.conductor == self.part).map(|j| j.current_a),
         };
         value.filter(|v| v.is_finite())
+    }
+
+    /// Whether it rests on the power radiated or lost in the earth, which are dear.
+    #[must_use]
+    pub fn needs_power_budget(&self) -> bool {
+        ["power.radiated", "power.earth", "power.unaccounted"].iter().any(|start| self.name.starts_with(start))
     }
 
     /// Whether it rests on the second, coarser mesh.

@@ -165,6 +165,7 @@ pub(crate) fn prediction() -> Prediction {
         }],
         frequencies: frequencies(1.0),
         variants: vec![VariantOutcome { name: "wet".into(), frequencies: frequencies(1.3) }],
+        patterns: Vec::new(),
     }
 }
 

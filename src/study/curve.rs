@@ -14,6 +14,7 @@ use crate::mesh::{Density, Mesh};
 use crate::network::{self, Chain};
 use crate::outcome::curve::{CurveBand, CurveOutcome, CurvePoint, InterpolatedCurve, ShieldCurvePoint};
 use crate::ports::PortModel;
+use crate::quantity::SPEED_OF_LIGHT_M_PER_S;
 use nalgebra::DMatrix;
 use num_complex::Complex64;
 use rayon::prelude::*;
@@ -157,7 +158,10 @@ impl<'a> PortCurve<'a> {
     }
 
     fn values(&self, frequency_hz: f64) -> Values {
-        let flat = self.curve.eval(frequency_hz);
+        let mut flat = self.curve.eval(frequency_hz);
+        for (value, shape) in flat.iter_mut().zip(shapes(self.layout, frequency_hz)) {
+            *value *= shape;
+        }
         let ports = self.layout.parts.len() + 1;
         let mut admittance_s = DMatrix::zeros(ports, ports);
         let mut next = flat.into_iter();
@@ -261,7 +265,32 @@ fn sample(
             ]);
         }
     }
+    for (value, shape) in out.iter_mut().zip(shapes(layout, frequency_hz)) {
+        *value /= shape;
+    }
     Ok(out)
+}
+
+/// What every value is divided by before it is interpolated, and multiplied with afterwards: known factors that would cost poles.
+///
+/// Currents rise with frequency, charges do not; and what travels d along the coax turns by k d, of which half is taken out
+/// because part of the current stands. Over 3 to 30 MHz this saved 2 to 6 of 28 solves on the models with 14 m of coax.
+fn shapes(layout: &Layout, frequency_hz: f64) -> Vec<Complex64> {
+    let ports = layout.parts.len() + 1;
+    let rise = Complex64::from(frequency_hz / 1e7);
+    let mut out = vec![rise; ports * (ports + 1) / 2];
+    if let Some(coax) = &layout.coax {
+        let half_k_per_m = std::f64::consts::PI * frequency_hz / SPEED_OF_LIGHT_M_PER_S;
+        for port in 0..ports {
+            let from_m =
+                port.checked_sub(1).and_then(|p| layout.parts.get(p)).filter(|p| p.conductor == coax.conductor);
+            let from_m = from_m.map_or(0.0, |p| p.at_m);
+            let turn = |to_m: f64| Complex64::from_polar(1.0, -half_k_per_m * (to_m - from_m).abs());
+            let (entry, end) = (turn(coax.entry_m), turn(coax.length_m));
+            out.extend([rise * entry, entry, rise * end, end]);
+        }
+    }
+    out
 }
 
 /// Where entry current, entry voltage, end current and end voltage are read: the radio side of the entry, the radio's end of

@@ -185,8 +185,8 @@ pub(super) struct At<'a> {
     earth: Arc<Surroundings>,
 }
 
-/// A mesh solved at one frequency.
-pub(super) struct Solved {
+/// The ports of a mesh at one frequency, and the potentials its charges make.
+pub(super) struct Ported {
     pub(super) model: PortModel,
     pub(super) potentials: PotentialMap,
 }
@@ -198,29 +198,30 @@ impl<'a> At<'a> {
     }
 
     fn outcome(&self, fine: &Interaction, coarse: &Interaction) -> Result<FrequencyOutcome, Failure> {
-        let (solved, second) = (self.solve(fine)?, self.ports(coarse)?);
-        self.outcome_of(fine, &solved, Some(&second))
+        let (ported, second) = (self.solve(fine)?, self.ports(coarse)?);
+        self.outcome_of(fine, &ported, Some(&second), true)
     }
 
-    /// Everything at this frequency from a solved mesh and the solution of the second mesh; without the second the
-    /// discretisation error is not a number.
+    /// Everything at this frequency from a solved mesh and the solution of the second mesh. Without the second the
+    /// discretisation error is not a number; without the budget the power radiated, lost in the earth and unaccounted for is not.
     pub(super) fn outcome_of(
         &self,
         fine: &Interaction,
-        solved: &Solved,
+        ported: &Ported,
         second: Option<&PortModel>,
+        budget: bool,
     ) -> Result<FrequencyOutcome, Failure> {
         let f = self.point.frequency_hz;
         let parts: Vec<Complex64> = self.layout.parts.iter().map(|p| network::impedance(&p.law, f)).collect();
-        let currents = solved.model.loaded_currents(&parts);
+        let currents = ported.model.loaded_currents(&parts);
         let feed_ohm = currents[0].inv();
         let state = Chain::of(self.layout).at(f).state(feed_ohm, self.layout.operation.power_w)?;
         // with 1 V (peak) at the gap the feed takes ½ Re Y; everything is linear in the voltage
         let voltage_peak_v = (2.0 * state.feed_w / currents[0].re).sqrt();
-        let solution = Solution::new(fine.mesh(), &solved.model.unknowns(&parts, &currents))
+        let solution = Solution::new(fine.mesh(), &ported.model.unknowns(&parts, &currents))
             .scaled(Complex64::from(voltage_peak_v));
         let port_currents = currents * Complex64::from(voltage_peak_v);
-        let conductors = self.conductors(fine.mesh(), &solution, &solved.potentials.along(&solution.currents));
+        let conductors = self.conductors(fine.mesh(), &solution, &ported.potentials.along(&solution.currents));
         let nan = Complex64::new(f64::NAN, f64::NAN);
         let difference = second.map_or(nan, |second| feed_ohm - second.loaded_currents(&parts)[0].inv());
         Ok(FrequencyOutcome {
@@ -241,7 +242,7 @@ impl<'a> At<'a> {
             },
             shield: shield::outcome(self.layout, &conductors),
             joints: shield::joints(self.layout, &conductors),
-            power: self.power(fine, &solution, &state, &parts, &port_currents),
+            power: self.power(budget.then_some(fine), fine.mesh(), &solution, &state, &parts, &port_currents),
             conductors,
             discretisation: DiscretisationOutcome {
                 resistance_ohm: ERROR_OVER_DIFFERENCE * difference.re.abs(),
@@ -257,13 +258,13 @@ impl<'a> At<'a> {
     }
 
     /// The ports with the potentials along every conductor.
-    pub(super) fn solve(&self, interaction: &Interaction) -> Result<Solved, Failure> {
+    pub(super) fn solve(&self, interaction: &Interaction) -> Result<Ported, Failure> {
         let frequency_hz = self.point.frequency_hz;
         let singular = |source| Failure::Singular { frequency_hz, source };
         let (matrix, potentials) = interaction.fill_with_potentials(&self.earth);
         let factored = Factored::new(matrix).map_err(singular)?;
         let model = PortModel::from_factored(interaction.mesh(), &factored).map_err(singular)?;
-        Ok(Solved { model, potentials })
+        Ok(Ported { model, potentials })
     }
 
     fn soil(&self) -> Option<SoilOutcome> {
@@ -299,7 +300,8 @@ impl<'a> At<'a> {
 
     fn power(
         &self,
-        interaction: &Interaction,
+        budget: Option<&Interaction>,
+        mesh: &Mesh,
         solution: &Solution,
         state: &ChainState,
         parts: &[Complex64],
@@ -324,22 +326,13 @@ impl<'a> At<'a> {
         };
         let (chokes, inline) = (of_kind(PartKind::Choke), of_kind(PartKind::Inline));
         let input_w = self.layout.operation.power_w;
-        let mesh = interaction.mesh();
-        let far = FarField::new(mesh, solution, f, self.earth.earth());
-        let radiated_w = far.radiated_w();
         let metal_w = solution.metal_w(mesh, f);
         let in_parts: f64 = chokes.iter().chain(&inline).map(|p| p.dissipated_w).sum();
-        let rest_w = input_w - radiated_w - metal_w - state.line_w - state.transformer_w - in_parts;
-        let (earth_w, unaccounted_w) =
-            match (self.earth.earth(), interaction.near_field_loss_w(&self.earth, &solution.currents)) {
-                (EarthAt::Soil { .. }, Some(near_w)) => {
-                    let earth_w = near_w + far.downward_w();
-                    (earth_w, Some(rest_w - earth_w))
-                }
-                // with conductors below the surface the earth's share is what remains
-                (EarthAt::Soil { .. }, None) => (rest_w, None),
-                _ => (0.0, Some(rest_w)),
-            };
+        let remaining_w = input_w - metal_w - state.line_w - state.transformer_w - in_parts;
+        let (radiated_w, earth_w, unaccounted_w) = match budget {
+            Some(interaction) => self.outward(interaction, solution, remaining_w),
+            None => (f64::NAN, f64::NAN, None),
+        };
         PowerOutcome {
             input_w,
             radiated_w,
@@ -350,6 +343,22 @@ impl<'a> At<'a> {
             chokes,
             inline,
             unaccounted_w,
+        }
+    }
+
+    /// Power radiated, lost in the earth, and unaccounted for, W, of what metal, line and parts leave.
+    fn outward(&self, interaction: &Interaction, solution: &Solution, remaining_w: f64) -> (f64, f64, Option<f64>) {
+        let far = FarField::new(interaction.mesh(), solution, self.point.frequency_hz, self.earth.earth());
+        let radiated_w = far.radiated_w();
+        let rest_w = remaining_w - radiated_w;
+        match (self.earth.earth(), interaction.near_field_loss_w(&self.earth, &solution.currents)) {
+            (EarthAt::Soil { .. }, Some(near_w)) => {
+                let earth_w = near_w + far.downward_w();
+                (radiated_w, earth_w, Some(rest_w - earth_w))
+            }
+            // with conductors below the surface the earth's share is what remains
+            (EarthAt::Soil { .. }, None) => (radiated_w, rest_w, None),
+            _ => (radiated_w, 0.0, Some(rest_w)),
         }
     }
 }

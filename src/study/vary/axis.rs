@@ -116,6 +116,9 @@ impl Axis {
 
 type Mended = (String, &'static str);
 
+/// Reads a text as a quantity in SI.
+type Reader = fn(&str) -> Result<f64, quantity::Misread>;
+
 fn range(from: &str, rest: &str) -> Result<Values, Mended> {
     let (to, by) = match rest.rsplit_once("by") {
         Some((to, by)) => (to, Some(by)),
@@ -147,7 +150,7 @@ fn numbers(texts: &[&str]) -> Result<(Vec<f64>, String), Mended> {
             return Ok((split.iter().map(|s| s.0).collect(), first.to_owned()));
         }
     }
-    let kinds: [(fn(&str) -> Result<f64, quantity::Misread>, &str); 8] = [
+    let kinds: [(Reader, &str); 8] = [
         (quantity::length_m, "m"),
         (quantity::frequency_hz, "Hz"),
         (quantity::power_w, "W"),

@@ -4,10 +4,10 @@ use super::{Plan, Watch};
 use crate::interaction::{Extent, Interaction, Surroundings};
 use crate::layout::{EarthAt, Layout};
 use crate::mesh::{Density, Mesh};
-use crate::outcome::vary::VariedRow;
+use crate::outcome::vary::{Quantity, VariedRow};
 use crate::ports::PortModel;
 use crate::station::{Catalogue, Document, Refused};
-use crate::study::predict::{At, SECOND_MESH, Solved};
+use crate::study::predict::{At, Ported, SECOND_MESH};
 use crate::study::store::{Finished, StoreError};
 use rayon::prelude::*;
 use std::collections::{HashMap, HashSet};
@@ -53,7 +53,7 @@ struct TableKey([u64; 4]);
 /// A mesh, solved at every frequency of the station, and the ports of the second mesh where that is wanted.
 struct Meshed {
     fine: Interaction,
-    solved: Vec<(Solved, Option<PortModel>)>,
+    solved: Vec<(Ported, Option<PortModel>)>,
 }
 
 impl TableKey {
@@ -181,9 +181,10 @@ impl Work<'_> {
     fn rows(&self, variant: &Variant, tables: &Tables, meshed: &Meshed) -> Result<Vec<VariedRow>, String> {
         let layout = &variant.layout;
         let points = layout.operation.frequencies.par_iter().zip(&meshed.solved);
+        let budget = self.plan.want.iter().any(Quantity::needs_power_budget);
         let rows = points.map(|(point, (solved, second))| {
             let at = At::new(layout, point, table(tables, layout, point.frequency_hz)?);
-            let outcome = at.outcome_of(&meshed.fine, solved, second.as_ref()).map_err(|e| e.to_string())?;
+            let outcome = at.outcome_of(&meshed.fine, solved, second.as_ref(), budget).map_err(|e| e.to_string())?;
             Ok(VariedRow {
                 variant: variant.name.clone(),
                 frequency_hz: point.frequency_hz,
