@@ -1,15 +1,16 @@
 //! `braidwise cut`.
 
-use super::flags::StationArgs;
+use super::flags::{Length, StationArgs, drew};
 use super::load::load;
 use super::stop::Stop;
 use crate::mesh::Density;
-use crate::outcome::cut::CutOutcome;
-use crate::quantity::{engineering, length_m, metres_and_feet};
+use crate::output;
+use crate::quantity::length_m;
 use crate::station::Embedded;
 use crate::study::cut::{self, CutFailure, Lengths, MOST_LENGTHS, Method, Question};
 use clap::Args;
 use std::io::Write;
+use std::path::PathBuf;
 
 /// Arguments of `cut`.
 #[derive(Debug, Args)]
@@ -34,6 +35,15 @@ pub(super) struct Cut {
     /// One JSON document on standard output, nothing else
     #[arg(long)]
     json: bool,
+    /// Write every value as CSV
+    #[arg(long, value_name = "FILE")]
+    csv: Option<PathBuf>,
+    /// Draw the scan into a folder (SVG and PNG)
+    #[arg(long, value_name = "DIR")]
+    plots: Option<PathBuf>,
+    /// Units of length in the text
+    #[arg(long, value_enum, default_value_t)]
+    units: Length,
 }
 
 impl Cut {
@@ -42,10 +52,16 @@ impl Cut {
         let loaded = load(&self.station)?;
         let stations = cut::variants_of(&loaded.document, &Embedded)?;
         let outcome = cut::cut(&stations, &question)?;
+        if let Some(path) = &self.csv {
+            output::whole_file(path, |w| output::csv::cut(&outcome, w))?;
+        }
+        if let Some(folder) = &self.plots {
+            drew(output::pictures::write_all_cut(&outcome, folder)?);
+        }
         let text = if self.json {
             serde_json::to_string(&outcome).map_err(|e| Stop::Could(e.to_string()))?
         } else {
-            plain(&outcome)
+            output::cut_text::verdict(&outcome, self.units.into())
         };
         writeln!(std::io::stdout().lock(), "{text}")?;
         Ok(())
@@ -118,46 +134,6 @@ fn stock(text: &str) -> Result<Vec<(String, f64)>, String> {
         }
     };
     parts.iter().map(read).collect()
-}
-
-/// The answer in plain words.
-fn plain(outcome: &CutOutcome) -> String {
-    let mut out = vec![
-        outcome.station.clone(),
-        format!("length of {}; what moves is {}", outcome.conductor, outcome.moving_end),
-        String::new(),
-        outcome.why.clone(),
-    ];
-    for pick in &outcome.picks {
-        out.push(format!("  {}: {}", metres_and_feet(pick.length_m), pick.why));
-    }
-    for stock in &outcome.stock {
-        let state = if stock.within_limits { "within limits" } else { "beyond a limit" };
-        out.push(format!(
-            "  in stock, {}: {state}; at worst {} {:.3}",
-            stock.name, stock.worst.quantity, stock.worst.value
-        ));
-    }
-    for avoid in &outcome.lengths_to_avoid {
-        out.push(format!(
-            "  avoid {} at {} ({}): {} peaks at {:.3}",
-            metres_and_feet(avoid.length_m),
-            engineering(avoid.frequency_hz, "Hz"),
-            avoid.variant,
-            avoid.quantity,
-            avoid.value
-        ));
-    }
-    for trim in &outcome.trim {
-        let khz_per_cm = trim.hz_per_m / 1e5;
-        out.push(format!(
-            "  trim: match at {}, {khz_per_cm:+.2} kHz per cm, {:+.2} kHz per inch added",
-            engineering(trim.frequency_hz, "Hz"),
-            2.54 * khz_per_cm
-        ));
-    }
-    out.extend(outcome.warnings.iter().map(|w| format!("  {}: {}", w.about, w.message)));
-    out.join("\n")
 }
 
 #[cfg(test)]

@@ -32,3 +32,10 @@ impl From<Length> for Units {
         }
     }
 }
+
+/// Say on standard error which pictures were drawn.
+pub(super) fn drew(paths: Vec<PathBuf>) {
+    for path in paths {
+        eprintln!("drew {}", path.display());
+    }
+}

@@ -1,14 +1,14 @@
 //! `braidwise place`.
 
-use super::flags::StationArgs;
+use super::flags::{Length, StationArgs, drew};
 use super::load::load;
 use super::stop::Stop;
-use crate::layout::Layout;
-use crate::outcome::place::PlaceOutcome;
+use crate::output;
 use crate::quantity;
 use crate::study::{Candidate, PlaceFailure, PlaceOptions, place};
 use clap::Args;
 use std::io::Write;
+use std::path::PathBuf;
 
 /// Arguments of `place`.
 #[derive(Debug, Args)]
@@ -27,20 +27,34 @@ pub(super) struct Place {
     /// A choke of the file that stays where it is, while the others are candidates (repeatable)
     #[arg(long = "keep", value_name = "NAME")]
     keep: Vec<String>,
+    /// Write every value as CSV
+    #[arg(long, value_name = "FILE")]
+    csv: Option<PathBuf>,
+    /// Draw the maps into a folder (SVG and PNG)
+    #[arg(long, value_name = "DIR")]
+    plots: Option<PathBuf>,
+    /// Units of length in the text
+    #[arg(long, value_enum, default_value_t)]
+    units: Length,
 }
 
 impl Place {
     pub(super) fn run(&self) -> Result<(), Stop> {
         let options = self.options()?;
         let loaded = load(&self.station)?;
-        let variants: Vec<(String, Layout)> = Vec::new();
-        let outcome = place(&loaded.layout, &variants, &options)?;
+        let outcome = place(&loaded.layout, &loaded.variants, &options)?;
+        if let Some(path) = &self.csv {
+            output::whole_file(path, |w| output::csv::place(&outcome, w))?;
+        }
+        if let Some(folder) = &self.plots {
+            drew(output::pictures::write_all_place(&outcome, folder)?);
+        }
         let mut out = std::io::stdout().lock();
         if self.json {
             serde_json::to_writer(&mut out, &outcome).map_err(|e| Stop::Could(e.to_string()))?;
             writeln!(out)?;
         } else {
-            write!(out, "{}", verdict(&outcome))?;
+            writeln!(out, "{}", output::place_text::verdict(&outcome, self.units.into()))?;
         }
         Ok(())
     }
@@ -70,35 +84,4 @@ impl From<PlaceFailure> for Stop {
     fn from(failure: PlaceFailure) -> Self {
         if failure.is_usage() { Stop::Usage(failure.to_string()) } else { Stop::Could(failure.to_string()) }
     }
-}
-
-/// The answer in a few lines.
-fn verdict(outcome: &PlaceOutcome) -> String {
-    let mut text = format!("{}\n\n{}\n", outcome.station, outcome.why);
-    for (n, pick) in outcome.picks.iter().enumerate() {
-        text.push_str(&format!("{}. {} at {:.2} m; {}\n", n + 1, pick.choke, pick.at_m, pick.why));
-    }
-    if !outcome.clamp.is_empty() {
-        text.push_str("\nTo verify, clamp a current meter round the coax and expect (RMS, at the operating power):\n");
-    }
-    for clamp in &outcome.clamp {
-        text.push_str(&format!(
-            "  {:8.4} MHz at {:.1} m: {:.0} mA ({:.0} to {:.0} mA)\n",
-            clamp.frequency_hz / 1e6,
-            clamp.at_m,
-            1e3 * clamp.current_a,
-            1e3 * clamp.range_a[0],
-            1e3 * clamp.range_a[1]
-        ));
-    }
-    for warning in &outcome.warnings {
-        text.push_str(&format!("\nwarning: {}: {}\n", warning.about, warning.message));
-    }
-    text.push_str(
-        "\nA choke never replaces a bond: bonds, rods and protective conductors stay as they are, and the choke goes around them.\n\
-         High voltage stands at the ends of the wire, at the feed point and across the choke whenever you transmit; a choke that \
-         takes power gets hot.\n\
-         Local electrical codes, licensed practice and a measured survey decide, not this program.\n",
-    );
-    text
 }

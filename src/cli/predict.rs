@@ -1,6 +1,6 @@
 //! `braidwise predict`.
 
-use super::flags::{Length, StationArgs};
+use super::flags::{Length, StationArgs, drew};
 use super::load::{load, references};
 use super::stop::Stop;
 use crate::layout::{BandEdge, FrequencyPoint, Layout};
@@ -95,9 +95,7 @@ impl Predict {
             if let Some(curve) = &curve {
                 drawn.extend(output::pictures::write_curve(&curve.curve, folder)?);
             }
-            for path in drawn {
-                eprintln!("drew {}", path.display());
-            }
+            drew(drawn);
         }
         if self.json {
             let document = Document { prediction: &prediction, curve: curve.as_ref() };
