@@ -4,7 +4,7 @@ use super::flags::StationArgs;
 use super::load::load;
 use super::stop::Stop;
 use crate::layout::Layout;
-use crate::outcome::place::PlaceOutcome;
+use crate::outcome::place::{PlaceOutcome, PlaceVerdict};
 use crate::quantity;
 use crate::study::{Candidate, PlaceFailure, PlaceOptions, place};
 use clap::Args;
@@ -74,7 +74,12 @@ impl From<PlaceFailure> for Stop {
 
 /// The answer in a few lines.
 fn verdict(outcome: &PlaceOutcome) -> String {
-    let mut text = format!("{}\n\n{}\n", outcome.station, outcome.why);
+    let said = match outcome.verdict {
+        PlaceVerdict::NoneNeeded => "No choke is needed".to_string(),
+        PlaceVerdict::Place => format!("Put the {} choke", outcome.picks.first().map_or("first", |p| &p.choke)),
+        PlaceVerdict::NoPlace => "No place meets the limits".to_string(),
+    };
+    let mut text = format!("{}\n\n{said}: {}\n", outcome.station, outcome.why);
     for (n, pick) in outcome.picks.iter().enumerate() {
         text.push_str(&format!("{}. {} at {:.2} m; {}\n", n + 1, pick.choke, pick.at_m, pick.why));
     }
