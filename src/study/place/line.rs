@@ -21,6 +21,8 @@ const GROWTH: f64 = 1.4;
 const FIRST_STEP_GAPS: f64 = 2.0;
 /// First step at a mere bend, where little charge piles up, in gap widths.
 const BEND_STEP_GAPS: f64 = 8.0;
+/// The first port past the one at 0 m begins here, in gap widths.
+const PAST_FEED_GAPS: f64 = 0.25;
 /// Most ports that one interpolated value is taken from.
 const STENCIL: usize = 8;
 
@@ -31,6 +33,8 @@ pub(super) struct Stretch {
     pub(super) from_m: f64,
     /// End of the metal, m.
     pub(super) to_m: f64,
+    /// The port at 0 m alone: a choke there is at the feed junction, which nothing beside it continues smoothly.
+    at_feed: bool,
     /// Index of its first port.
     pub(super) first_node: usize,
     /// Centres of its ports, m, ascending.
@@ -152,12 +156,19 @@ impl Line {
     }
 
     fn lay_ports(&mut self, features: &[Feature], shortest_wavelength_m: f64) {
-        let mut first_node = 0;
         for pair in features.windows(2) {
-            let (from_m, to_m) = (pair[0].to_m, pair[1].from_m);
+            let (mut from_m, to_m) = (pair[0].to_m, pair[1].from_m);
             if to_m - from_m < self.gap_m * (1.0 - 1e-9) {
                 continue;
             }
+            if from_m == 0.0 {
+                self.port_at_feed();
+                from_m = PAST_FEED_GAPS * self.gap_m;
+                if to_m - from_m < self.gap_m {
+                    continue;
+                }
+            }
+            let first_node = self.node_count();
             let (low_m, high_m) = (from_m + 0.5 * self.gap_m, (to_m - 0.5 * self.gap_m).max(from_m + 0.5 * self.gap_m));
             let scale = Scale {
                 low_m,
@@ -174,9 +185,15 @@ impl Line {
             if steps > 0 {
                 nodes_m.push(high_m);
             }
-            self.stretches.push(Stretch { from_m, to_m, first_node, nodes_m, scale });
-            first_node += self.stretches.last().map_or(0, |s| s.nodes_m.len());
+            self.stretches.push(Stretch { from_m, to_m, at_feed: false, first_node, nodes_m, scale });
         }
+    }
+
+    fn port_at_feed(&mut self) {
+        let centre = 0.5 * self.gap_m;
+        let scale = Scale { low_m: centre, high_m: centre, widest_m: self.gap_m, first_m: [self.gap_m; 2] };
+        let (from_m, to_m, first_node) = (0.0, self.gap_m, self.node_count());
+        self.stretches.push(Stretch { from_m, to_m, at_feed: true, first_node, nodes_m: vec![centre], scale });
     }
 
     /// Number of ports.
@@ -211,7 +228,9 @@ impl Line {
             return None;
         }
         // a stretch between the same walls, the nearest where the gap would straddle a bend; at one the feed side
-        let inside = |s: &&Stretch| s.from_m >= low - 1e-9 && s.to_m <= high + 1e-9;
+        let inside = |s: &&Stretch| {
+            s.from_m >= low - 1e-9 && s.to_m <= high + 1e-9 && (!s.at_feed || centre <= s.nodes_m[0] + 1e-9)
+        };
         let off = |s: &Stretch| (s.from_m - centre).max(centre - s.to_m).max(0.0);
         let nearest = self.stretches.iter().filter(inside).min_by(|a, b| off(a).total_cmp(&off(b)))?;
         let stretch = self.stretches.iter().position(|s| s.first_node == nearest.first_node)?;

@@ -55,7 +55,8 @@ impl Case {
 struct Judged {
     /// Cases beyond a limit.
     beyond: usize,
-    /// Their logarithms summed; with none, that of the worst case, which is negative.
+    /// Their logarithms summed; with none, that of the worst case, which is negative. To either the largest share of the power
+    /// that the choke turns into heat is added: of two places that keep the limits alike the cooler one is better.
     excess: f64,
     worst: Case,
 }
@@ -115,12 +116,14 @@ fn judge_without(outcome: &PlaceOutcome, limits: [f64; 4]) -> Option<Judged> {
 
 fn judge(outcome: &PlaceOutcome, limits: [f64; 4], choke: usize, place: usize) -> Option<Judged> {
     let plain = |of: &OverPlace<f64>, v: usize, f: usize| Some(of[v][choke][f][place]);
-    Judged::of(cases(outcome, limits, |v, f, q| match q {
+    let heat = hottest(outcome, choke, place).map_or(0.0, |h| h.0);
+    let judged = Judged::of(cases(outcome, limits, |v, f, q| match q {
         0 => plain(&outcome.entry_current_a, v, f),
         1 => plain(&outcome.last_metre_current_a, v, f),
         2 => plain(&outcome.swr, v, f),
         _ => outcome.end_voltage_v[v][choke][f][place],
-    }))
+    }));
+    judged.map(|j| Judged { excess: j.excess + heat, ..j })
 }
 
 /// Fill in verdict, reason and picks.
@@ -137,15 +140,11 @@ pub(super) fn decide(outcome: &mut PlaceOutcome) {
     let without = judge_without(outcome, limits);
     let (verdict, why) = match (without.filter(|w| w.beyond == 0), found.first()) {
         (Some(worst), _) => (PlaceVerdict::NoneNeeded, none_needed(outcome, &worst)),
-        (None, Some((best, pick))) if best.beyond == 0 => {
-            (PlaceVerdict::Place, format!("{} choke {}", pick.choke, pick.why))
+        (None, Some((best, pick))) if best.beyond == 0 => (PlaceVerdict::Place, pick.why.clone()),
+        (None, Some(_)) => (PlaceVerdict::NoPlace, no_place(outcome, &judged, &offered)),
+        (None, None) => {
+            (PlaceVerdict::NoPlace, "no place of the coax is within the stretches that can be reached".to_string())
         }
-        (None, Some((_, pick))) => (PlaceVerdict::NoPlace, no_place(outcome, pick, &judged, &offered)),
-        (None, None) => (
-            PlaceVerdict::NoPlace,
-            "no place meets the limits, because no place of the coax is within the stretches that can be reached"
-                .to_string(),
-        ),
     };
     outcome.verdict = verdict;
     outcome.why = why;
@@ -218,7 +217,7 @@ fn hottest(outcome: &PlaceOutcome, choke: usize, place: usize) -> Option<(f64, u
 
 fn none_needed(outcome: &PlaceOutcome, judged: &Judged) -> String {
     format!(
-        "no choke is needed: the station keeps its limits without one on {}{}; what comes closest: {}",
+        "the station keeps its limits without one on {}{}; what comes closest: {}",
         words::bands(outcome),
         words::variants(outcome),
         words::case(&judged.worst.outcome(outcome))
@@ -226,7 +225,7 @@ fn none_needed(outcome: &PlaceOutcome, judged: &Judged) -> String {
 }
 
 /// Which limit cannot be met: the quantity whose best over all places and chokes is furthest beyond.
-fn no_place(outcome: &PlaceOutcome, first: &PlacePick, judged: &[Vec<Judged>], offered: &[bool]) -> String {
+fn no_place(outcome: &PlaceOutcome, judged: &[Vec<Judged>], offered: &[bool]) -> String {
     let limits = limits(outcome);
     let mut impossible: Vec<(f64, Case)> = (0..QUANTITIES.len())
         .filter_map(|q| {
@@ -245,18 +244,14 @@ fn no_place(outcome: &PlaceOutcome, first: &PlacePick, judged: &[Vec<Judged>], o
             let worst = case.outcome(outcome);
             let (name, value, limit) = words::quantity(&worst);
             let with = if case.variant == 0 { String::new() } else { format!(" with \"{}\"", worst.variant) };
-            format!(
-                "{name} is {value} (limit {limit}) at {}{with} even with the choke and the place that are best for it",
-                words::megahertz(worst.frequency_hz)
-            )
+            format!("{name} is at best {value} (limit {limit}) at {}{with}", words::megahertz(worst.frequency_hz))
         })
         .collect();
-    let because = if reasons.is_empty() {
-        "none keeps them all on every frequency and in every variant at once".to_string()
+    if reasons.is_empty() {
+        "no place keeps them all on every frequency and in every variant at once".to_string()
     } else {
         reasons.join(", and ")
-    };
-    format!("no place meets the limits, because {because}; least bad: {} choke {}", first.choke, first.why)
+    }
 }
 
 /// The worst case of one quantity at a place.
