@@ -4,6 +4,8 @@
 
 mod along;
 mod far;
+mod form;
 
 pub use along::{Sample, Solution};
 pub use far::{FarField, Pattern};
+pub use form::{CurrentNode, Sphere};
