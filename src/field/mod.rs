@@ -4,8 +4,10 @@
 
 mod along;
 mod far;
+mod form;
 mod near;
 
 pub use along::{Sample, Solution};
 pub use far::{FarField, Pattern};
+pub use form::{CurrentNode, Sphere};
 pub use near::near_field;

@@ -5,9 +5,9 @@
 //! rest of the soil's potentials is integrated pair by pair, as in the full matrix.
 
 use super::fill::{Interaction, Legendre, Matrix, UnknownMap, add_local, combine, region_of};
-use super::kernel::waves;
+use super::kernel::{MOST_POINTS, waves};
 use super::line::{Line, Tubes, clearance, tubes};
-use super::pairs::far_points;
+use super::pairs::{Statics, far_points};
 use super::probe::{Spot, slope, value_weights};
 use super::quadrature::{gauss, legendre};
 use super::rest;
@@ -27,9 +27,10 @@ const NEAR_LENGTHS: f64 = 0.3;
 #[derive(Debug, Clone)]
 pub struct Added {
     elements: Vec<Element>,
-    /// For every unknown of the mesh its place: the leading ones first, then the further ones.
-    places: Vec<usize>,
+    /// How the unknowns, by their places (the leading ones first, then the further ones), enter every element's current.
+    maps: Vec<UnknownMap>,
     leading: usize,
+    further: usize,
     /// New elements first, then those near them, with their indices in the mesh.
     close: Interaction,
     close_ids: Vec<usize>,
@@ -67,8 +68,15 @@ impl Added {
     /// # Inputs
     /// - `is_new`: for every element
     /// - `places`: for every unknown; those from `leading` on are the further ones, which live on new elements only
+    /// - `known`: static moments of a mesh with like elements
     #[must_use]
-    pub fn new(mesh: &Mesh, is_new: &[bool], places: Vec<usize>, leading: usize, with_image: bool) -> Self {
+    pub fn new(
+        mesh: &Mesh,
+        is_new: &[bool],
+        (places, leading): (&[usize], usize),
+        with_image: bool,
+        known: &Statics,
+    ) -> Self {
         let new_ids: Vec<usize> = (0..mesh.elements.len()).filter(|&k| is_new[k]).collect();
         let runs = runs(mesh, &new_ids);
         let is_near = |k: usize| {
@@ -89,26 +97,19 @@ impl Added {
             ports: Vec::new(),
             conductor_elements: Vec::new(),
         };
-        let close = Interaction::among(close, with_image, |i, _| i < new_count);
-        Self {
-            elements: mesh.elements.clone(),
-            places,
-            leading,
-            close,
-            close_ids,
-            new_count,
-            far_ids,
-            runs,
-            with_image,
-        }
+        let close = Interaction::among(close, with_image, known, |i, _| i < new_count);
+        let placed = |e: &Element| e.legendre_map().into_iter().map(|(u, f)| (places[u], f)).collect();
+        let maps = mesh.elements.iter().map(placed).collect();
+        let further = places.len() - leading;
+        let elements = mesh.elements.clone();
+        Self { elements, maps, leading, further, close, close_ids, new_count, far_ids, runs, with_image }
     }
 
     /// Columns at a frequency, and potentials at spots (elements of the mesh).
     #[must_use]
     pub fn columns(&self, earth: &Surroundings, spots: &[Spot]) -> Columns {
-        let further = self.places.iter().filter(|&&p| p >= self.leading).count();
-        let all = self.leading + further;
-        let mut z = Mat::zeros(all, further);
+        let all = self.leading + self.further;
+        let mut z = Mat::zeros(all, self.further);
         let mut potentials = vec![vec![Complex64::ZERO; all]; spots.len()];
         self.close_pairs(earth, spots, &mut z, &mut potentials);
         self.far_pairs(earth, spots, &mut z, &mut potentials);
@@ -119,15 +120,11 @@ impl Added {
         }
     }
 
-    fn map(&self, element: usize) -> UnknownMap {
-        self.elements[element].legendre_map().into_iter().map(|(u, f)| (self.places[u], f)).collect()
-    }
-
     /// New elements among themselves and with those near.
     fn close_pairs(&self, earth: &Surroundings, spots: &[Spot], z: &mut Matrix, potentials: &mut [Vec<Complex64>]) {
         // only the places that occur, so that the matrix stays small
         let mut used: Vec<usize> = Vec::new();
-        let mut maps: Vec<UnknownMap> = self.close_ids.iter().map(|&k| self.map(k)).collect();
+        let mut maps: Vec<UnknownMap> = self.close_ids.iter().map(|&k| self.maps[k].clone()).collect();
         for (unknown, _) in maps.iter_mut().flatten() {
             let local = used.iter().position(|p| p == unknown).unwrap_or_else(|| {
                 used.push(*unknown);
@@ -173,7 +170,7 @@ impl Added {
             for &k in &self.far_ids {
                 let (current, potential) = self.kernels(k, run, earth);
                 let e = &self.elements[k];
-                for (u, factors) in self.map(k) {
+                for &(u, factors) in &self.maps[k] {
                     let charge = slope(&factors);
                     for q in 0..NODES {
                         let a: Complex64 = (0..=MAX_DEGREE).map(|n| current[n][q] * factors[n]).sum();
@@ -225,9 +222,9 @@ impl Added {
         let mut charges = Mat::zeros(NODES, further);
         for ((k, ..), weights) in run.members.iter().zip(&run.weights) {
             let length_m = self.elements[*k].length_m;
-            for (place, factors) in self.map(*k) {
+            for (place, factors) in &self.maps[*k] {
                 let Some(v) = place.checked_sub(self.leading) else { continue };
-                let charge = slope(&factors);
+                let charge = slope(factors);
                 for q in 0..NODES {
                     let current: f64 = (0..=MAX_DEGREE).map(|b| weights[b][q] * factors[b]).sum();
                     let amount: f64 = (0..=MAX_DEGREE).map(|b| weights[b][q] * charge[b]).sum();
@@ -245,6 +242,8 @@ impl Added {
         let mut current = [[Complex64::ZERO; NODES]; 4];
         let mut potential = current;
         let rule = gauss(NODES);
+        let (mut squared, mut re, mut im) =
+            ([1.0; NODES * MOST_POINTS], [0.0; NODES * MOST_POINTS], [0.0; NODES * MOST_POINTS]);
         for family in earth.families() {
             if region_of(e, &run.line) != family.region || family.mirrored && !self.with_image {
                 continue;
@@ -255,25 +254,35 @@ impl Added {
                 Tubes::Offset(c2) => c2,
                 Tubes::Coaxial => e.radius_m.powi(2) + run.line.radius_m.powi(2),
             };
-            let points = gauss(usize::from(far_points(e, clearance(&one, &line))).max(e.degree + 1));
+            let points = gauss(usize::from(far_points(e, clearance(&one, &line))).clamp(e.degree + 1, MOST_POINTS));
             let nodes: [_; NODES] = std::array::from_fn(|q| line.at(rule.nodes[q]));
             let (t, u) = (e.tangent, run.line.tangent);
             let w = family.weight;
             let along = w.horizontal * (t.x * u.x + t.y * u.y) + w.vertical * (t.z * u.z);
-            let (mut squared, mut re, mut im) = ([0.0; NODES], [0.0; NODES], [0.0; NODES]);
-            for (xi, weight) in points.nodes.iter().zip(&points.weights) {
+            let count = points.nodes.len() * NODES;
+            for (xi, row) in points.nodes.iter().zip(squared.chunks_exact_mut(NODES)) {
                 let p = one.at(*xi);
-                for (s, node) in squared.iter_mut().zip(&nodes) {
+                for (s, node) in row.iter_mut().zip(&nodes) {
                     *s = (p - node).norm_squared() + offset_m2;
                 }
-                waves(&squared, family.k.re, -family.k.im, &mut re, &mut im);
+            }
+            waves(&squared[..count], family.k.re, -family.k.im, &mut re[..count], &mut im[..count]);
+            let mut sums = [[[0.0; NODES]; 2]; MAX_DEGREE + 1];
+            for (g, (xi, weight)) in points.nodes.iter().zip(&points.weights).enumerate() {
                 let left = legendre(*xi).map(|x| 0.5 * weight * x);
-                for (a, l) in left.iter().enumerate() {
+                let (re, im) = (&re[g * NODES..][..NODES], &im[g * NODES..][..NODES]);
+                for ([sum_re, sum_im], l) in sums.iter_mut().zip(left) {
                     for q in 0..NODES {
-                        let g = Complex64::new(re[q] * l, im[q] * l);
-                        current[a][q] += along * g;
-                        potential[a][q] += w.potential * g;
+                        sum_re[q] += l * re[q];
+                        sum_im[q] += l * im[q];
                     }
+                }
+            }
+            for a in 0..=MAX_DEGREE {
+                for q in 0..NODES {
+                    let g = Complex64::new(sums[a][0][q], sums[a][1][q]);
+                    current[a][q] += along * g;
+                    potential[a][q] += w.potential * g;
                 }
             }
         }
@@ -287,7 +296,7 @@ impl Added {
         let all = z.nrows();
         for &new in &self.close_ids[..self.new_count] {
             let f = &self.elements[new];
-            let map = self.map(new);
+            let map = &self.maps[new];
             for &k in &self.far_ids {
                 let e = &self.elements[k];
                 // in the order of the full matrix, so that the rule is the same
@@ -295,11 +304,11 @@ impl Added {
                 let blocks = rest::blocks(first, second, soil, region_of(first, second));
                 let area = medium.magnetic() * (e.length_m * f.length_m);
                 let block = combine(&blocks.current, area, &blocks.potential, medium.electric() * 4.0);
-                let other = self.map(k);
+                let other = &self.maps[k];
                 let turned = k >= new;
                 for (v, y) in map.iter().filter(|(v, _)| *v >= self.leading) {
                     let column = applied(&block, y, turned);
-                    for (u, x) in &other {
+                    for (u, x) in other {
                         let value: Complex64 = (0..=MAX_DEGREE).map(|a| column[a] * x[a]).sum();
                         debug_assert!(*u < all);
                         z[(*u, v - self.leading)] += value;
@@ -314,7 +323,7 @@ impl Added {
                             row[*v] += factor * (0..=MAX_DEGREE).map(|a| column[a] * w[a]).sum::<Complex64>();
                         }
                     } else if spot.element == new {
-                        for (u, x) in &other {
+                        for (u, x) in other {
                             let column = applied(&blocks.potential, &slope(x), !turned);
                             row[*u] += factor * (0..=MAX_DEGREE).map(|a| column[a] * w[a]).sum::<Complex64>();
                         }

@@ -3,7 +3,7 @@
 use super::kernel::{PointPair, pair_block};
 use super::line::Line;
 use super::local::{internal_impedance, jacket_elastance};
-use super::pairs::{Nodes, Pairs};
+use super::pairs::{Nodes, Pairs, Statics};
 use super::rest;
 use super::surroundings::{Family, Surroundings};
 use crate::halfspace::Region;
@@ -52,19 +52,27 @@ impl Interaction {
     /// `with_image`: the earth is perfect or soil, so that mirror images occur.
     #[must_use]
     pub fn new(mesh: Mesh, with_image: bool) -> Self {
-        Self::among(mesh, with_image, |_, _| true)
+        Self::among(mesh, with_image, &Statics::default(), |_, _| true)
     }
 
-    /// As [`Interaction::new`], only for some of the pairs i ≤ j of elements.
-    pub(super) fn among(mesh: Mesh, with_image: bool, keep: impl Fn(usize, usize) -> bool) -> Self {
+    /// As [`Interaction::new`], only for some of the pairs i ≤ j of elements, with static moments already known.
+    pub(super) fn among(mesh: Mesh, with_image: bool, known: &Statics, keep: impl Fn(usize, usize) -> bool) -> Self {
         let region = |i: usize, j: usize| region_of(&mesh.elements[i], &mesh.elements[j]);
-        let pairs = |mirrored, wanted| Pairs::of(&mesh, mirrored, |i, j| keep(i, j) && region(i, j) == wanted);
+        let pairs = |mirrored, wanted| Pairs::of(&mesh, mirrored, known, |i, j| keep(i, j) && region(i, j) == wanted);
         let direct = [Region::Above, Region::Below, Region::Across].map(|region| pairs(false, region));
         let image = with_image.then(|| [Region::Above, Region::Below].map(|region| pairs(true, region)));
         let nodes = Nodes::of(&mesh.elements.iter().map(Line::of).collect::<Vec<_>>());
         let image_nodes = with_image.then(|| Nodes::of(&mesh.elements.iter().map(Line::mirrored).collect::<Vec<_>>()));
         let maps = mesh.elements.iter().map(Element::legendre_map).collect();
         Self { mesh, maps, direct, image, nodes, image_nodes }
+    }
+
+    /// Static moments that other meshes with the same elements on one line can use.
+    #[must_use]
+    pub fn statics(&self) -> Statics {
+        let mut out = Statics::default();
+        self.direct.iter().for_each(|pairs| out.keep(&self.mesh, pairs));
+        out
     }
 
     /// The mesh.

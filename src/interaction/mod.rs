@@ -34,5 +34,6 @@ pub use factor::{Factored, SingularMatrix};
 pub use fill::{Interaction, Legendre, Matrix, PotentialMap};
 pub use leading::{Bordered, Leading};
 pub use local::internal_impedance;
+pub use pairs::Statics;
 pub use probe::Spot;
 pub use surroundings::{Extent, Surroundings};

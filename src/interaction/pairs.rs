@@ -5,6 +5,7 @@ use super::line::{Line, Tubes, clearance, tubes};
 use super::near::{Static, moments};
 use super::quadrature::{gauss, legendre};
 use crate::mesh::{Element, Mesh};
+use std::collections::HashMap;
 
 /// A pair (one, two) of elements, `two` possibly as its mirror image.
 #[derive(Debug, Clone)]
@@ -32,7 +33,7 @@ const NEAR_LENGTHS: f64 = 0.8;
 const NEAR_POINTS: u8 = 6;
 
 impl Pairs {
-    pub(crate) fn of(mesh: &Mesh, mirrored: bool, keep: impl Fn(usize, usize) -> bool) -> Self {
+    pub(crate) fn of(mesh: &Mesh, mirrored: bool, known: &Statics, keep: impl Fn(usize, usize) -> bool) -> Self {
         let lines: Vec<Line> = mesh.elements.iter().map(Line::of).collect();
         let others: Vec<Line> =
             if mirrored { mesh.elements.iter().map(Line::mirrored).collect() } else { lines.clone() };
@@ -45,13 +46,41 @@ impl Pairs {
                 }
                 let pair = classify(mesh, (i, &lines[i]), (j, &others[j]), mirrored);
                 let near = pair.1.map(|tubes| {
-                    statics.push(moments(&lines[i], &others[j], tubes));
+                    statics.push(known.get(&lines[i], &others[j], tubes));
                     (statics.len() - 1) as u32
                 });
                 list.push(Pair { near, ..pair.0 });
             }
         }
         Self { list, statics }
+    }
+}
+
+/// Static moments of pairs on one line, which depend only on how the two lie to each other: kept for other meshes.
+#[derive(Debug, Clone, Default)]
+pub struct Statics(HashMap<[i64; 6], Static>);
+
+impl Statics {
+    fn key(one: &Line, two: &Line) -> [i64; 6] {
+        let offset_m = (two.start - one.start).dot(&one.tangent);
+        let along = one.tangent.dot(&two.tangent);
+        [one.length_m, two.length_m, offset_m, along, one.radius_m, two.radius_m].map(|x| (x * 1e10).round() as i64)
+    }
+
+    fn get(&self, one: &Line, two: &Line, tubes: Tubes) -> Static {
+        let known = if tubes == Tubes::Coaxial { self.0.get(&Self::key(one, two)) } else { None };
+        known.copied().unwrap_or_else(|| moments(one, two, tubes))
+    }
+
+    /// Keep those of a mesh's pairs.
+    pub(super) fn keep(&mut self, mesh: &Mesh, pairs: &Pairs) {
+        for pair in &pairs.list {
+            let (e, f) = (&mesh.elements[pair.one], &mesh.elements[pair.two]);
+            let (one, two) = (Line::of(e), Line::of(f));
+            if let Some(index) = pair.near.filter(|_| tubes(&one, &two, shares_node(e, f)) == Tubes::Coaxial) {
+                self.0.insert(Self::key(&one, &two), pairs.statics[index as usize]);
+            }
+        }
     }
 }
 
@@ -124,7 +153,12 @@ impl Nodes {
         let weighted = (0..=LARGEST_RULE)
             .map(|n| {
                 let rule = gauss(n.max(1));
-                let at = |(x, w): (&f64, &f64)| legendre(*x).map(|p| 0.5 * w * p);
+                // n points cannot tell moments of degree n and more: left out rather than wrong
+                let least = |a: usize| if a < n.max(1) { 1.0 } else { 0.0 };
+                let at = |(x, w): (&f64, &f64)| {
+                    let p = legendre(*x);
+                    std::array::from_fn(|a| 0.5 * w * p[a] * least(a))
+                };
                 rule.nodes.iter().zip(&rule.weights).map(at).collect()
             })
             .collect();

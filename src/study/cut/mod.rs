@@ -3,13 +3,14 @@
 //! Takes checked stations (the one written and its variants) and a [`Question`]; gives a [`CutOutcome`]. The steps: `moving` what is
 //! scanned and which end of it moves, `lengths` which lengths can be built, `scan` every length solved, `nested` with what
 //! lengths have in common computed once, `reading` what is kept of a
-//! solution, `judge` windows and picks, `avoid` resonances to stay away from, `trim` how the match moves with length.
+//! solution, `radiation` the power into the far field, `judge` windows and picks, `avoid` resonances to stay away from, `trim` how the match moves with length.
 
 mod avoid;
 mod judge;
 mod lengths;
 mod moving;
 mod nested;
+mod radiation;
 mod reading;
 mod scan;
 mod trim;
@@ -102,13 +103,13 @@ pub fn cut(stations: &[(String, Station)], question: &Question) -> Result<CutOut
     let mut warnings = first.warnings.clone();
     warnings.extend(second.iter().flat_map(|s| s.warnings.clone()));
     let stock = lengths::stock(stations, &first, &question.stock, &mut warnings);
-    let extra: Vec<f64> = stock.iter().map(|s| s.1).chain(trim::neighbours(&first)).collect();
+    let extra: Vec<f64> = stock.iter().map(|s| s.1).collect();
     let scan = Scan::new(stations, &first, second.as_ref(), &extra, question)?;
     let grid = scan.grid(&first.lengths_m, second.as_ref().map(|s| s.lengths_m.as_slice()))?;
     let judged = judge::judge(&scan, &grid, &first, second.as_ref());
     let chosen = judged.picks.first().map_or((first.present_m, None), |p| (p.length_m, p.second_length_m));
     let stock = judge::stock(&scan, &stock, chosen.1)?;
-    let trim = trim::rule(&scan, &first, chosen)?;
+    let trim = trim::rule(&scan, &grid, (&first, second.as_ref()), chosen)?;
     for warning in &scan.nominal().warnings {
         if !warnings.contains(warning) {
             warnings.push(warning.clone());

@@ -5,9 +5,10 @@
 //! own end. Every answer is checked by its residual; where that is not small, or meshes do not nest, the length is solved alone.
 
 use super::CutFailure;
+use super::radiation::Radiation;
 use super::reading::{Reading, Spots};
-use super::scan::{Scan, Variant, finish, singular, solve};
-use crate::interaction::{Added, Bordered, Interaction, Leading, Surroundings};
+use super::scan::{At, Scan, Variant, finish, singular, solve};
+use crate::interaction::{Added, Bordered, Interaction, Leading, Statics};
 use crate::layout::{Earth, Layout};
 use crate::mesh::{Element, Mesh};
 use crate::ports::{PortModel, excitations};
@@ -46,6 +47,8 @@ struct Member {
 /// Lengths that share a factorisation.
 struct Family {
     layout: Layout,
+    shortest: Layout,
+    moving: Vec<usize>,
     interaction: Interaction,
     /// Unknown of the longest for every place.
     order: Vec<usize>,
@@ -79,7 +82,7 @@ pub(super) fn readings(
     groups.sort_by_key(|g| g.first().map_or(0, |p| p.index));
     let mut done: Vec<(usize, Vec<Reading>)> = Vec::new();
     for group in groups {
-        let (family, alone) = Family::of(group, &variant.earth);
+        let (family, alone) = Family::of(scan, group, &variant.earth);
         let rest = alone.par_iter().map(|p| Ok((p.index, p.alone(&variant.earth)?)));
         done.extend(rest.collect::<Result<Vec<_>, CutFailure>>()?);
         if let Some(family) = family {
@@ -97,9 +100,9 @@ fn kind(layout: &Layout, lengths_m: &[f64]) -> Vec<u64> {
 }
 
 impl Placed {
-    fn alone(&self, earths: &[Surroundings]) -> Result<Vec<Reading>, CutFailure> {
+    fn alone(&self, earths: &[At]) -> Result<Vec<Reading>, CutFailure> {
         let interaction = Interaction::new(self.mesh.clone(), self.layout.earth != Earth::None);
-        earths.par_iter().map(|earth| solve(&self.layout, &interaction, earth)).collect()
+        earths.par_iter().map(|at| solve(&self.layout, &interaction, at)).collect()
     }
 }
 
@@ -125,7 +128,7 @@ fn unknown_keys(mesh: &Mesh, ids: &[usize]) -> Vec<UnknownKey> {
 
 impl Family {
     /// The lengths of a group that nest, and the others.
-    fn of(mut group: Vec<Placed>, earths: &[Surroundings]) -> (Option<Self>, Vec<Placed>) {
+    fn of(scan: &Scan, mut group: Vec<Placed>, earths: &[At]) -> (Option<Self>, Vec<Placed>) {
         if group.len() < LEAST_FAMILY || earths.is_empty() {
             return (None, group);
         }
@@ -158,9 +161,12 @@ impl Family {
             order.iter().enumerate().map(|(place, &(level, u))| (&master_keys[u], (level, place))).collect();
         let with_image = group[master].layout.earth != Earth::None;
         let layout = group[master].layout.clone();
+        let shortest = group[0].layout.clone();
+        let moving = scan.moving(&layout);
         let interaction = Interaction::new(group[master].mesh.clone(), with_image);
+        let statics = interaction.statics();
         let border = |(placed, ids): (Placed, Vec<usize>)| {
-            Member::new(placed, &ids, (&levels, &order, &places), with_image).map_err(Box::new)
+            Member::new(placed, &ids, (&levels, &order, &places), (with_image, &statics)).map_err(Box::new)
         };
         let bordered: Vec<Result<Member, Box<Placed>>> =
             group.into_iter().zip(ids.clone()).collect::<Vec<_>>().into_par_iter().map(border).collect();
@@ -172,29 +178,31 @@ impl Family {
             }
         }
         let order = order.iter().map(|o| o.1).collect();
-        (Some(Self { layout, interaction, order, members }), alone)
+        (Some(Self { layout, shortest, moving, interaction, order, members }), alone)
     }
 
-    fn readings(&self, earths: &[Surroundings]) -> Result<Vec<(usize, Vec<Reading>)>, CutFailure> {
+    fn readings(&self, earths: &[At]) -> Result<Vec<(usize, Vec<Reading>)>, CutFailure> {
         let by_frequency =
-            earths.par_iter().map(|earth| self.at(earth)).collect::<Result<Vec<Vec<Reading>>, CutFailure>>()?;
+            earths.par_iter().map(|at| self.at(at)).collect::<Result<Vec<Vec<Reading>>, CutFailure>>()?;
         let of = |m: usize| by_frequency.iter().map(|row| row[m]).collect();
         Ok(self.members.iter().enumerate().map(|(m, member)| (member.placed.index, of(m))).collect())
     }
 
     /// All members at one frequency.
-    fn at(&self, earth: &Surroundings) -> Result<Vec<Reading>, CutFailure> {
+    fn at(&self, at: &At) -> Result<Vec<Reading>, CutFailure> {
+        let earth = &at.earth;
         let mesh = self.interaction.mesh();
         let spots = Spots::of_potential(Spots::of(&self.layout, mesh, earth.frequency_hz()).as_ref());
         let (z, rows) = self.interaction.fill_probed(earth, &spots);
         let n = self.order.len();
         let common = Leading::new(Mat::from_fn(n, n, |i, j| z[(self.order[i], self.order[j])]));
         let rows: Vec<Vec<Complex64>> = rows.iter().map(|row| self.order.iter().map(|&u| row[u]).collect()).collect();
+        let radiation = Radiation::new(&self.layout, &self.shortest, &self.moving, &at.sphere);
         self.members
             .par_iter()
             .map(|member| match &common {
-                Ok(common) => member.solve(common, &rows, earth),
-                Err(_) => member.alone(earth),
+                Ok(common) => member.solve((common, &rows, &radiation), at),
+                Err(_) => member.alone(at),
             })
             .collect()
     }
@@ -231,7 +239,12 @@ type Common<'a> = (&'a HashMap<usize, usize>, &'a [(usize, usize)], &'a HashMap<
 
 impl Member {
     /// A length against the common part; given back where it does not nest.
-    fn new(placed: Placed, ids: &[usize], (levels, order, known): Common, with_image: bool) -> Result<Self, Placed> {
+    fn new(
+        placed: Placed,
+        ids: &[usize],
+        (levels, order, known): Common,
+        (with_image, statics): (bool, &Statics),
+    ) -> Result<Self, Placed> {
         let here: std::collections::HashSet<usize> = ids.iter().copied().collect();
         // the outermost level up to which every element is here
         let missing = levels.iter().filter(|(id, _)| !here.contains(id)).map(|(_, level)| *level).min();
@@ -262,22 +275,22 @@ impl Member {
                 is_new[k] = true;
             }
         }
-        let added = Added::new(&placed.mesh, &is_new, places.clone(), leading, with_image);
+        let added = Added::new(&placed.mesh, &is_new, (&places, leading), with_image, statics);
         Ok(Self { placed, is_new, places, leading, added })
     }
 
-    fn alone(&self, earth: &Surroundings) -> Result<Reading, CutFailure> {
+    fn alone(&self, at: &At) -> Result<Reading, CutFailure> {
         let layout = &self.placed.layout;
-        solve(layout, &Interaction::new(self.placed.mesh.clone(), layout.earth != Earth::None), earth)
+        solve(layout, &Interaction::new(self.placed.mesh.clone(), layout.earth != Earth::None), at)
     }
 
     /// As a leading block of the common factors with its own border.
     fn solve(
         &self,
-        common: &Leading,
-        common_rows: &[Vec<Complex64>],
-        earth: &Surroundings,
+        (common, common_rows, radiation): (&Leading, &[Vec<Complex64>], &Radiation),
+        at: &At,
     ) -> Result<Reading, CutFailure> {
+        let earth = &at.earth;
         let (layout, mesh) = (&self.placed.layout, &self.placed.mesh);
         let spots = Spots::of(layout, mesh, earth.frequency_hz());
         let wanted = Spots::of_potential(spots.as_ref());
@@ -293,7 +306,7 @@ impl Member {
         let system = Bordered { leading: self.leading, columns: &border.columns, corner: &border.corner };
         let (x, residual) = common.solve(system, &right).map_err(|source| singular(earth, source))?;
         if residual > MOST_RESIDUAL {
-            return self.alone(earth);
+            return self.alone(at);
         }
         let currents_a = Mat::from_fn(mesh.unknowns, ports, |u, port| x[(self.places[u], port)]);
         let admittance_s = DMatrix::from_fn(ports, ports, |i, j| {
@@ -310,6 +323,6 @@ impl Member {
                 self.places.iter().map(|&place| at(place)).collect()
             })
             .collect();
-        finish(layout, mesh, earth, (&model, spots, &rows))
+        finish(layout, mesh, at, (&model, spots, &rows, Some(radiation)))
     }
 }

@@ -3,9 +3,10 @@
 use super::lengths::{self, Axis};
 use super::moving::Target;
 use super::nested;
+use super::radiation::{self, Radiation};
 use super::reading::{Reading, Solved, Spots};
 use super::{CutFailure, Method, Question};
-use crate::field::{FarField, Solution};
+use crate::field::{Solution, Sphere};
 use crate::interaction::{Extent, Factored, Interaction, SingularMatrix, Surroundings};
 use crate::layout::{Earth, Layout};
 use crate::mesh::{Anchor, Density, Mesh};
@@ -37,7 +38,21 @@ impl Grid {
 pub(super) struct Variant {
     pub(super) name: String,
     pub(super) station: Station,
-    pub(super) earth: Vec<Surroundings>,
+    pub(super) earth: Vec<At>,
+}
+
+/// One variant at one frequency.
+pub(super) struct At {
+    pub(super) earth: Surroundings,
+    pub(super) sphere: Sphere,
+}
+
+impl At {
+    fn new(frequency_hz: f64, layout: &Layout, extent: &Extent) -> Result<Self, CutFailure> {
+        let at = layout.earth.at(frequency_hz);
+        let earth = Surroundings::new(frequency_hz, at, extent).map_err(Failure::Soil)?;
+        Ok(Self { earth, sphere: Sphere::new(frequency_hz, at, extent) })
+    }
 }
 
 /// Everything all lengths share.
@@ -95,7 +110,7 @@ impl Scan {
                 let layout = Layout::place(station).map_err(|faults| refused(station, faults))?;
                 let earth = frequencies_hz
                     .par_iter()
-                    .map(|&f| Ok(Surroundings::new(f, layout.earth.at(f), extent).map_err(Failure::Soil)?))
+                    .map(|&f| At::new(f, &layout, extent))
                     .collect::<Result<Vec<_>, CutFailure>>()?;
                 Ok(Variant { name: name.clone(), station: station.clone(), earth })
             })
@@ -151,8 +166,12 @@ impl Scan {
 
     /// The mesh of a layout, nested with those of other lengths.
     pub(super) fn mesh(&self, layout: &Layout) -> Mesh {
-        let moving: Vec<usize> = self.targets.iter().flat_map(|t| t.conductors(layout)).collect();
-        Mesh::anchored(layout, self.highest_hz, self.density, &Anchor::new(layout, &moving))
+        Mesh::anchored(layout, self.highest_hz, self.density, &Anchor::new(layout, &self.moving(layout)))
+    }
+
+    /// Conductors whose last points move.
+    pub(super) fn moving(&self, layout: &Layout) -> Vec<usize> {
+        self.targets.iter().flat_map(|t| t.conductors(layout)).collect()
     }
 
     /// Readings `[length][frequency]`, every length on its own.
@@ -162,7 +181,7 @@ impl Scan {
             .map(|lengths_m| {
                 let layout = self.place(variant, lengths_m)?;
                 let interaction = Interaction::new(self.mesh(&layout), layout.earth != Earth::None);
-                variant.earth.par_iter().map(|earth| solve(&layout, &interaction, earth)).collect()
+                variant.earth.par_iter().map(|at| solve(&layout, &interaction, at)).collect()
             })
             .collect()
     }
@@ -175,14 +194,14 @@ impl Scan {
         let nominal = &self.list[0];
         let earths = at_hz
             .par_iter()
-            .map(|&f| Ok(Surroundings::new(f, self.present.earth.at(f), &self.extents[0]).map_err(Failure::Soil)?))
+            .map(|&f| At::new(f, &self.present, &self.extents[0]))
             .collect::<Result<Vec<_>, CutFailure>>()?;
         combinations
             .par_iter()
             .map(|lengths_m| {
                 let layout = self.place(nominal, lengths_m)?;
                 let interaction = Interaction::new(self.mesh(&layout), layout.earth != Earth::None);
-                earths.par_iter().map(|earth| feed_ohm(&layout, &interaction, earth)).collect()
+                earths.par_iter().map(|at| feed_ohm(&layout, &interaction, &at.earth)).collect()
             })
             .collect()
     }
@@ -196,13 +215,14 @@ fn refused(station: &Station, faults: Vec<crate::station::Fault>) -> Refused {
 ///
 /// # Errors
 /// [`CutFailure::Solving`] when the matrix is singular or no power can flow.
-pub(super) fn solve(layout: &Layout, interaction: &Interaction, earth: &Surroundings) -> Result<Reading, CutFailure> {
+pub(super) fn solve(layout: &Layout, interaction: &Interaction, at: &At) -> Result<Reading, CutFailure> {
+    let earth = &at.earth;
     let mesh = interaction.mesh();
     let spots = Spots::of(layout, mesh, earth.frequency_hz());
     let (z, rows) = interaction.fill_probed(earth, &Spots::of_potential(spots.as_ref()));
     let model = Factored::new(z).and_then(|f| PortModel::from_factored(mesh, &f));
     let model = model.map_err(|source| singular(earth, source))?;
-    finish(layout, mesh, earth, (&model, spots, &rows))
+    finish(layout, mesh, at, (&model, spots, &rows, None))
 }
 
 /// The failure of a singular matrix.
@@ -217,15 +237,18 @@ pub(super) fn singular(earth: &Surroundings, source: SingularMatrix) -> CutFailu
 pub(super) fn finish(
     layout: &Layout,
     mesh: &Mesh,
-    earth: &Surroundings,
-    (model, spots, rows): (&PortModel, Option<Spots>, &[Vec<Complex64>]),
+    at: &At,
+    (model, spots, rows, radiation): (&PortModel, Option<Spots>, &[Vec<Complex64>], Option<&Radiation>),
 ) -> Result<Reading, CutFailure> {
+    let earth = &at.earth;
     let parts = parts(layout, earth);
     let port_currents = model.loaded_currents(&parts);
     let unknowns = model.unknowns(&parts, &port_currents);
     let potentials_v = rows.iter().map(|row| row.iter().zip(&unknowns).map(|(r, x)| r * x).sum()).collect();
     let currents = Solution::new(mesh, &unknowns);
-    let radiated_w = FarField::new(mesh, &currents, earth.frequency_hz(), earth.earth()).radiated_w();
+    let radiated_w = radiation
+        .and_then(|r| r.radiated_w(layout, mesh, &currents))
+        .unwrap_or_else(|| radiation::direct(mesh, &currents, &at.sphere));
     let feed_a = port_currents[0];
     Ok(Solved { layout, mesh, earth, feed_a, currents, spots, potentials_v, radiated_w }.reading()?)
 }

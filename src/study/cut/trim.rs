@@ -2,68 +2,110 @@
 
 use super::CutFailure;
 use super::lengths::Axis;
-use super::scan::Scan;
-use crate::layout::BandEdge;
+use super::scan::{Grid, Scan};
 use crate::outcome::cut::TrimOutcome;
 use num_complex::Complex64;
 
-/// Length tried either side of the chosen one, as a share of it.
-const SHARE: f64 = 0.005;
-/// Frequencies tried either side of a band's middle, as a share of it.
-const SPREAD: f64 = 0.03;
+/// A second frequency beside a single one, as a share of it.
+const SPREAD: f64 = 0.02;
 /// A zero of the reactance further away than this share of the frequency says nothing about the band.
 const REACH: f64 = 0.06;
 /// Above this magnitude the susceptance is the straighter curve, below it the reactance (the wave impedance of space, rounded), ohm.
 const HIGH_OHM: f64 = 377.0;
 
-/// Lengths just beyond the range that the rule may look at, m: the soil's tables must cover them.
-pub(super) fn neighbours(axis: &Axis) -> [f64; 2] {
-    [axis.lengths_m[0] * (1.0 - SHARE), axis.anchor_m() * (1.0 + SHARE)]
+/// Reactance (or susceptance) of one frequency at the chosen length and its neighbours in the scan.
+#[derive(Debug, Clone, Copy)]
+struct Column {
+    frequency_hz: f64,
+    feed_ohm: [Complex64; 3],
 }
 
 /// One rule a band (or single frequency) that has its best match near by, for the nominal station at the chosen length.
 ///
-/// With X(f, l) = 0 the reactance at the feed point's zero, df/dl by central difference in the length.
+/// With X(f, l) = 0 where the feed point is real, df/dl = −(∂X/∂l)/(∂X/∂f): ∂X/∂l from the lengths beside the chosen one, ∂X/∂f from the
+/// frequencies of the band (or one more beside a single frequency).
 ///
 /// # Errors
 /// [`CutFailure`] when a solution fails.
 pub(super) fn rule(
     scan: &Scan,
-    first: &Axis,
+    grid: &Grid,
+    (first, second): (&Axis, Option<&Axis>),
     (length_m, second_m): (f64, Option<f64>),
 ) -> Result<Vec<TrimOutcome>, CutFailure> {
-    let combination = |l: f64| std::iter::once(l).chain(second_m).collect::<Vec<f64>>();
-    let fits = |l: &f64| scan.place(&scan.list[0], &combination(*l)).is_ok();
-    let [low, high] = [length_m * (1.0 - SHARE), length_m * (1.0 + SHARE)].map(|l| if fits(&l) { l } else { length_m });
-    if !(fits(&low) && fits(&high)) || high - low < 1e-9 || first.lengths_m.is_empty() {
+    let place = |lengths: &[f64], m: f64| lengths.iter().position(|l| *l == m);
+    let s = second.zip(second_m).map_or(Some(0), |(axis, m)| place(&axis.lengths_m, m));
+    let (Some(l), Some(s)) = (place(&first.lengths_m, length_m), s) else { return Ok(Vec::new()) };
+    let (before, after) = (l.saturating_sub(1), (l + 1).min(grid.lengths - 1));
+    if before == after {
         return Ok(Vec::new());
     }
-    let middles = middles(scan);
-    let at_hz: Vec<f64> = middles.iter().flat_map(|f| [-1.0, 0.0, 1.0].map(|s| f * (1.0 + s * SPREAD))).collect();
-    let feeds = scan.feeds(&[combination(low), combination(length_m), combination(high)], &at_hz)?;
-    let rule = |n: usize| {
-        let zero = |k: usize| zero(middles[n], &feeds[k][3 * n..3 * n + 3]);
-        Some(TrimOutcome { frequency_hz: zero(1)?, hz_per_m: (zero(2)? - zero(0)?) / (high - low) })
-    };
-    Ok((0..middles.len()).filter_map(rule).collect())
+    let span_m = first.lengths_m[after] - first.lengths_m[before];
+    let lengths: Vec<f64> = std::iter::once(length_m).chain(second_m).collect();
+    let mut out = Vec::new();
+    for band in bands(scan) {
+        let mut columns: Vec<Column> = band
+            .iter()
+            .map(|&f| Column {
+                frequency_hz: scan.frequencies_hz[f],
+                feed_ohm: [before, l, after].map(|n| grid.at(0, f, n, s).feed_ohm),
+            })
+            .collect();
+        if let [only] = columns[..] {
+            let beside_hz = only.frequency_hz * (1.0 + SPREAD);
+            let feed = scan.feeds(std::slice::from_ref(&lengths), &[beside_hz])?;
+            columns.push(Column { frequency_hz: beside_hz, feed_ohm: [feed[0][0]; 3] });
+        }
+        out.extend(one(&columns, span_m));
+    }
+    Ok(out)
 }
 
-/// The middle of every band, and every single frequency, Hz.
-fn middles(scan: &Scan) -> Vec<f64> {
+/// Frequencies of every band, and every single frequency.
+fn bands(scan: &Scan) -> Vec<Vec<usize>> {
+    let mut out: Vec<Vec<usize>> = Vec::new();
     let points = &scan.nominal().operation.frequencies;
-    let wanted = points.iter().filter(|p| matches!(p.edge, None | Some(BandEdge::Middle)));
-    wanted.map(|p| p.frequency_hz).collect()
+    for (f, point) in points.iter().enumerate() {
+        match out.last_mut() {
+            Some(band) if point.band.is_some() && points[band[0]].band == point.band => band.push(f),
+            _ => out.push(vec![f]),
+        }
+    }
+    out
 }
 
-/// The frequency near the middle at which the feed point is real, by the parabola through three, Hz.
-fn zero(middle_hz: f64, feeds: &[Complex64]) -> Option<f64> {
-    let high = feeds[1].norm() > HIGH_OHM;
-    let g: Vec<f64> = feeds.iter().map(|z| if high { z.inv().im } else { z.im }).collect();
-    // in units of the spread: g = g1 + slope t + bend t²
-    let (slope, bend) = (0.5 * (g[2] - g[0]), 0.5 * (g[2] + g[0]) - g[1]);
-    let root = (slope * slope - 4.0 * bend * g[1]).sqrt();
-    let t = -2.0 * g[1] / (slope + root.copysign(slope));
-    (t.abs() * SPREAD <= REACH).then_some(middle_hz * (1.0 + t * SPREAD))
+/// The rule from two or three frequencies; the derivative in length comes from the first ones that are not beside.
+fn one(columns: &[Column], span_m: f64) -> Option<TrimOutcome> {
+    let middle = columns.len() / 2 - (columns.len() + 1) % 2;
+    let high = columns[middle].feed_ohm[1].norm() > HIGH_OHM;
+    let value = |z: Complex64| if high { z.inv().im } else { z.im };
+    let at: Vec<f64> = columns.iter().map(|c| c.frequency_hz).collect();
+    let g: Vec<f64> = columns.iter().map(|c| value(c.feed_ohm[1])).collect();
+    let by_length: Vec<f64> = columns.iter().map(|c| (value(c.feed_ohm[2]) - value(c.feed_ohm[0])) / span_m).collect();
+    // from the middle: g = g1 + slope t + bend t²
+    let (slope, bend) = match (&at[..], &g[..]) {
+        ([f0, f1, f2], [g0, g1, g2]) => {
+            let (d0, d1) = ((g1 - g0) / (f1 - f0), (g2 - g1) / (f2 - f1));
+            let bend = (d1 - d0) / (f2 - f0);
+            (d0 + bend * (f1 - f0), bend)
+        }
+        ([f0, f1], [g0, g1]) => ((g1 - g0) / (f1 - f0), 0.0),
+        _ => return None,
+    };
+    let root = (slope * slope - 4.0 * bend * g[middle]).sqrt();
+    let step_hz = -2.0 * g[middle] / (slope + root.copysign(slope));
+    if step_hz.is_nan() || step_hz.abs() > REACH * at[middle] {
+        return None;
+    }
+    let there = slope + 2.0 * bend * step_hz;
+    // the derivative in length at the zero, by a straight line over the band
+    let last = at.len() - 1;
+    let by_length = if last == 2 {
+        by_length[0] + (by_length[2] - by_length[0]) * (at[middle] + step_hz - at[0]) / (at[2] - at[0])
+    } else {
+        by_length[0]
+    };
+    Some(TrimOutcome { frequency_hz: at[middle] + step_hz, hz_per_m: -by_length / there })
 }
 
 #[cfg(test)]
@@ -72,25 +114,24 @@ mod tests {
     use super::*;
 
     #[test]
-    fn the_zero_of_a_resonance_is_found_from_either_side() {
+    fn a_half_wave_moves_by_its_frequency_over_its_length() {
+        let (length, resonance) = (20.0, 7.06e6);
         for (resistance, is_high) in [(60.0, false), (3000.0, true)] {
-            for at in [6.9e6, 7.1e6, 7.3e6] {
-                let z = |f: f64| {
-                    let detuning = 2.0 * (f / at - 1.0);
-                    let one = Complex64::new(1.0, if is_high { -8.0 } else { 8.0 } * detuning);
-                    if is_high {
-                        Complex64::from(resistance) / Complex64::new(1.0, 8.0 * detuning)
-                    } else {
-                        one * resistance
-                    }
-                };
-                let f = 7.1e6;
-                let feeds = [f * (1.0 - SPREAD), f, f * (1.0 + SPREAD)].map(z);
-                let found = zero(f, &feeds).unwrap();
-                assert!((found / at - 1.0).abs() < 1e-6, "{found} for {at}");
-            }
+            let feed = |f: f64, l: f64| {
+                let detuning = 8.0 * (f * l / (resonance * length) - resonance * length / (f * l));
+                let circuit = Complex64::new(1.0, detuning);
+                if is_high { circuit.inv() * resistance } else { circuit * resistance }
+            };
+            let column = |f: f64| Column { frequency_hz: f, feed_ohm: [19.9, 20.0, 20.1].map(|l| feed(f, l)) };
+            let three = one(&[column(7.0e6), column(7.1e6), column(7.2e6)], 0.2).unwrap();
+            assert!((three.frequency_hz / resonance - 1.0).abs() < 1e-5, "{three:?}");
+            assert!((three.hz_per_m * length / resonance + 1.0).abs() < 1e-3, "{three:?}");
+            let beside = Column { frequency_hz: 7.242e6, feed_ohm: [feed(7.242e6, 20.0); 3] };
+            let two = one(&[column(7.1e6), beside], 0.2).unwrap();
+            assert!((two.hz_per_m * length / resonance + 1.0).abs() < 0.05, "{two:?}");
         }
-        let far = [Complex64::new(60.0, -900.0), Complex64::new(60.0, -880.0), Complex64::new(60.0, -860.0)];
-        assert_eq!(zero(7.1e6, &far), None);
+        let far = [Complex64::new(60.0, -900.0); 3];
+        let column = |f: f64| Column { frequency_hz: f, feed_ohm: far };
+        assert!(one(&[column(7.0e6), column(7.1e6), column(7.2e6)], 0.2).is_none());
     }
 }
