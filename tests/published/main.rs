@@ -4,4 +4,13 @@
 
 mod catalogue;
 mod catalogue_soil_models;
+mod coupling;
+mod dipole;
+mod end_fed;
+mod horizontal;
+mod independent;
+mod metal;
 mod network;
+mod small;
+mod trade;
+mod wires;

@@ -1,0 +1,18 @@
+//! Laws the answers must keep whatever the station: nothing here is compared with a number from outside.
+
+#![allow(clippy::unwrap_used)]
+
+mod cases;
+mod convergence;
+mod draw;
+mod earth_limits;
+mod images;
+mod invariance;
+mod kirchhoff;
+mod layering;
+mod parts;
+mod power;
+mod reciprocity;
+mod recutting;
+mod refinement;
+mod solve;
