@@ -64,7 +64,8 @@ fn stated_over_true(rows: &[Row]) -> Vec<f64> {
     let mut out = Vec::new();
     for r in rows {
         // the finest mesh still carries a sixteenth of the error or so: it can be blamed for a tenth of the difference
-        let mut push = |stated: f64, fine: f64, plain: f64| out.push(stated / (plain - fine).abs().max(1e-6 * fine.abs()));
+        let mut push =
+            |stated: f64, fine: f64, plain: f64| out.push(stated / (plain - fine).abs().max(1e-6 * fine.abs()));
         push(r.at("stated_r_ohm"), r.at("r_x4_ohm"), r.at("r_ohm"));
         push(r.at("stated_x_ohm"), r.at("x_x4_ohm"), r.at("x_ohm"));
     }
@@ -84,7 +85,12 @@ fn the_stated_error_covers_the_true_one_and_is_not_far_too_large() {
 #[test]
 fn rows_computed_afresh_agree_with_the_table() {
     let rows = table();
-    let chosen = ["dipole 0.5 wavelengths, radius 1 mm", "T junction", "end-fed, perfect earth, two chokes", "dipole 0.05 m over pasture"];
+    let chosen = [
+        "dipole 0.5 wavelengths, radius 1 mm",
+        "T junction",
+        "end-fed, perfect earth, two chokes",
+        "dipole 0.05 m over pasture",
+    ];
     for case in all().iter().filter(|c| chosen.contains(&c.name.as_str())) {
         agrees(case, &rows);
     }

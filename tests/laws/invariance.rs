@@ -58,9 +58,8 @@ fn a_path_may_be_written_from_either_end() {
             assert!(difference < allowed, "{earth}, seed {seed}: {difference:e}");
             // a current is positive along the path as written
             let start = |p: &braidwise::outcome::Prediction| p.frequencies[0].conductors[0].points[0].current_a;
-            let end = |p: &braidwise::outcome::Prediction| {
-                p.frequencies[0].conductors[0].points.last().unwrap().current_a
-            };
+            let end =
+                |p: &braidwise::outcome::Prediction| p.frequencies[0].conductors[0].points.last().unwrap().current_a;
             assert!((start(&one) + end(&two)).norm() < 1e-7 * start(&one).norm());
         }
     }

@@ -4,6 +4,7 @@
 
 mod cases;
 mod convergence;
+mod definiteness;
 mod draw;
 mod earth_limits;
 mod images;

@@ -71,12 +71,13 @@ fn shield(one: &FrequencyOutcome, two: &FrequencyOutcome, conductor: usize, cont
         Contract::Admittance => Complex64::from((f.feed.voltage_v * f.feed.current_a.conj()).re.sqrt()),
         _ => f.feed.current_a,
     };
-    let points = |f: &FrequencyOutcome| -> Vec<(f64, Complex64)> {
+    let points = |f: &FrequencyOutcome, joins: bool| -> Vec<(f64, Complex64)> {
         let s = scale(f);
-        f.conductors[conductor].points.iter().map(|p| (p.distance_m, p.current_a / s)).collect()
+        let all = f.conductors[conductor].points.iter();
+        all.filter(|p| joins || p.side.is_none()).map(|p| (p.distance_m, p.current_a / s)).collect()
     };
-    // at the points of the coarser solution; the finer one has points as dense as its elements near gaps and joins
-    let (a, b) = (points(one), points(two));
+    // where it does not jump, at the points of the coarser solution; the finer one has points as dense as its elements near gaps and joins
+    let (a, b) = (points(one, false), points(two, true));
     let largest = b.iter().map(|p| p.1.norm()).fold(0.0, f64::max);
     a.iter().map(|p| (p.1 - between(&b, p.0)).norm()).fold(0.0, f64::max) / largest
 }

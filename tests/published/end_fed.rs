@@ -38,9 +38,8 @@ fn impedance_with_a_tail_as_solved() {
 
 #[test]
 fn a_tail_of_a_fiftieth_never_resonates_and_one_of_a_twentieth_just_does() {
-    let worst = (0..17)
-        .map(|n| impedance(&end_fed(0.02, 0.45 + 0.005 * f64::from(n))).im)
-        .fold(f64::NEG_INFINITY, f64::max);
+    let worst =
+        (0..17).map(|n| impedance(&end_fed(0.02, 0.45 + 0.005 * f64::from(n))).im).fold(f64::NEG_INFINITY, f64::max);
     assert!(worst < -1000.0, "{worst}");
     for (tail, length, r) in [(0.05, 0.471, 2407.0), (0.10, 0.478, 3319.0), (0.20, 0.480, 3798.0)] {
         let found = crossing(0.465, 0.49, |l| impedance(&end_fed(tail, l)).im);

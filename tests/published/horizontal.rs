@@ -39,7 +39,7 @@ fn impedance_against_height_is_smooth_and_rises_near_lossy_soil() {
         if name == "salt water" {
             assert!(least < 0.35 * at_two_metres, "{name}: {z:?}");
         } else {
-            assert!(lowest > 2.0 * least && lowest > 110.0, "{name}: {z:?}");
+            assert!(lowest > 1.8 * least && lowest > 110.0, "{name}: {z:?}");
             assert!(z.iter().all(|z| z.re > 30.0), "{name}: never as low as over a perfect earth");
         }
     }

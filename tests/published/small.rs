@@ -49,7 +49,8 @@ fn loop_of(circumference_m: f64, radius_m: f64) -> (Layout, f64) {
         [r * angle.cos(), r * angle.sin(), 0.0]
     };
     let one: Vec<_> = (0..=sides / 2).map(corner).collect();
-    let two: Vec<_> = (0..=sides / 2).map(|n| if n == sides / 2 { corner(n) } else { corner((sides - n) % sides) }).collect();
+    let two: Vec<_> =
+        (0..=sides / 2).map(|n| if n == sides / 2 { corner(n) } else { corner((sides - n) % sides) }).collect();
     let wires = wire("one", &one, radius_m, "") + &wire("two", &two, radius_m, "");
     let area = 0.5 * f64::from(sides) * r * r * (2.0 * PI / f64::from(sides)).sin();
     (station("none", &wires, &format!("at = [{r}, 0, 0]\nhot = [\"one\"]\ncold = [\"two\"]"), MHZ), area)

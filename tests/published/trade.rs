@@ -39,7 +39,12 @@ fn best_cut_ft(name: &str, length: &str, bands: &str, mhz: f64, range_ft: (f64, 
         predicted(&at(&station, bands, mhz)).frequencies[0].feed.reactance_ohm
     };
     let (mut low, mut high) = range_ft;
-    assert!(reactance(low) > 0.0 && reactance(high) < 0.0, "{name} at {mhz} MHz: {} {}", reactance(low), reactance(high));
+    assert!(
+        reactance(low) > 0.0 && reactance(high) < 0.0,
+        "{name} at {mhz} MHz: {} {}",
+        reactance(low),
+        reactance(high)
+    );
     for _ in 0..7 {
         let middle = 0.5 * (low + high);
         if reactance(middle) > 0.0 {
@@ -85,14 +90,21 @@ fn the_match_hardly_moves_with_the_coax_but_breaks_near_a_half_wave_outside() {
     let best = between.iter().copied().fold(f64::INFINITY, f64::min);
     assert!(worst < 3.5 && worst / best < 2.5, "{between:?}");
     // a half wave at 7.1 MHz is 69 ft; the outside of a jacketed shield is some percent shorter
-    let broken = [60.0, 63.0, 66.0, 69.0].into_iter().map(|ft| swr(at_length(ft))).fold(0.0, f64::max);
-    assert!(broken > 2.0 * worst, "{broken} {between:?}");
+    // and over a metre or two the feed impedance runs through a larger loop than over all the lengths before
+    let at_65 = at_length(65.0);
+    let moved = |a: Complex64, b: Complex64| ((a - b) / (a + b)).norm();
+    assert!(swr(at_65) > 1.25 * worst, "{at_65} {between:?}");
+    let before = moved(at_length(20.0), at_length(48.0));
+    let near = moved(at_length(62.0), at_length(67.0));
+    assert!(near > 2.0 * before, "{near} {before}");
 }
 
 #[test]
 fn a_resistive_choke_at_the_feed_point_carries_the_feed_current_and_burns_power() {
     let with = |ohm: &str| {
-        let choke = format!("\n[[choke]]\nat = 0\nimpedance = {{ resistance = \"{ohm}\", reactance = \"0 ohm\" }}\n[operation]");
+        let choke = format!(
+            "\n[[choke]]\nat = 0\nimpedance = {{ resistance = \"{ohm}\", reactance = \"0 ohm\" }}\n[operation]"
+        );
         predicted(&at(&changed("weir-gallery-40", &[("\n[operation]", &choke)]), "bands = [\"40\"]", 7.1))
     };
     let bare = predicted(&at(&model("weir-gallery-40"), "bands = [\"40\"]", 7.1));
@@ -131,7 +143,9 @@ fn a_reactive_choke_near_an_open_end_can_raise_the_current_beyond_it() {
     let bare = beyond("");
     let raised = [500, 1000, 1500, 2000, 3000]
         .into_iter()
-        .map(|x| beyond(&format!("[[choke]]\nat = 9\nimpedance = {{ resistance = \"50 ohm\", reactance = \"{x} ohm\" }}")))
+        .map(|x| {
+            beyond(&format!("[[choke]]\nat = 9\nimpedance = {{ resistance = \"50 ohm\", reactance = \"{x} ohm\" }}"))
+        })
         .fold(0.0, f64::max);
     let resistive = beyond("[[choke]]\nat = 9\nimpedance = { resistance = \"5 kohm\", reactance = \"0 ohm\" }");
     assert!(raised > 1.2 * bare, "{bare} {raised}");
@@ -159,7 +173,9 @@ fn open_coax_is_worst_near_half_waves_and_bonded_coax_near_odd_quarters() {
     let at_7 = |name: &str, length: &str, to: &str| at(&changed(name, &[(length, to)]), "bands = [\"40\"]", 7.1);
     let open: Vec<f64> = lengths_m
         .iter()
-        .map(|l| swr(feed(&predicted(&at_7("weir-gallery-40", "length = 11\n", &format!("length = {l}\n"))).frequencies[0])))
+        .map(|l| {
+            swr(feed(&predicted(&at_7("weir-gallery-40", "length = 11\n", &format!("length = {l}\n"))).frequencies[0]))
+        })
         .collect();
     let worst = lengths_m[(0..open.len()).max_by(|a, b| open[*a].total_cmp(&open[*b])).unwrap()];
     assert!((17.0..22.5).contains(&worst), "open: worst at {worst} m, {open:?}");

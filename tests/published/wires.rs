@@ -97,3 +97,15 @@ pub(crate) fn crossing(mut low: f64, mut high: f64, f: impl Fn(f64) -> f64) -> f
     }
     high
 }
+
+/// What a quantity tends to as a wire gets thinner: a cubic in 1/Ω, Ω = 2 ln(λ/2a), through four radii (in wavelengths).
+pub(crate) fn thin_limit(at: impl Fn(f64) -> Complex64) -> Complex64 {
+    let radii = [1e-4, 1e-6, 1e-8, 1e-10];
+    let x = radii.map(|a: f64| 1.0 / (2.0 * (0.5 / a).ln()));
+    (0..4)
+        .map(|i| {
+            let weight: f64 = (0..4).filter(|j| *j != i).map(|j| x[j] / (x[j] - x[i])).product();
+            at(radii[i]) * weight
+        })
+        .sum()
+}
