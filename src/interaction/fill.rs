@@ -2,9 +2,10 @@
 
 use super::kernel::{PointPair, pair_block};
 use super::line::Line;
-use super::local::{internal_impedance, jacket_elastance};
+use super::local::internal_impedance;
 use super::pairs::{Nodes, Pairs, Statics};
 use super::rest;
+use super::sleeve::{Sleeve, sleeves};
 use super::surroundings::{Family, Surroundings};
 use crate::halfspace::Region;
 use crate::mesh::{Element, MAX_DEGREE, Mesh};
@@ -44,6 +45,8 @@ pub struct Interaction {
     pub(super) image: Option<[Pairs; 2]>,
     pub(super) nodes: Nodes,
     pub(super) image_nodes: Option<Nodes>,
+    /// Jacketed pairs on one line.
+    sleeves: Vec<Sleeve>,
 }
 
 impl Interaction {
@@ -64,7 +67,8 @@ impl Interaction {
         let nodes = Nodes::of(&mesh.elements.iter().map(Line::of).collect::<Vec<_>>());
         let image_nodes = with_image.then(|| Nodes::of(&mesh.elements.iter().map(Line::mirrored).collect::<Vec<_>>()));
         let maps = mesh.elements.iter().map(Element::legendre_map).collect();
-        Self { mesh, maps, direct, image, nodes, image_nodes }
+        let sleeves = sleeves(&mesh).into_iter().filter(|s| keep(s.one, s.two)).collect();
+        Self { mesh, maps, direct, image, nodes, image_nodes, sleeves }
     }
 
     /// Static moments that other meshes with the same elements on one line can use.
@@ -165,6 +169,9 @@ impl Interaction {
                 (true, Some(image), Some(nodes)) => self.walk_family(&image[place], nodes, &family, keep, &mut visit),
                 (true, ..) => debug_assert!(false, "an earth with images needs an interaction prepared with them"),
             }
+        }
+        for sleeve in self.sleeves.iter().filter(|s| keep(s.one, s.two)) {
+            visit(sleeve.one, sleeve.two, &sleeve.blocks(earth.permittivity(self.mesh.elements[sleeve.one].below)));
         }
         let Some(soil) = earth.soil() else { return };
         for (pairs, region) in self.direct.iter().zip([Region::Above, Region::Below, Region::Across]) {
@@ -284,30 +291,15 @@ fn add_block(sum: &mut Block, block: &Block) {
     }
 }
 
-/// Metal loss and jacket of one element.
+/// Metal loss of one element.
 pub(super) fn add_local(e: &Element, map: &UnknownMap, earth: &Surroundings, z: &mut Matrix) {
-    let medium = earth.air();
-    let mut a = Complex64::ZERO;
-    let mut p = Complex64::ZERO;
-    if let Some(sigma) = e.conductivity_s_per_m {
-        a = internal_impedance(e.radius_m, sigma, medium.angular) * e.length_m;
+    let Some(sigma) = e.conductivity_s_per_m else { return };
+    let a = internal_impedance(e.radius_m, sigma, earth.air().angular) * e.length_m;
+    let mut block = ZERO;
+    for (k, row) in block.iter_mut().enumerate() {
+        row[k] = Complex64::from(1.0 / (2.0 * k as f64 + 1.0));
     }
-    if let Some(jacket) = e.jacket {
-        let elastance = jacket_elastance(
-            e.radius_m,
-            e.radius_m + jacket.thickness_m,
-            jacket.permittivity,
-            earth.permittivity(e.below),
-        );
-        p = elastance / Complex64::new(0.0, medium.angular) * (4.0 / e.length_m);
-    }
-    if a != Complex64::ZERO || p != Complex64::ZERO {
-        let mut block = ZERO;
-        for (k, row) in block.iter_mut().enumerate() {
-            row[k] = Complex64::from(1.0 / (2.0 * k as f64 + 1.0));
-        }
-        scatter(map, map, &combine(&block, a, &block, p), false, z);
-    }
+    scatter(map, map, &combine(&block, a, &ZERO, Complex64::ZERO), false, z);
 }
 
 /// Add an element block, given in Legendre coefficients, to the unknowns' matrix.

@@ -54,6 +54,11 @@ pub(crate) enum Tubes {
 /// (the mean of a harmonic function over a small circle across t). On one line this is 1/√(D² + a² + b²) to second
 /// order; side by side it adds nothing once integrated along a long wire. So c² = a²cos²α + b²cos²β with α, β the angles between the
 /// line of sight and the axes, taken at the middles; c² = a² + b² where the two touch.
+///
+/// Near a joint, where one axis lies within the other's tube, that expansion fails: elements shorter than the radius would act on each
+/// other more strongly than on themselves, and the matrix of the potentials would lose its definiteness. There c² goes over to
+/// a² + b², for which 1/√(D² + a² + b²) is positive definite whatever the radii (a mixture of e^{−ta²} e^{−tb²} e^{−tD²}). Side by
+/// side wires keep c² = 0 however close.
 pub(crate) fn tubes(one: &Line, two: &Line, touch: bool) -> Tubes {
     let sum = one.radius_m + two.radius_m;
     let squares = one.radius_m.powi(2) + two.radius_m.powi(2);
@@ -73,7 +78,10 @@ pub(crate) fn tubes(one: &Line, two: &Line, touch: bool) -> Tubes {
     }
     let unit = sight / sight.norm().max(1e-12);
     let (ca, cb) = (unit.dot(&one.tangent), unit.dot(&two.tangent));
-    Tubes::Offset((one.radius_m * ca).powi(2) + (two.radius_m * cb).powi(2))
+    let open = (one.radius_m * ca).powi(2) + (two.radius_m * cb).powi(2);
+    let within = (1.5 - 0.5 * clearance(one, two) / sum).clamp(0.0, 1.0);
+    let across = 1.0 - one.tangent.dot(&two.tangent).powi(4);
+    Tubes::Offset(open + (squares - open) * within * across)
 }
 
 /// Shortest distance between two elements, m.

@@ -1,6 +1,6 @@
-//! What an element does to itself alone: the metal's internal impedance and the jacket's capacitance.
+//! What an element does to itself alone: the metal's internal impedance.
 
-use crate::quantity::{EPSILON_0_F_PER_M, MU_0_H_PER_M};
+use crate::quantity::MU_0_H_PER_M;
 use num_complex::Complex64;
 use std::f64::consts::PI;
 
@@ -22,13 +22,4 @@ pub fn internal_impedance(radius_m: f64, conductivity_s_per_m: f64, angular_per_
         _ => 1.0 + 0.5 / x + 0.375 / (x * x) + 0.375 / (x * x * x),
     };
     gamma / (2.0 * PI * radius_m * conductivity_s_per_m) * ratio
-}
-
-/// Elastance of a jacket per length against its medium, m/F: (1/ε_jacket − 1/ε_medium) ln(b/a) / (2π ε0).
-///
-/// # Source
-/// The field in a thin sleeve is that of the line charge, quasi-static; Richmond & Newman 1976 (from memory) treat the sleeve likewise.
-#[must_use]
-pub(super) fn jacket_elastance(radius_m: f64, outer_m: f64, jacket: f64, medium: Complex64) -> Complex64 {
-    (1.0 / jacket - 1.0 / medium) * ((outer_m / radius_m).ln() / (2.0 * PI * EPSILON_0_F_PER_M))
 }

@@ -2,11 +2,11 @@
 //!
 //! Takes a [`Mesh`] and a frequency; gives a [`Factored`] matrix. Mixed-potential electric-field integral equation, Galerkin,
 //! e^{+jωt}: for currents f, g on the conductors
-//! Z = jωμ0/4π ∬ f·K·g + 1/(jωε0 4π) ∬ f′ K_Φ g′ + ∫ z_i f g (metal) + 1/(jωε0 2π) ∫ (1/ε_jacket − 1/ε_medium) ln(b/a) f′ g′ (jacket).
+//! Z = jωμ0/4π ∬ f·K·g + 1/(jωε0 4π) ∬ f′ K_Φ g′ + ∫ z_i f g (metal) + 1/(jωε0 4π) ∬ (1/ε_jacket − 1/ε_medium) f′ (K_aa − K_ab) g′ (jacket).
 //!
 //! - `quadrature`, `kernel`: Gauss rules and the vectorised wave
 //! - `line`, `near`, `pairs`: what depends only on geometry, kept for every frequency
-//! - `local`: metal and jackets
+//! - `local`, `sleeve`: metal and jackets
 //! - `surroundings`: the earth at one frequency; `rest`: what soil adds beyond images; `loss`: what its near field takes
 //! - `fill`: the matrix at one frequency
 //! - `factor`: its factorisation, checked
@@ -27,6 +27,7 @@ mod pairs;
 mod probe;
 pub mod quadrature;
 mod rest;
+mod sleeve;
 mod surroundings;
 
 pub use added::{Added, Columns};

@@ -202,3 +202,114 @@ fn to_legendre(m: &[f64; 4], s0: f64, length: f64) -> [f64; 4] {
         + beta.powi(3) * m[3];
     [m[0], x1, 0.5 * (3.0 * x2 - m[0]), 0.5 * (5.0 * x3 - 3.0 * x1)]
 }
+
+#[cfg(test)]
+mod tests {
+    use super::super::line::tubes;
+    use super::*;
+    use crate::layout::Point;
+
+    fn line(start: [f64; 3], end: [f64; 3], radius_m: f64) -> Line {
+        let (start, end) = (Point::from(start), Point::from(end));
+        let length_m = (end - start).norm();
+        Line { start, end, tangent: (end - start) / length_m, length_m, radius_m }
+    }
+
+    /// Composite 20-point rule over panels halved towards every given place.
+    fn graded(from: f64, to: f64, towards: &[f64], mut f: impl FnMut(f64, f64)) {
+        let mut cuts = vec![from, to];
+        for &c in towards {
+            let c = c.clamp(from, to);
+            let mut step = to - from;
+            for _ in 0..45 {
+                cuts.extend([c - step, c + step].into_iter().filter(|x| *x > from && *x < to));
+                step *= 0.5;
+            }
+            cuts.push(c);
+        }
+        cuts.sort_by(f64::total_cmp);
+        let rule = gauss(20);
+        for p in cuts.windows(2) {
+            let (m, h) = (0.5 * (p[0] + p[1]), 0.5 * (p[1] - p[0]));
+            if h > 0.0 {
+                for (x, w) in rule.nodes.iter().zip(&rule.weights) {
+                    f(m + h * x, w * h);
+                }
+            }
+        }
+    }
+
+    /// Both moment matrices by brute force, the kernel straight from its definition.
+    fn brute(one: &Line, two: &Line, tubes: Tubes) -> Static {
+        let mut out = Static { inverse: NONE, direct: NONE };
+        let feet = |l: &Line, o: &Line| -> Vec<f64> {
+            [o.start, o.end].iter().map(|p| (p - l.start).dot(&l.tangent)).collect()
+        };
+        graded(0.0, one.length_m, &feet(one, two), |s, w| {
+            let p = one.start + one.tangent * s;
+            let pa = legendre(2.0 * s / one.length_m - 1.0);
+            let foot = (p - two.start).dot(&two.tangent);
+            graded(0.0, two.length_m, &[foot], |u, v| {
+                let d2 = (two.start + two.tangent * u - p).norm_squared();
+                let (inverse, direct) = match tubes {
+                    Tubes::Offset(c2) => (1.0 / (d2 + c2).sqrt(), (d2 + c2).sqrt()),
+                    Tubes::Coaxial => {
+                        let squares = one.radius_m.powi(2) + two.radius_m.powi(2);
+                        (ring_inverse_distance(d2.sqrt(), one.radius_m, two.radius_m), (d2 + squares).sqrt())
+                    }
+                };
+                let pb = legendre(2.0 * u / two.length_m - 1.0);
+                add(&mut out.inverse, &pa, &pb, w * v * inverse);
+                add(&mut out.direct, &pa, &pb, w * v * direct);
+            });
+        });
+        out
+    }
+
+    /// Largest difference over the largest moment.
+    fn apart(a: &Moments, b: &Moments) -> f64 {
+        let flat = |m: &Moments| -> Vec<f64> { m.iter().flatten().copied().collect() };
+        let scale = flat(b).iter().fold(0.0_f64, |m, x| m.max(x.abs()));
+        flat(a).iter().zip(flat(b)).map(|(x, y)| (x - y).abs()).fold(0.0, f64::max) / scale
+    }
+
+    /// Stated bound of the moments of 1/R of near pairs, relative to the pair's largest.
+    const BOUND_INVERSE: f64 = 1e-7;
+    /// The same of R, which enters times k²/2: a few hundredths of the whole on the longest element.
+    const BOUND_DIRECT: f64 = 5e-5;
+
+    #[test]
+    fn moments_of_near_pairs_keep_their_bound() {
+        let a = 0.8e-3;
+        let slanting = [0.0, 0.960_77, 0.277_35];
+        let along = |s: f64| slanting.map(|x| x * s);
+        let pairs = [
+            // the same element, neighbours on a line, a neighbour much longer, a step in radius
+            (line([0.0; 3], [0.0, 0.0, 0.01], a), line([0.0; 3], [0.0, 0.0, 0.01], a)),
+            (line([0.0; 3], [0.0, 0.0, 1.0], a), line([0.0; 3], [0.0, 0.0, 1.0], a)),
+            (line([0.0; 3], [0.0, 0.0, 0.005], a), line([0.0, 0.0, 0.005], [0.0, 0.0, 0.012], a)),
+            (line([0.0; 3], [0.0, 0.0, 0.003], a), line([0.0, 0.0, 0.003], [0.0, 0.0, 1.4], a)),
+            (line([0.0; 3], [0.0, 0.0, 0.02], a), line([0.0, 0.0, 0.02], [0.0, 0.0, 0.1], 4.0 * a)),
+            (line([0.0; 3], [0.0, 0.0, 0.02], a), line([0.0, 0.0, 0.1], [0.0, 0.0, 0.021], a)),
+            // meeting at an angle: elements shorter than the other's radius, a sharp angle, very unlike lengths
+            (line([0.0; 3], along(0.000_71), a), line([0.0; 3], [0.0, 0.0, -0.004_94], 1.75e-3)),
+            (line(along(0.000_71), along(0.0016), a), line([0.0; 3], [0.0, 0.0, -0.004_94], 1.75e-3)),
+            (line(along(0.0016), along(0.0025), a), line([0.0, 0.0, -0.004_94], [0.0, 0.0, -0.0114], 1.75e-3)),
+            (line([0.0; 3], [1.0, 0.0, 0.0], a), line([0.0; 3], [0.7, 0.3, 0.0], a)),
+            (line([0.0; 3], [0.005, 0.0, 0.0], a), line([0.0; 3], [0.0, 1.2, 0.0], a)),
+            // side by side, crossing, end over the middle
+            (line([0.0; 3], [1.0, 0.0, 0.0], a), line([0.2, 0.01, 0.0], [1.1, 0.01, 0.0], a)),
+            (line([0.0; 3], [1.0, 0.0, 0.0], a), line([0.5, -0.4, 0.02], [0.6, 0.5, 0.02], a)),
+            (line([0.0; 3], [1.0, 0.0, 0.0], a), line([0.3, 0.0, 0.03], [0.3, 0.0, 0.9], a)),
+            (line([0.0; 3], [1.0, 0.0, 0.0], a), line([0.3, 0.0, 0.004], [0.35, 0.0, 0.004], a)),
+        ];
+        for (k, (one, two)) in pairs.iter().enumerate() {
+            let touch =
+                [one.start, one.end].iter().any(|p| (p - two.start).norm() < 1e-9 || (p - two.end).norm() < 1e-9);
+            let kind = tubes(one, two, touch);
+            let (got, want) = (moments(one, two, kind), brute(one, two, kind));
+            let (i, d) = (apart(&got.inverse, &want.inverse), apart(&got.direct, &want.direct));
+            assert!(i < BOUND_INVERSE && d < BOUND_DIRECT, "pair {k} {kind:?}: {i:e} {d:e}");
+        }
+    }
+}

@@ -1,6 +1,21 @@
-//! Laws: what must hold whatever the station.
+//! Laws the answers must keep whatever the station: nothing here is compared with a number from outside.
 #![allow(clippy::unwrap_used)]
 
+mod cases;
+mod convergence;
 mod curve;
 mod cut;
+mod definiteness;
+mod draw;
+mod earth_limits;
+mod images;
+mod invariance;
+mod kirchhoff;
+mod layering;
+mod parts;
 mod place;
+mod power;
+mod reciprocity;
+mod recutting;
+mod refinement;
+mod solve;

@@ -4,6 +4,15 @@
 
 mod catalogue;
 mod catalogue_soil_models;
+mod coupling;
+mod dipole;
+mod end_fed;
 mod halfspace;
+mod horizontal;
+mod independent;
+mod metal;
 mod network;
 mod rational;
+mod small;
+mod trade;
+mod wires;
