@@ -127,9 +127,9 @@ impl Interaction {
         let mut add = |row: usize, source: usize, block: &dyn Fn(usize, usize) -> Complex64| {
             for (unknown, factors) in &self.maps[source] {
                 let charge = derive(factors.map(Complex64::from)).map(|x| x * 2.0);
-                for a in 0..=MAX_DEGREE {
-                    let sum: Complex64 = (0..=MAX_DEGREE).map(|b| block(a, b) * charge[b]).sum();
-                    rows[row][*unknown][a] += factor * (2.0 * a as f64 + 1.0) * sum;
+                for (a, to) in rows[row][*unknown].iter_mut().enumerate() {
+                    let sum: Complex64 = charge.iter().enumerate().map(|(b, q)| block(a, b) * q).sum();
+                    *to += factor * (2.0 * a as f64 + 1.0) * sum;
                 }
             }
         };

@@ -70,7 +70,7 @@ fn station(draw: &mut Draw, number: usize) -> String {
          [operation]\npower = \"100 W\"\nfrequencies = [\"{:.3} MHz\"]\n",
         draw.between(3.5, 29.0)
     ));
-    if number % 2 == 0 {
+    if number.is_multiple_of(2) {
         text.push_str("[radio]\nbody = \"none\"\n");
     }
     text
