@@ -58,6 +58,12 @@ impl Sphere {
         Self { k, earth, frequency_hz, elevations, bearings }
     }
 
+    /// Wavenumber in the air, 1/m.
+    #[must_use]
+    pub fn k_per_m(&self) -> f64 {
+        self.k
+    }
+
     /// Power of peak currents times lengths (A m) at nodes, W.
     #[must_use]
     pub fn radiated_w(&self, nodes: &[CurrentNode], moments: &[Complex64]) -> f64 {

@@ -5,7 +5,7 @@
 //! rest of the soil's potentials is integrated pair by pair, as in the full matrix.
 
 use super::fill::{Interaction, Legendre, Matrix, UnknownMap, add_local, combine, region_of};
-use super::kernel::{MOST_POINTS, waves};
+use super::kernel::{LINE_POINTS, LineMoments, MOST_POINTS, line_moments};
 use super::line::{Line, Tubes, clearance, tubes};
 use super::pairs::{Statics, far_points};
 use super::probe::{Spot, slope, value_weights};
@@ -18,7 +18,7 @@ use faer::{Accum, Mat, Par};
 use num_complex::Complex64;
 
 /// Gauss nodes of a run.
-const NODES: usize = 16;
+const NODES: usize = LINE_POINTS;
 /// Elements nearer to a run than this share of its length are paired with its elements one by one. With the nearest singularity at
 /// x = 1 + 2 · 0.3 the interpolation error falls as (x + √(x² − 1))^−n = 2.85^−16, 5·10⁻⁸.
 const NEAR_LENGTHS: f64 = 0.3;
@@ -26,7 +26,6 @@ const NEAR_LENGTHS: f64 = 0.3;
 /// New elements of a mesh, and how they see the rest of it.
 #[derive(Debug, Clone)]
 pub struct Added {
-    elements: Vec<Element>,
     /// How the unknowns, by their places (the leading ones first, then the further ones), enter every element's current.
     maps: Vec<UnknownMap>,
     leading: usize,
@@ -98,21 +97,24 @@ impl Added {
             conductor_elements: Vec::new(),
         };
         let close = Interaction::among(close, with_image, known, |i, _| i < new_count);
-        let placed = |e: &Element| e.legendre_map().into_iter().map(|(u, f)| (places[u], f)).collect();
+        let placed = |e: &Element| {
+            let mut map = e.legendre_map();
+            map.iter_mut().for_each(|(unknown, _)| *unknown = places[*unknown]);
+            map
+        };
         let maps = mesh.elements.iter().map(placed).collect();
         let further = places.len() - leading;
-        let elements = mesh.elements.clone();
-        Self { elements, maps, leading, further, close, close_ids, new_count, far_ids, runs, with_image }
+        Self { maps, leading, further, close, close_ids, new_count, far_ids, runs, with_image }
     }
 
-    /// Columns at a frequency, and potentials at spots (elements of the mesh).
+    /// Columns at a frequency, and potentials at spots (elements of the mesh, the same as in [`Added::new`]).
     #[must_use]
-    pub fn columns(&self, earth: &Surroundings, spots: &[Spot]) -> Columns {
+    pub fn columns(&self, mesh: &Mesh, earth: &Surroundings, spots: &[Spot]) -> Columns {
         let all = self.leading + self.further;
         let mut z = Mat::zeros(all, self.further);
         let mut potentials = vec![vec![Complex64::ZERO; all]; spots.len()];
         self.close_pairs(earth, spots, &mut z, &mut potentials);
-        self.far_pairs(earth, spots, &mut z, &mut potentials);
+        self.far_pairs(&mesh.elements, earth, spots, &mut z, &mut potentials);
         Columns {
             columns: z.get(0..self.leading, ..).to_owned(),
             corner: z.get(self.leading..all, ..).to_owned(),
@@ -160,7 +162,14 @@ impl Added {
     }
 
     /// New elements with all others.
-    fn far_pairs(&self, earth: &Surroundings, spots: &[Spot], z: &mut Matrix, potentials: &mut [Vec<Complex64>]) {
+    fn far_pairs(
+        &self,
+        elements: &[Element],
+        earth: &Surroundings,
+        spots: &[Spot],
+        z: &mut Matrix,
+        potentials: &mut [Vec<Complex64>],
+    ) {
         let medium = earth.air();
         let further = z.ncols();
         for run in &self.runs {
@@ -168,8 +177,8 @@ impl Added {
             let mut seen: Matrix = Mat::zeros(self.leading, 2 * NODES);
             let mut entry_rows: Vec<(usize, [Complex64; NODES])> = Vec::new();
             for &k in &self.far_ids {
-                let (current, potential) = self.kernels(k, run, earth);
-                let e = &self.elements[k];
+                let (current, potential) = self.kernels(&elements[k], run, earth);
+                let e = &elements[k];
                 for &(u, factors) in &self.maps[k] {
                     let charge = slope(&factors);
                     for q in 0..NODES {
@@ -180,13 +189,14 @@ impl Added {
                     }
                 }
                 for (n, spot) in spots.iter().enumerate().filter(|(_, s)| s.element == k) {
-                    let w = value_weights(spot.xi);
+                    let points = far_points(e, clearance(&Line::of(e), &Line::of(&run.line)));
+                    let w = known_moments(value_weights(spot.xi), points);
                     let at = |q: usize| (0..=MAX_DEGREE).map(|a| potential[a][q] * w[a]).sum::<Complex64>();
                     entry_rows.push((n, std::array::from_fn(at)));
                 }
             }
             let (magnetic, electric) = (medium.magnetic(), medium.electric() * 4.0);
-            let (mut laid, charge) = self.laid(run, further);
+            let (mut laid, charge) = self.laid(elements, run, further);
             for v in 0..further {
                 for q in 0..NODES {
                     laid[(q, v)] *= magnetic;
@@ -204,7 +214,8 @@ impl Added {
             }
             for (n, spot) in spots.iter().enumerate() {
                 let Some(m) = run.members.iter().position(|m| m.0 == spot.element) else { continue };
-                let w = value_weights(spot.xi);
+                let points = far_points(&elements[spot.element], NEAR_LENGTHS * run.line.length_m);
+                let w = known_moments(value_weights(spot.xi), points);
                 let at = |q: usize| (0..=MAX_DEGREE).map(|b| run.weights[m][b][q] * w[b]).sum::<f64>();
                 let weights: [f64; NODES] = std::array::from_fn(at);
                 for u in 0..self.leading {
@@ -213,15 +224,15 @@ impl Added {
                 }
             }
         }
-        self.soil_pairs(earth, spots, z, potentials);
+        self.soil_pairs(elements, (earth, spots), z, potentials);
     }
 
     /// How the further unknowns lie on the nodes of a run: currents (times length; the charges' half left empty), and charges.
-    fn laid(&self, run: &Run, further: usize) -> (Matrix, Matrix) {
+    fn laid(&self, elements: &[Element], run: &Run, further: usize) -> (Matrix, Matrix) {
         let mut laid = Mat::zeros(2 * NODES, further);
         let mut charges = Mat::zeros(NODES, further);
         for ((k, ..), weights) in run.members.iter().zip(&run.weights) {
-            let length_m = self.elements[*k].length_m;
+            let length_m = elements[*k].length_m;
             for (place, factors) in &self.maps[*k] {
                 let Some(v) = place.checked_sub(self.leading) else { continue };
                 let charge = slope(factors);
@@ -237,13 +248,15 @@ impl Added {
     }
 
     /// Means over an element of P_a times the kernels of the closed-form families, at the nodes of a run.
-    fn kernels(&self, k: usize, run: &Run, earth: &Surroundings) -> ([[Complex64; NODES]; 4], [[Complex64; NODES]; 4]) {
-        let e = &self.elements[k];
+    fn kernels(
+        &self,
+        e: &Element,
+        run: &Run,
+        earth: &Surroundings,
+    ) -> ([[Complex64; NODES]; 4], [[Complex64; NODES]; 4]) {
         let mut current = [[Complex64::ZERO; NODES]; 4];
         let mut potential = current;
         let rule = gauss(NODES);
-        let (mut squared, mut re, mut im) =
-            ([1.0; NODES * MOST_POINTS], [0.0; NODES * MOST_POINTS], [0.0; NODES * MOST_POINTS]);
         for family in earth.families() {
             if region_of(e, &run.line) != family.region || family.mirrored && !self.with_image {
                 continue;
@@ -259,25 +272,15 @@ impl Added {
             let (t, u) = (e.tangent, run.line.tangent);
             let w = family.weight;
             let along = w.horizontal * (t.x * u.x + t.y * u.y) + w.vertical * (t.z * u.z);
-            let count = points.nodes.len() * NODES;
-            for (xi, row) in points.nodes.iter().zip(squared.chunks_exact_mut(NODES)) {
-                let p = one.at(*xi);
-                for (s, node) in row.iter_mut().zip(&nodes) {
-                    *s = (p - node).norm_squared() + offset_m2;
-                }
+            let places = std::array::from_fn(|axis| std::array::from_fn(|q| nodes[q][axis]));
+            let (mut at, mut left) = ([[0.0; 3]; MOST_POINTS], [[0.0; 4]; MOST_POINTS]);
+            let count = points.nodes.len();
+            for (n, (xi, weight)) in points.nodes.iter().zip(&points.weights).enumerate() {
+                at[n] = one.at(*xi).into();
+                left[n] = legendre(*xi).map(|x| 0.5 * weight * x);
             }
-            waves(&squared[..count], family.k.re, -family.k.im, &mut re[..count], &mut im[..count]);
-            let mut sums = [[[0.0; NODES]; 2]; MAX_DEGREE + 1];
-            for (g, (xi, weight)) in points.nodes.iter().zip(&points.weights).enumerate() {
-                let left = legendre(*xi).map(|x| 0.5 * weight * x);
-                let (re, im) = (&re[g * NODES..][..NODES], &im[g * NODES..][..NODES]);
-                for ([sum_re, sum_im], l) in sums.iter_mut().zip(left) {
-                    for q in 0..NODES {
-                        sum_re[q] += l * re[q];
-                        sum_im[q] += l * im[q];
-                    }
-                }
-            }
+            let k = (family.k.re, -family.k.im);
+            let sums: LineMoments = line_moments((&at[..count], &left[..count]), &places, offset_m2, k);
             for a in 0..=MAX_DEGREE {
                 for q in 0..NODES {
                     let g = Complex64::new(sums[a][0][q], sums[a][1][q]);
@@ -290,15 +293,21 @@ impl Added {
     }
 
     /// The rest of the soil's potentials between new elements and those far from them.
-    fn soil_pairs(&self, earth: &Surroundings, spots: &[Spot], z: &mut Matrix, potentials: &mut [Vec<Complex64>]) {
+    fn soil_pairs(
+        &self,
+        elements: &[Element],
+        (earth, spots): (&Surroundings, &[Spot]),
+        z: &mut Matrix,
+        potentials: &mut [Vec<Complex64>],
+    ) {
         let Some(soil) = earth.soil() else { return };
         let medium = earth.air();
         let all = z.nrows();
         for &new in &self.close_ids[..self.new_count] {
-            let f = &self.elements[new];
+            let f = &elements[new];
             let map = &self.maps[new];
             for &k in &self.far_ids {
-                let e = &self.elements[k];
+                let e = &elements[k];
                 // in the order of the full matrix, so that the rule is the same
                 let (first, second) = if k < new { (e, f) } else { (f, e) };
                 let blocks = rest::blocks(first, second, soil, region_of(first, second));
@@ -332,6 +341,12 @@ impl Added {
             }
         }
     }
+}
+
+/// Weights without the moments that a rule of so few points cannot tell, as in the full matrix.
+fn known_moments(mut weights: [f64; MAX_DEGREE + 1], points: u8) -> [f64; MAX_DEGREE + 1] {
+    weights.iter_mut().skip(usize::from(points)).for_each(|w| *w = 0.0);
+    weights
 }
 
 /// A block applied to coefficients of its second element, or of its first where turned.

@@ -64,8 +64,14 @@ impl Interaction {
         let pairs = |mirrored, wanted| Pairs::of(&mesh, mirrored, known, |i, j| keep(i, j) && region(i, j) == wanted);
         let direct = [Region::Above, Region::Below, Region::Across].map(|region| pairs(false, region));
         let image = with_image.then(|| [Region::Above, Region::Below].map(|region| pairs(true, region)));
-        let nodes = Nodes::of(&mesh.elements.iter().map(Line::of).collect::<Vec<_>>());
-        let image_nodes = with_image.then(|| Nodes::of(&mesh.elements.iter().map(Line::mirrored).collect::<Vec<_>>()));
+        let (mut on_lines, mut on_images) = (vec![0; mesh.elements.len()], vec![0; mesh.elements.len()]);
+        let mut as_second = vec![0; mesh.elements.len()];
+        direct.iter().for_each(|pairs| pairs.note_rules(&mut on_lines, &mut as_second));
+        on_lines.iter_mut().zip(&as_second).for_each(|(one, two)| *one |= two);
+        image.iter().flatten().for_each(|pairs| pairs.note_rules(&mut on_lines, &mut on_images));
+        let nodes = Nodes::of(&mesh.elements.iter().map(Line::of).collect::<Vec<_>>(), &on_lines);
+        let image_nodes =
+            with_image.then(|| Nodes::of(&mesh.elements.iter().map(Line::mirrored).collect::<Vec<_>>(), &on_images));
         let maps = mesh.elements.iter().map(Element::legendre_map).collect();
         let sleeves = sleeves(&mesh).into_iter().filter(|s| keep(s.one, s.two)).collect();
         Self { mesh, maps, direct, image, nodes, image_nodes, sleeves }

@@ -81,22 +81,63 @@ pub(super) fn pair_block(pair: &PointPair, k_per_m: f64, alpha_per_m: f64) -> Sp
     pair_loop::<false>(pair, k_per_m, alpha_per_m)
 }
 
-/// e^{−j(k − jα)R}/R for many squared distances; all slices of one length.
-pub(super) fn waves(squared_m2: &[f64], k_per_m: f64, alpha_per_m: f64, re: &mut [f64], im: &mut [f64]) {
+/// Places on a line at which an element's field is wanted.
+pub(super) const LINE_POINTS: usize = 16;
+
+/// Real and imaginary parts of moments at [`LINE_POINTS`] places.
+pub(super) type LineMoments = [[[f64; LINE_POINTS]; 2]; 4];
+
+/// Σ_q left_a e^{−j(k − jα)R}/R at places u, v, w for points x, y, z of an element with their weights, 1/m.
+pub(super) fn line_moments(
+    points: (&[[f64; 3]], &[[f64; 4]]),
+    places: &[[f64; LINE_POINTS]; 3],
+    offset_m2: f64,
+    (k_per_m, alpha_per_m): (f64, f64),
+) -> LineMoments {
     #[cfg(target_arch = "x86_64")]
     {
         if std::is_x86_feature_detected!("avx2") && std::is_x86_feature_detected!("fma") {
             // SAFETY: the processor has AVX2 and FMA, checked on the line above.
-            return unsafe { waves_avx2(squared_m2, k_per_m, alpha_per_m, re, im) };
+            return unsafe { line_avx2(points, places, offset_m2, (k_per_m, alpha_per_m)) };
         }
     }
-    wave::<false>(squared_m2, k_per_m, alpha_per_m, re, im);
+    line_loop::<false>(points, places, offset_m2, (k_per_m, alpha_per_m))
 }
 
 #[cfg(target_arch = "x86_64")]
 #[target_feature(enable = "avx2,fma")]
-fn waves_avx2(squared_m2: &[f64], k: f64, alpha: f64, re: &mut [f64], im: &mut [f64]) {
-    wave::<true>(squared_m2, k, alpha, re, im);
+fn line_avx2(
+    points: (&[[f64; 3]], &[[f64; 4]]),
+    places: &[[f64; LINE_POINTS]; 3],
+    offset_m2: f64,
+    k: (f64, f64),
+) -> LineMoments {
+    line_loop::<true>(points, places, offset_m2, k)
+}
+
+#[inline(always)]
+fn line_loop<const FMA: bool>(
+    (points, left): (&[[f64; 3]], &[[f64; 4]]),
+    [u, v, w]: &[[f64; LINE_POINTS]; 3],
+    offset_m2: f64,
+    (k, alpha): (f64, f64),
+) -> LineMoments {
+    let mut out = [[[0.0; LINE_POINTS]; 2]; 4];
+    let (mut squared, mut re, mut im) = ([1.0; LINE_POINTS], [0.0; LINE_POINTS], [0.0; LINE_POINTS]);
+    for (p, weights) in points.iter().zip(left) {
+        for q in 0..LINE_POINTS {
+            let (dx, dy, dz) = (p[0] - u[q], p[1] - v[q], p[2] - w[q]);
+            squared[q] = dx * dx + dy * dy + dz * dz + offset_m2;
+        }
+        wave::<FMA>(&squared, k, alpha, &mut re, &mut im);
+        for ([sum_re, sum_im], l) in out.iter_mut().zip(weights) {
+            for q in 0..LINE_POINTS {
+                sum_re[q] = mul_add::<FMA>(re[q], *l, sum_re[q]);
+                sum_im[q] = mul_add::<FMA>(im[q], *l, sum_im[q]);
+            }
+        }
+    }
+    out
 }
 
 #[cfg(target_arch = "x86_64")]
@@ -193,9 +234,9 @@ fn mul_add<const FMA: bool>(a: f64, b: f64, c: f64) -> f64 {
 #[inline(always)]
 fn sin_cos<const FMA: bool>(x: f64) -> (f64, f64) {
     // π/2 in three parts of 33, 33 and 53 bits
-    const P1: f64 = 1.570_796_326_734_125_614_17;
-    const P2: f64 = 6.077_100_506_303_965_976_60e-11;
-    const P3: f64 = 2.022_266_248_795_950_631_54e-21;
+    const P1: f64 = 1.570_796_326_734_125_6;
+    const P2: f64 = 6.077_100_506_303_966e-11;
+    const P3: f64 = 2.022_266_248_795_950_6e-21;
     const ROUND: f64 = 6_755_399_441_055_744.0; // 1.5·2⁵²: adding it rounds to an integer
     let shifted = mul_add::<FMA>(x, std::f64::consts::FRAC_2_PI, ROUND);
     let quadrant = shifted.to_bits();

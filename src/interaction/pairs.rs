@@ -33,6 +33,14 @@ const NEAR_LENGTHS: f64 = 0.8;
 const NEAR_POINTS: u8 = 6;
 
 impl Pairs {
+    /// Note which rules occur on the elements: as the first of a pair, and as the second.
+    pub(super) fn note_rules(&self, first: &mut [u16], second: &mut [u16]) {
+        for pair in &self.list {
+            first[pair.one] |= 1 << pair.points.0;
+            second[pair.two] |= 1 << pair.points.1;
+        }
+    }
+
     pub(crate) fn of(mesh: &Mesh, mirrored: bool, known: &Statics, keep: impl Fn(usize, usize) -> bool) -> Self {
         let lines: Vec<Line> = mesh.elements.iter().map(Line::of).collect();
         let others: Vec<Line> =
@@ -138,12 +146,17 @@ pub(crate) struct Nodes {
 const LARGEST_RULE: usize = MOST_POINTS;
 
 impl Nodes {
-    pub(crate) fn of(lines: &[Line]) -> Self {
+    /// Points on every element for the rules that occur (one bit for each number of points).
+    pub(crate) fn of(lines: &[Line], used: &[u16]) -> Self {
         let at = lines
             .iter()
-            .map(|line| {
+            .zip(used)
+            .map(|(line, used)| {
                 (0..=LARGEST_RULE)
                     .map(|n| {
+                        if used & (1 << n) == 0 {
+                            return std::array::from_fn(|_| Vec::new());
+                        }
                         let rule = gauss(n.max(1));
                         std::array::from_fn(|axis| rule.nodes.iter().map(|x| line.at(*x)[axis]).collect())
                     })

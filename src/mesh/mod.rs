@@ -89,16 +89,21 @@ impl Element {
     /// The same map the other way round: how each unknown enters c_0..c_degree, as (unknown, factors).
     #[must_use]
     pub fn legendre_map(&self) -> Vec<(usize, [f64; MAX_DEGREE + 1])> {
-        let mut out = Vec::with_capacity(self.degree + 2);
-        out.extend(self.start_current.iter().map(|&(k, f)| (k, [0.5 * f, -0.5 * f, 0.0, 0.0])));
-        out.extend(self.end_current.iter().map(|&(k, f)| (k, [0.5 * f, 0.5 * f, 0.0, 0.0])));
+        let mut out = Vec::with_capacity(self.start_current.len() + self.end_current.len() + self.degree - 1);
+        self.each_unknown(|unknown, factors| out.push((unknown, factors)));
+        out
+    }
+
+    /// Hand every unknown of the element and its factors in c_0..c_degree to a function.
+    pub fn each_unknown(&self, mut take: impl FnMut(usize, [f64; MAX_DEGREE + 1])) {
+        self.start_current.iter().for_each(|&(k, f)| take(k, [0.5 * f, -0.5 * f, 0.0, 0.0]));
+        self.end_current.iter().for_each(|&(k, f)| take(k, [0.5 * f, 0.5 * f, 0.0, 0.0]));
         for q in 2..=self.degree {
             let mut c = [0.0; MAX_DEGREE + 1];
             c[q] = 1.0;
             c[q - 2] = -1.0;
-            out.push((self.first_inner + q - 2, c));
+            take(self.first_inner + q - 2, c);
         }
-        out
     }
 }
 

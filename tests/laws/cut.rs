@@ -59,8 +59,6 @@ fn difference(a: &CutOutcome, b: &CutOutcome) -> f64 {
     for (x, y) in numbers(a).iter().zip(&numbers(b)) {
         assert_eq!(x.len(), y.len());
         let scale = x.iter().fold(1e-12_f64, |m, v| m.max(v.abs()));
-        let d = x.iter().zip(y).map(|(p, q)| (p - q).abs() / scale).fold(0.0, f64::max);
-        eprint!(" {d:.1e}");
         worst = x.iter().zip(y).fold(worst, |w, (p, q)| w.max((p - q).abs() / scale));
     }
     worst
@@ -124,7 +122,7 @@ fn the_shared_scan_equals_every_length_alone() {
         let alone = scan(&text, &question);
         assert!(shared.lengths_m.len() == 8, "{text}");
         let off = difference(&shared, &alone);
-        eprintln!("station {n}: {off:.2e}");
+        assert!(off < 1e-6, "station {n}: {off:.2e}\n{text}");
         // another mesh must show
         if n == 0 {
             question.density = Density { factor: 1.3 };
@@ -193,8 +191,7 @@ fn results_against_length_are_smooth() {
             PortModel::solve(&interaction, &earth).unwrap().admittance_s[(0, 0)].norm()
         })
         .collect();
-    eprintln!("third differences: {:.1e} {:.1e}, own meshes {:.1e}", third(&feed), third(&current), third(&own_mesh));
-    assert!(third(&feed) < 1e-3 && third(&current) < 1e-3);
+    assert!(third(&feed) < 1e-4 && third(&current) < 1e-4, "{:.1e} {:.1e}", third(&feed), third(&current));
     assert!(third(&own_mesh) > 2.0 * third(&feed), "a mesh of its own for every length must be rougher");
 }
 
@@ -237,27 +234,28 @@ fn the_best_cut_of_an_end_fed_half_wave_is_where_practice_has_it() {
     }
 }
 
-/// Common practice: an open shield is worst near half-wave multiples of its outside, a bonded one near odd quarter waves.
+/// Common practice: an open shield is worst near half-wave multiples of its outside, a bonded one near odd quarter waves; with the
+/// coax as the only return the match hardly moves between 10 and 50 ft of open coax.
 #[test]
 fn open_coax_is_worst_near_half_waves_and_bonded_coax_near_odd_quarters() {
     let open = model("weir-gallery-40").replace("bands = [\"40\"]", "frequencies = [\"7.1 MHz\"]");
-    let wave = 299.792_458 / 7.1;
-    let peaks = |text: &str, quantity: &str| -> Vec<f64> {
-        let found = scan(text, &question("coax", steps(4.0, 60.0, 0.5)));
-        found.lengths_to_avoid.iter().filter(|a| a.quantity == quantity).map(|a| a.length_m).collect()
+    let low = open.replace("8.6]", "1.0]").replace(", 9]", ", 1.4]");
+    let bonded = format!("{low}\n[[rod]]\nat = \"far\"\nlength = 1.5\ndiameter = \"14 mm\"\n");
+    let quarter = 299.792_458 / 7.1 / 4.0;
+    let found = |text: &str| scan(text, &question("coax", steps(4.0, 64.0, 0.5)));
+    let peaks = |found: &CutOutcome, quantity: &str| -> Vec<f64> {
+        found.lengths_to_avoid.iter().filter(|a| a.quantity == quantity).map(|a| a.length_m / quarter).collect()
     };
-    let worst = peaks(&open, "swr");
-    eprintln!("open: {worst:?}, half wave {:.2} m", wave / 2.0);
-    assert!(!worst.is_empty());
-    for n in [1.0, 2.0] {
-        assert!(worst.iter().any(|l| (l / (n * wave / 2.0) - 1.0).abs() < 0.08), "no worst length near {n} half waves");
-    }
-    let bonded = format!("{open}\n[[rod]]\nat = \"far\"\nlength = 1.5\ndiameter = \"14 mm\"\n")
-        .replace("8.6]", "1.0]")
-        .replace(", 9]", ", 1.4]");
-    let open_low = open.replace("8.6]", "1.0]").replace(", 9]", ", 1.4]");
-    let (bonded, open_low) = (peaks(&bonded, "swr"), peaks(&open_low, "swr"));
-    eprintln!("bonded: {bonded:?}, low and open {open_low:?}, quarter wave {:.2} m", wave / 4.0);
-    assert!(bonded.iter().any(|l| (l / (0.75 * wave) - 1.0).abs() < 0.12));
-    assert!(!bonded.iter().any(|l| (l / (0.5 * wave) - 1.0).abs() < 0.12));
+    let near = |peaks: &[f64], quarters: &[f64]| {
+        peaks.len() == quarters.len() && peaks.iter().zip(quarters).all(|(p, q)| (p / q - 1.0).abs() < 0.08)
+    };
+    let high = found(&open);
+    let swr = peaks(&high, "swr");
+    assert!((swr[0] / 2.0 - 1.0).abs() < 0.08, "the match breaks at the half wave: {swr:?}");
+    assert!(near(&peaks(&high, "end_voltage_v"), &[2.0, 4.0, 6.0]), "{:?}", peaks(&high, "end_voltage_v"));
+    let steady: Vec<f64> = (0..21).map(|n| *high.swr.get(0, 0, n, 0).unwrap()).collect();
+    assert!(steady.iter().all(|s| (1.6..1.9).contains(s)), "4 to 14 m: {steady:?}");
+    let earthed = peaks(&found(&bonded), "end_voltage_v");
+    assert!(near(&earthed, &[1.0, 3.0, 5.0]), "{earthed:?}");
+    assert!(!near(&earthed, &[2.0, 4.0, 6.0]));
 }

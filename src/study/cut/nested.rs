@@ -32,8 +32,8 @@ struct Placed {
 
 /// An element by where it lies, so that it is recognised in the mesh of another length.
 type ElementKey = (usize, usize, [i64; 8]);
-/// An unknown by the elements it lives on and how.
-type UnknownKey = Vec<(usize, [i8; 4])>;
+/// An unknown by the elements it lives on and how, mixed into one number.
+type UnknownKey = u64;
 
 /// A length as a leading block and a border.
 struct Member {
@@ -112,18 +112,28 @@ fn element_key(e: &Element) -> ElementKey {
     (e.conductor, e.degree, at.map(fine))
 }
 
-/// For every unknown of a mesh the elements it lives on.
-fn unknown_keys(mesh: &Mesh, ids: &[usize]) -> Vec<UnknownKey> {
-    let mut out = vec![UnknownKey::new(); mesh.unknowns];
+/// For every unknown of a mesh: its key, and its level (`None` where it lives on an element that has none).
+fn unknown_keys(mesh: &Mesh, ids: &[usize], levels: &HashMap<usize, usize>) -> Vec<(UnknownKey, Option<usize>)> {
+    let mut out = vec![(0_u64, Some(0)); mesh.unknowns];
     for (element, id) in mesh.elements.iter().zip(ids) {
-        for (unknown, factors) in element.legendre_map() {
-            out[unknown].push((*id, factors.map(|f| (4.0 * f) as i8)));
-        }
-    }
-    for key in &mut out {
-        key.sort_unstable();
+        let level = levels.get(id).copied();
+        element.each_unknown(|unknown, factors| {
+            let how = factors.iter().fold(0_u64, |code, f| code * 16 + (4.0 * f + 8.0) as u64);
+            let (key, highest) = &mut out[unknown];
+            // a sum, so that the order of the elements does not matter
+            *key = key.wrapping_add(mixed((*id as u64) << 20 | how));
+            *highest = highest.zip(level).map(|(a, b)| a.max(b));
+        });
     }
     out
+}
+
+/// A number spread over 64 bits (the finaliser of SplitMix64; Steele, Lea and Flood, OOPSLA 2014, from memory).
+fn mixed(x: u64) -> u64 {
+    let x = x.wrapping_add(0x9e37_79b9_7f4a_7c15);
+    let x = (x ^ (x >> 30)).wrapping_mul(0xbf58_476d_1ce4_e5b9);
+    let x = (x ^ (x >> 27)).wrapping_mul(0x94d0_49bb_1331_11eb);
+    x ^ (x >> 31)
 }
 
 impl Family {
@@ -150,15 +160,12 @@ impl Family {
         }
         let master = group.len() - 1;
         let levels = levels(&group[master].mesh, &ids[master], &count, group.len());
-        let master_keys = unknown_keys(&group[master].mesh, &ids[master]);
-        let level_of = |key: &UnknownKey| {
-            key.iter().map(|(id, _)| levels.get(id).copied()).max_by_key(|l| l.unwrap_or(usize::MAX)).flatten()
-        };
+        let master_keys = unknown_keys(&group[master].mesh, &ids[master], &levels);
         let mut order: Vec<(usize, usize)> =
-            master_keys.iter().enumerate().filter_map(|(u, key)| Some((level_of(key)?, u))).collect();
+            master_keys.iter().enumerate().filter_map(|(u, (_, level))| Some(((*level)?, u))).collect();
         order.sort_unstable();
-        let places: HashMap<&UnknownKey, (usize, usize)> =
-            order.iter().enumerate().map(|(place, &(level, u))| (&master_keys[u], (level, place))).collect();
+        let places: HashMap<UnknownKey, (usize, usize)> =
+            order.iter().enumerate().map(|(place, &(level, u))| (master_keys[u].0, (level, place))).collect();
         let with_image = group[master].layout.earth != Earth::None;
         let layout = group[master].layout.clone();
         let shortest = group[0].layout.clone();
@@ -235,7 +242,7 @@ fn levels(mesh: &Mesh, ids: &[usize], count: &[usize], members: usize) -> HashMa
 }
 
 /// Levels of elements, places of the longest's unknowns in order with their levels, and the places by unknown.
-type Common<'a> = (&'a HashMap<usize, usize>, &'a [(usize, usize)], &'a HashMap<&'a UnknownKey, (usize, usize)>);
+type Common<'a> = (&'a HashMap<usize, usize>, &'a [(usize, usize)], &'a HashMap<UnknownKey, (usize, usize)>);
 
 impl Member {
     /// A length against the common part; given back where it does not nest.
@@ -251,11 +258,11 @@ impl Member {
         let below = missing.unwrap_or(usize::MAX);
         let mut is_new: Vec<bool> = ids.iter().map(|id| levels.get(id).is_none_or(|level| *level >= below)).collect();
         let leading = order.partition_point(|(level, _)| *level < below);
-        let keys = unknown_keys(&placed.mesh, ids);
+        let keys = unknown_keys(&placed.mesh, ids, levels);
         let mut places = vec![usize::MAX; keys.len()];
         let mut found = 0;
         let mut further = leading;
-        for (unknown, key) in keys.iter().enumerate() {
+        for (unknown, (key, _)) in keys.iter().enumerate() {
             match known.get(key) {
                 Some((level, place)) if *level < below => {
                     places[unknown] = *place;
@@ -271,9 +278,7 @@ impl Member {
             return Err(placed);
         }
         for (k, element) in placed.mesh.elements.iter().enumerate() {
-            if element.legendre_map().iter().any(|(u, _)| places[*u] >= leading) {
-                is_new[k] = true;
-            }
+            element.each_unknown(|u, _| is_new[k] |= places[u] >= leading);
         }
         let added = Added::new(&placed.mesh, &is_new, (&places, leading), with_image, statics);
         Ok(Self { placed, is_new, places, leading, added })
@@ -294,7 +299,7 @@ impl Member {
         let (layout, mesh) = (&self.placed.layout, &self.placed.mesh);
         let spots = Spots::of(layout, mesh, earth.frequency_hz());
         let wanted = Spots::of_potential(spots.as_ref());
-        let border = self.added.columns(earth, &wanted);
+        let border = self.added.columns(mesh, earth, &wanted);
         let excite = excitations(mesh);
         let ports = excite.ncols();
         let mut right = Mat::zeros(mesh.unknowns, ports);

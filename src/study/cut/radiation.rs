@@ -1,7 +1,7 @@
 //! Radiated power of many lengths from one quadratic form: the lines their conductors lie on, and how a current is laid on them.
 
 use crate::field::{CurrentNode, Solution, Sphere};
-use crate::interaction::quadrature::{gauss, legendre};
+use crate::interaction::quadrature::{Rule, gauss, legendre};
 use crate::layout::{Layout, Point};
 use crate::mesh::{Element, Mesh};
 use faer::Mat;
@@ -9,8 +9,10 @@ use num_complex::Complex64;
 
 /// A mesh's points are on a line when they are this close to it, m.
 const ON_LINE_M: f64 = 1e-6;
-/// Gauss points on an element.
-const POINTS: usize = 5;
+/// Gauss points on an element, and on one shorter than `SHORT` of the wavelength's radian.
+const POINTS: [usize; 2] = [5, 2];
+/// Such an element is a point with a slope, 1/24 SHORT⁴ off.
+const SHORT: f64 = 0.03;
 
 /// Gauss nodes on a stretch of one conductor.
 #[derive(Debug, Clone)]
@@ -46,6 +48,7 @@ pub(super) struct Radiation {
     pieces: Vec<Vec<Piece>>,
     carried: Vec<Carried>,
     form: Mat<Complex64>,
+    k_per_m: f64,
 }
 
 impl Radiation {
@@ -80,7 +83,7 @@ impl Radiation {
             let stride = (nodes.len() - before) / places;
             carried.push(Carried { conductor: index, points, from, direction, range_m, places, pieces: first, stride });
         }
-        Self { pieces, carried, form: sphere.form(&nodes) }
+        Self { pieces, carried, form: sphere.form(&nodes), k_per_m: sphere.k_per_m() }
     }
 
     /// Power of a solution, W; `None` where the mesh leaves the lines.
@@ -96,13 +99,21 @@ impl Radiation {
             for k in range.clone() {
                 let (e, current) = (&mesh.elements[k], &solution.currents[k]);
                 match &place {
-                    None => lay_element(e, current, &self.pieces[c], Point::zeros(), |q, m| moments[q] += m)?,
+                    None => lay_element(e, current, (&self.pieces[c], self.k_per_m), Point::zeros(), |q, m| {
+                        moments[q] += m
+                    })?,
                     Some((carried, (shift, weights))) => {
-                        lay_element(e, current, &carried.pieces, *shift - carried.first_shift(), |q, m| {
-                            for (p, w) in weights.iter().enumerate() {
-                                moments[q + p * carried.stride] += m * w;
-                            }
-                        })?;
+                        lay_element(
+                            e,
+                            current,
+                            (&carried.pieces, self.k_per_m),
+                            *shift - carried.first_shift(),
+                            |q, m| {
+                                for (p, w) in weights.iter().enumerate() {
+                                    moments[q + p * carried.stride] += m * w;
+                                }
+                            },
+                        )?;
                     }
                 }
             }
@@ -163,15 +174,19 @@ fn lay(points: &[Point], shift: Point, sphere: &Sphere, nodes: &mut Vec<CurrentN
     out
 }
 
+fn rule(e: &Element, k_per_m: f64) -> &'static Rule {
+    gauss(POINTS[usize::from(k_per_m * e.length_m < SHORT)])
+}
+
 /// Current times length of an element laid on the nodes of the pieces it lies on.
 fn lay_element(
     e: &Element,
     current: &[Complex64; 4],
-    pieces: &[Piece],
+    (pieces, k_per_m): (&[Piece], f64),
     shift: Point,
     mut add: impl FnMut(usize, Complex64),
 ) -> Option<()> {
-    let rule = gauss(POINTS);
+    let rule = rule(e, k_per_m);
     for (xi, w) in rule.nodes.iter().zip(&rule.weights) {
         let along_m = e.from_m + 0.5 * (1.0 + xi) * e.length_m;
         let piece = pieces.iter().find(|p| along_m <= p.to_m + 1e-9).or(pieces.last())?;
@@ -219,10 +234,10 @@ fn lagrange(nodes: usize, x: f64) -> Vec<f64> {
 
 /// Power of a solution point by point, W.
 pub(super) fn direct(mesh: &Mesh, solution: &Solution, sphere: &Sphere) -> f64 {
-    let rule = gauss(POINTS);
     let mut nodes = Vec::new();
     let mut moments = Vec::new();
     for (e, current) in mesh.elements.iter().zip(&solution.currents) {
+        let rule = rule(e, sphere.k_per_m());
         for (xi, w) in rule.nodes.iter().zip(&rule.weights) {
             let i: Complex64 = current.iter().zip(legendre(*xi)).map(|(c, p)| c * p).sum();
             nodes.push(CurrentNode { position: e.at(*xi), tangent: e.tangent });
