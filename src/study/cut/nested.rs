@@ -173,7 +173,7 @@ impl Family {
         let interaction = Interaction::new(group[master].mesh.clone(), with_image);
         let statics = interaction.statics();
         let border = |(placed, ids): (Placed, Vec<usize>)| {
-            Member::new(placed, &ids, (&levels, &order, &places), (with_image, &statics)).map_err(Box::new)
+            Member::new(placed, &ids, (&levels, &order, &places), (with_image, &statics))
         };
         let bordered: Vec<Result<Member, Box<Placed>>> =
             group.into_iter().zip(ids.clone()).collect::<Vec<_>>().into_par_iter().map(border).collect();
@@ -251,7 +251,7 @@ impl Member {
         ids: &[usize],
         (levels, order, known): Common,
         (with_image, statics): (bool, &Statics),
-    ) -> Result<Self, Placed> {
+    ) -> Result<Self, Box<Placed>> {
         let here: std::collections::HashSet<usize> = ids.iter().copied().collect();
         // the outermost level up to which every element is here
         let missing = levels.iter().filter(|(id, _)| !here.contains(id)).map(|(_, level)| *level).min();
@@ -275,7 +275,7 @@ impl Member {
             }
         }
         if found != leading || leading == 0 {
-            return Err(placed);
+            return Err(Box::new(placed));
         }
         for (k, element) in placed.mesh.elements.iter().enumerate() {
             element.each_unknown(|u, _| is_new[k] |= places[u] >= leading);
