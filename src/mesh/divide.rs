@@ -28,11 +28,11 @@ const LONGEST_WAVELENGTHS: f64 = 0.14;
 /// Elements longer than this in wavelengths carry degree 3, shorter ones degree 2.
 const CUBIC_WAVELENGTHS: f64 = 0.05;
 /// Element size at a free end, in radii.
-const END_RADII: f64 = 6.0;
+const END_RADII: f64 = 4.0;
 /// Element size at a bend or junction, in radii.
-const JOINT_RADII: f64 = 6.0;
+const JOINT_RADII: f64 = 4.0;
 /// Growth rate of the size with distance from a feature.
-pub(super) const GROWTH: f64 = 1.1;
+pub(super) const GROWTH: f64 = 1.4;
 /// A bend below this angle (radians) is no feature.
 const BEND_RADIANS: f64 = 0.05;
 

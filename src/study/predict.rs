@@ -21,7 +21,7 @@ use std::sync::Arc;
 /// Second mesh for the error estimate, as a share of the default density.
 pub(super) const SECOND_MESH: f64 = 0.5;
 /// The stated error over the difference of the two meshes, from the convergence table: covers the true one nine times in ten.
-const ERROR_OVER_DIFFERENCE: f64 = 2.0;
+const ERROR_OVER_DIFFERENCE: f64 = 1.5;
 /// Least share of the whole difference that either part is charged with: one of the two may vanish by chance.
 const LEAST_SHARE: f64 = 0.2;
 
