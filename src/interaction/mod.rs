@@ -27,7 +27,7 @@ pub mod quadrature;
 mod rest;
 mod surroundings;
 
-pub use added::{Added, Columns};
+pub use added::{Added, Columns, Seen};
 pub use factor::{Factored, SingularMatrix};
 pub use fill::{Interaction, Legendre, Matrix};
 pub use leading::{Bordered, Leading};
