@@ -51,6 +51,14 @@ pub struct Columns {
     pub potentials: Vec<Vec<Complex64>>,
 }
 
+/// How far elements are seen at the nodes of a run: vector potential (its component along it), then scalar potential, of every leading
+/// unknown; and the scalar potential between the run and spots on far elements.
+#[derive(Debug, Clone)]
+pub struct Seen {
+    matrix: Matrix,
+    probes: Vec<(usize, [Complex64; NODES])>,
+}
+
 /// New elements on one straight line.
 #[derive(Debug, Clone)]
 struct Run {
@@ -68,16 +76,18 @@ impl Added {
     /// - `is_new`: for every element
     /// - `places`: for every unknown; those from `leading` on are the further ones, which live on new elements only
     /// - `known`: static moments of a mesh with like elements
+    /// - `reach_m`: for a run of a conductor that begins at a distance, m, how far along the conductor its line is drawn on (or less
+    ///   than it is long)
     #[must_use]
     pub fn new(
         mesh: &Mesh,
         is_new: &[bool],
         (places, leading): (&[usize], usize),
-        with_image: bool,
-        known: &Statics,
+        (with_image, known): (bool, &Statics),
+        reach_m: impl Fn(usize, f64) -> f64,
     ) -> Self {
         let new_ids: Vec<usize> = (0..mesh.elements.len()).filter(|&k| is_new[k]).collect();
-        let runs = runs(mesh, &new_ids);
+        let runs = runs(mesh, &new_ids, reach_m);
         let is_near = |k: usize| {
             let e = Line::of(&mesh.elements[k]);
             runs.iter().any(|run| {
@@ -107,14 +117,15 @@ impl Added {
         Self { maps, leading, further, close, close_ids, new_count, far_ids, runs, with_image }
     }
 
-    /// Columns at a frequency, and potentials at spots (elements of the mesh, the same as in [`Added::new`]).
+    /// Columns at a frequency, and potentials at spots (elements of the mesh, the same as in [`Added::new`]),
+    /// from what is [`Added::seen`] on each run.
     #[must_use]
-    pub fn columns(&self, mesh: &Mesh, earth: &Surroundings, spots: &[Spot]) -> Columns {
+    pub fn columns(&self, mesh: &Mesh, earth: &Surroundings, spots: &[Spot], seen: &[&Seen]) -> Columns {
         let all = self.leading + self.further;
         let mut z = Mat::zeros(all, self.further);
         let mut potentials = vec![vec![Complex64::ZERO; all]; spots.len()];
         self.close_pairs(earth, spots, &mut z, &mut potentials);
-        self.far_pairs(&mesh.elements, earth, spots, &mut z, &mut potentials);
+        self.far_pairs(&mesh.elements, (earth, seen), spots, &mut z, &mut potentials);
         Columns {
             columns: z.get(0..self.leading, ..).to_owned(),
             corner: z.get(self.leading..all, ..).to_owned(),
@@ -161,40 +172,67 @@ impl Added {
         }
     }
 
-    /// New elements with all others.
+    /// How the elements far from a run are seen on it.
+    ///
+    /// # Inputs
+    /// - `run`: below [`Added::runs`]
+    #[must_use]
+    pub fn seen(&self, mesh: &Mesh, run: usize, earth: &Surroundings, spots: &[Spot]) -> Seen {
+        let run = &self.runs[run];
+        let mut seen: Matrix = Mat::zeros(self.leading, 2 * NODES);
+        let mut probes: Vec<(usize, [Complex64; NODES])> = Vec::new();
+        for &k in &self.far_ids {
+            let e = &mesh.elements[k];
+            let (current, potential) = self.kernels(e, run, earth);
+            for &(u, factors) in &self.maps[k] {
+                let charge = slope(&factors);
+                for q in 0..NODES {
+                    let a: Complex64 = (0..=MAX_DEGREE).map(|n| current[n][q] * factors[n]).sum();
+                    let p: Complex64 = (0..=MAX_DEGREE).map(|n| potential[n][q] * charge[n]).sum();
+                    seen[(u, q)] += a * e.length_m;
+                    seen[(u, NODES + q)] += p;
+                }
+            }
+            for (n, spot) in spots.iter().enumerate().filter(|(_, s)| s.element == k) {
+                let w = value_weights(spot.xi);
+                let at = |q: usize| (0..=MAX_DEGREE).map(|a| potential[a][q] * w[a]).sum::<Complex64>();
+                probes.push((n, std::array::from_fn(at)));
+            }
+        }
+        Seen { matrix: seen, probes }
+    }
+
+    /// Number of straight runs.
+    #[must_use]
+    pub fn runs(&self) -> usize {
+        self.runs.len()
+    }
+
+    /// What decides how a run is seen, as numbers: equal for two lengths that can share a [`Seen`].
+    #[must_use]
+    pub fn run_key(&self, mesh: &Mesh, run: usize) -> Vec<i64> {
+        let fine = |x: f64| (x * 1e7).round() as i64;
+        let line = &self.runs[run].line;
+        let ends = line.start.iter().chain(&line.end).map(|x| fine(*x));
+        let far = self.far_ids.iter().flat_map(|&k| {
+            let e = &mesh.elements[k];
+            [e.conductor as i64, fine(e.from_m), fine(e.to_m)]
+        });
+        std::iter::once(self.leading as i64).chain(ends).chain(far).collect()
+    }
+
+    /// New elements with all others, from what is seen on each run.
     fn far_pairs(
         &self,
         elements: &[Element],
-        earth: &Surroundings,
+        (earth, seen): (&Surroundings, &[&Seen]),
         spots: &[Spot],
         z: &mut Matrix,
         potentials: &mut [Vec<Complex64>],
     ) {
         let medium = earth.air();
         let further = z.ncols();
-        for run in &self.runs {
-            // columns: vector potential at the nodes, then scalar potential
-            let mut seen: Matrix = Mat::zeros(self.leading, 2 * NODES);
-            let mut entry_rows: Vec<(usize, [Complex64; NODES])> = Vec::new();
-            for &k in &self.far_ids {
-                let (current, potential) = self.kernels(&elements[k], run, earth);
-                let e = &elements[k];
-                for &(u, factors) in &self.maps[k] {
-                    let charge = slope(&factors);
-                    for q in 0..NODES {
-                        let a: Complex64 = (0..=MAX_DEGREE).map(|n| current[n][q] * factors[n]).sum();
-                        let p: Complex64 = (0..=MAX_DEGREE).map(|n| potential[n][q] * charge[n]).sum();
-                        seen[(u, q)] += a * e.length_m;
-                        seen[(u, NODES + q)] += p;
-                    }
-                }
-                for (n, spot) in spots.iter().enumerate().filter(|(_, s)| s.element == k) {
-                    let points = far_points(e, clearance(&Line::of(e), &Line::of(&run.line)));
-                    let w = known_moments(value_weights(spot.xi), points);
-                    let at = |q: usize| (0..=MAX_DEGREE).map(|a| potential[a][q] * w[a]).sum::<Complex64>();
-                    entry_rows.push((n, std::array::from_fn(at)));
-                }
-            }
+        for (run, Seen { matrix: seen, probes }) in self.runs.iter().zip(seen) {
             let (magnetic, electric) = (medium.magnetic(), medium.electric() * 4.0);
             let (mut laid, charge) = self.laid(elements, run, further);
             for v in 0..further {
@@ -206,7 +244,7 @@ impl Added {
             let top = z.get_mut(0..self.leading, ..);
             matmul(top, Accum::Add, seen.as_ref(), laid.as_ref(), Complex64::ONE, Par::Seq);
             let factor = -2.0 * medium.electric();
-            for (n, row) in entry_rows {
+            for &(n, row) in probes {
                 for v in 0..further {
                     let sum: Complex64 = (0..NODES).map(|q| row[q] * charge[(q, v)]).sum();
                     potentials[n][self.leading + v] += factor * sum;
@@ -214,8 +252,7 @@ impl Added {
             }
             for (n, spot) in spots.iter().enumerate() {
                 let Some(m) = run.members.iter().position(|m| m.0 == spot.element) else { continue };
-                let points = far_points(&elements[spot.element], NEAR_LENGTHS * run.line.length_m);
-                let w = known_moments(value_weights(spot.xi), points);
+                let w = value_weights(spot.xi);
                 let at = |q: usize| (0..=MAX_DEGREE).map(|b| run.weights[m][b][q] * w[b]).sum::<f64>();
                 let weights: [f64; NODES] = std::array::from_fn(at);
                 for u in 0..self.leading {
@@ -343,19 +380,13 @@ impl Added {
     }
 }
 
-/// Weights without the moments that a rule of so few points cannot tell, as in the full matrix.
-fn known_moments(mut weights: [f64; MAX_DEGREE + 1], points: u8) -> [f64; MAX_DEGREE + 1] {
-    weights.iter_mut().skip(usize::from(points)).for_each(|w| *w = 0.0);
-    weights
-}
-
 /// A block applied to coefficients of its second element, or of its first where turned.
 fn applied(block: &super::fill::Block, y: &[f64; MAX_DEGREE + 1], turned: bool) -> Legendre {
     std::array::from_fn(|a| (0..=MAX_DEGREE).map(|b| if turned { block[b][a] } else { block[a][b] } * y[b]).sum())
 }
 
 /// New elements gathered into straight runs.
-fn runs(mesh: &Mesh, new_ids: &[usize]) -> Vec<Run> {
+fn runs(mesh: &Mesh, new_ids: &[usize], reach_m: impl Fn(usize, f64) -> f64) -> Vec<Run> {
     let mut groups: Vec<Vec<usize>> = Vec::new();
     for &k in new_ids {
         let follows = |last: &usize| {
@@ -370,16 +401,22 @@ fn runs(mesh: &Mesh, new_ids: &[usize]) -> Vec<Run> {
             _ => groups.push(vec![k]),
         }
     }
-    groups.iter().filter_map(|group| run(mesh, group)).collect()
+    groups.iter().filter_map(|group| run(mesh, group, &reach_m)).collect()
 }
 
-fn run(mesh: &Mesh, group: &[usize]) -> Option<Run> {
+fn run(mesh: &Mesh, group: &[usize], reach_m: impl Fn(usize, f64) -> f64) -> Option<Run> {
     let (first, last) = (&mesh.elements[*group.first()?], &mesh.elements[*group.last()?]);
     let mut line = first.clone();
     line.end = last.end;
     line.to_m = last.to_m;
     line.length_m = (last.end - first.start).norm();
     line.tangent = (last.end - first.start) / line.length_m;
+    let wanted_m = reach_m(first.conductor, first.from_m) - first.from_m;
+    if wanted_m > line.length_m {
+        line.end = line.start + line.tangent * wanted_m;
+        line.to_m = line.from_m + wanted_m;
+        line.length_m = wanted_m;
+    }
     let mut members = Vec::new();
     let mut weights = Vec::new();
     for &k in group {

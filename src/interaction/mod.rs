@@ -30,7 +30,7 @@ mod rest;
 mod sleeve;
 mod surroundings;
 
-pub use added::{Added, Columns};
+pub use added::{Added, Columns, Seen};
 pub use factor::{Factored, SingularMatrix};
 pub use fill::{Interaction, Legendre, Matrix, PotentialMap};
 pub use leading::{Bordered, Leading};

@@ -126,7 +126,7 @@ pub(super) fn far_points(e: &Element, gap: f64) -> u8 {
     let ratio = gap / e.length_m;
     let least = e.degree as u8 + 1;
     match ratio {
-        r if r > 60.0 => 2,
+        r if r > 60.0 => 3,
         r if r > 4.0 => least,
         r if r > 1.5 => least.max(4) + 1,
         _ => least.max(4) + 2,

@@ -13,6 +13,7 @@ mod independent;
 mod metal;
 mod network;
 mod rational;
+mod rods;
 mod small;
 mod trade;
 mod wires;

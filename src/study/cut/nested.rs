@@ -8,7 +8,7 @@ use super::CutFailure;
 use super::radiation::Radiation;
 use super::reading::{Reading, Spots};
 use super::scan::{At, Scan, Variant, finish, singular, solve};
-use crate::interaction::{Added, Bordered, Interaction, Leading, Statics};
+use crate::interaction::{Added, Bordered, Interaction, Leading, Seen};
 use crate::layout::{Earth, Layout};
 use crate::mesh::{Element, Mesh};
 use crate::ports::{PortModel, excitations};
@@ -35,13 +35,55 @@ type ElementKey = (usize, usize, [i64; 8]);
 /// An unknown by the elements it lives on and how, mixed into one number.
 type UnknownKey = u64;
 
-/// A length as a leading block and a border.
-struct Member {
+/// A length split into what it shares and its border.
+struct Border {
     placed: Placed,
     is_new: Vec<bool>,
     places: Vec<usize>,
     leading: usize,
+    /// The longest one's element that is the same, for every element.
+    twins: Vec<Option<usize>>,
+}
+
+/// A length as a leading block and a border.
+struct Member {
+    border: Border,
     added: Added,
+    /// What decides how each run is seen.
+    keys: Vec<Vec<i64>>,
+}
+
+/// How far out the longest length with the same leading block reaches on each scanned conductor, so that all draw the same run.
+struct Reach(HashMap<(usize, usize, i64), f64>);
+
+impl Reach {
+    fn key(leading: usize, conductor: usize, from_m: f64) -> (usize, usize, i64) {
+        (leading, conductor, (from_m * 1e7).round() as i64)
+    }
+
+    fn of(borders: &[Border], moving: &[usize]) -> Self {
+        let mut out = HashMap::new();
+        for border in borders {
+            let mesh = &border.placed.mesh;
+            for &conductor in moving {
+                let mut range = mesh.conductor_elements[conductor].clone();
+                let Some(last) = range.clone().next_back() else { continue };
+                // the run that ends at the moving end begins with the first new element on its leg
+                let on_leg = |k: &usize| {
+                    border.is_new[*k] && mesh.elements[*k].tangent.dot(&mesh.elements[last].tangent) > 1.0 - 1e-12
+                };
+                let Some(first) = range.find(on_leg) else { continue };
+                let key = Self::key(border.leading, conductor, mesh.elements[first].from_m);
+                let to_m: &mut f64 = out.entry(key).or_insert(0.0);
+                *to_m = to_m.max(mesh.elements[last].to_m);
+            }
+        }
+        Self(out)
+    }
+
+    fn to_m(&self, leading: usize, conductor: usize, from_m: f64) -> f64 {
+        self.0.get(&Self::key(leading, conductor, from_m)).copied().unwrap_or(0.0)
+    }
 }
 
 /// Lengths that share a factorisation.
@@ -172,18 +214,32 @@ impl Family {
         let moving = scan.moving(&layout);
         let interaction = Interaction::new(group[master].mesh.clone(), with_image);
         let statics = interaction.statics();
-        let border = |(placed, ids): (Placed, Vec<usize>)| {
-            Member::new(placed, &ids, (&levels, &order, &places), (with_image, &statics))
-        };
-        let bordered: Vec<Result<Member, Box<Placed>>> =
-            group.into_iter().zip(ids.clone()).collect::<Vec<_>>().into_par_iter().map(border).collect();
-        let (mut members, mut alone) = (Vec::new(), Vec::new());
-        for one in bordered {
+        let common: Common = (&levels, &order, &places);
+        let twins: HashMap<usize, usize> = ids[master].iter().enumerate().map(|(k, id)| (*id, k)).collect();
+        let split: Vec<Result<Border, Box<Placed>>> =
+            group.into_iter().zip(&ids).map(|(placed, ids)| Border::new(placed, ids, common, &twins)).collect();
+        let (mut borders, mut alone) = (Vec::new(), Vec::new());
+        for one in split {
             match one {
-                Ok(member) => members.push(member),
+                Ok(border) => borders.push(border),
                 Err(placed) => alone.push(*placed),
             }
         }
+        let reach = Reach::of(&borders, &moving);
+        let members = borders
+            .into_par_iter()
+            .map(|border| {
+                let added = Added::new(
+                    &border.placed.mesh,
+                    &border.is_new,
+                    (&border.places, border.leading),
+                    (with_image, &statics),
+                    |conductor, from_m| reach.to_m(border.leading, conductor, from_m),
+                );
+                let keys = (0..added.runs()).map(|run| added.run_key(&border.placed.mesh, run)).collect();
+                Member { border, added, keys }
+            })
+            .collect();
         let order = order.iter().map(|o| o.1).collect();
         (Some(Self { layout, shortest, moving, interaction, order, members }), alone)
     }
@@ -192,7 +248,7 @@ impl Family {
         let by_frequency =
             earths.par_iter().map(|at| self.at(at)).collect::<Result<Vec<Vec<Reading>>, CutFailure>>()?;
         let of = |m: usize| by_frequency.iter().map(|row| row[m]).collect();
-        Ok(self.members.iter().enumerate().map(|(m, member)| (member.placed.index, of(m))).collect())
+        Ok(self.members.iter().enumerate().map(|(m, member)| (member.border.placed.index, of(m))).collect())
     }
 
     /// All members at one frequency.
@@ -204,12 +260,34 @@ impl Family {
         let n = self.order.len();
         let common = Leading::new(Mat::from_fn(n, n, |i, j| z[(self.order[i], self.order[j])]));
         let rows: Vec<Vec<Complex64>> = rows.iter().map(|row| self.order.iter().map(|&u| row[u]).collect()).collect();
-        let radiation = Radiation::new(&self.layout, &self.shortest, &self.moving, &at.sphere);
+        let radiation = Radiation::new((&self.layout, mesh), &self.shortest, &self.moving, &at.sphere);
+        let seen = self.seen(at);
         self.members
             .par_iter()
             .map(|member| match &common {
-                Ok(common) => member.solve((common, &rows, &radiation), at),
+                Ok(common) => member.solve((common, &rows, &radiation), &seen, at),
                 Err(_) => member.alone(at),
+            })
+            .collect()
+    }
+}
+
+impl Family {
+    /// What several members see alike, at one frequency.
+    fn seen(&self, at: &At) -> HashMap<&[i64], Seen> {
+        let mut users: HashMap<&[i64], (usize, &Member, usize)> = HashMap::new();
+        for member in &self.members {
+            for (run, key) in member.keys.iter().enumerate() {
+                users.entry(key.as_slice()).or_insert((0, member, run)).0 += 1;
+            }
+        }
+        let several: Vec<_> = users.into_iter().filter(|(_, (count, ..))| *count > 1).collect();
+        several
+            .into_par_iter()
+            .map(|(key, (_, member, run))| {
+                let Placed { layout, mesh, .. } = &member.border.placed;
+                let spots = Spots::of_potential(Spots::of(layout, mesh, at.earth.frequency_hz()).as_ref());
+                (key, member.added.seen(mesh, run, &at.earth, &spots))
             })
             .collect()
     }
@@ -244,13 +322,13 @@ fn levels(mesh: &Mesh, ids: &[usize], count: &[usize], members: usize) -> HashMa
 /// Levels of elements, places of the longest's unknowns in order with their levels, and the places by unknown.
 type Common<'a> = (&'a HashMap<usize, usize>, &'a [(usize, usize)], &'a HashMap<UnknownKey, (usize, usize)>);
 
-impl Member {
+impl Border {
     /// A length against the common part; given back where it does not nest.
     fn new(
         placed: Placed,
         ids: &[usize],
         (levels, order, known): Common,
-        (with_image, statics): (bool, &Statics),
+        twins: &HashMap<usize, usize>,
     ) -> Result<Self, Box<Placed>> {
         let here: std::collections::HashSet<usize> = ids.iter().copied().collect();
         // the outermost level up to which every element is here
@@ -280,40 +358,54 @@ impl Member {
         for (k, element) in placed.mesh.elements.iter().enumerate() {
             element.each_unknown(|u, _| is_new[k] |= places[u] >= leading);
         }
-        let added = Added::new(&placed.mesh, &is_new, (&places, leading), with_image, statics);
-        Ok(Self { placed, is_new, places, leading, added })
+        let twins = ids.iter().map(|id| twins.get(id).copied()).collect();
+        Ok(Self { placed, is_new, places, leading, twins })
     }
+}
 
+impl Member {
     fn alone(&self, at: &At) -> Result<Reading, CutFailure> {
-        let layout = &self.placed.layout;
-        solve(layout, &Interaction::new(self.placed.mesh.clone(), layout.earth != Earth::None), at)
+        let layout = &self.border.placed.layout;
+        solve(layout, &Interaction::new(self.border.placed.mesh.clone(), layout.earth != Earth::None), at)
     }
 
     /// As a leading block of the common factors with its own border.
     fn solve(
         &self,
         (common, common_rows, radiation): (&Leading, &[Vec<Complex64>], &Radiation),
+        shared: &HashMap<&[i64], Seen>,
         at: &At,
     ) -> Result<Reading, CutFailure> {
         let earth = &at.earth;
-        let (layout, mesh) = (&self.placed.layout, &self.placed.mesh);
+        let Border { placed: Placed { layout, mesh, .. }, is_new, places, leading, twins } = &self.border;
         let spots = Spots::of(layout, mesh, earth.frequency_hz());
         let wanted = Spots::of_potential(spots.as_ref());
-        let border = self.added.columns(mesh, earth, &wanted);
+        let own: Vec<Option<Seen>> = (0..self.keys.len())
+            .map(|run| match shared.get(self.keys[run].as_slice()) {
+                Some(_) => None,
+                None => Some(self.added.seen(mesh, run, earth, &wanted)),
+            })
+            .collect();
+        let seen: Vec<&Seen> = own
+            .iter()
+            .zip(&self.keys)
+            .filter_map(|(own, key)| own.as_ref().or_else(|| shared.get(key.as_slice())))
+            .collect();
+        let border = self.added.columns(mesh, earth, &wanted, &seen);
         let excite = excitations(mesh);
         let ports = excite.ncols();
         let mut right = Mat::zeros(mesh.unknowns, ports);
-        for (unknown, &place) in self.places.iter().enumerate() {
+        for (unknown, &place) in places.iter().enumerate() {
             for port in 0..ports {
                 right[(place, port)] = excite[(unknown, port)];
             }
         }
-        let system = Bordered { leading: self.leading, columns: &border.columns, corner: &border.corner };
+        let system = Bordered { leading: *leading, columns: &border.columns, corner: &border.corner };
         let (x, residual) = common.solve(system, &right).map_err(|source| singular(earth, source))?;
         if residual > MOST_RESIDUAL {
             return self.alone(at);
         }
-        let currents_a = Mat::from_fn(mesh.unknowns, ports, |u, port| x[(self.places[u], port)]);
+        let currents_a = Mat::from_fn(mesh.unknowns, ports, |u, port| x[(places[u], port)]);
         let admittance_s = DMatrix::from_fn(ports, ports, |i, j| {
             (0..mesh.unknowns).map(|k| excite[(k, i)] * currents_a[(k, j)]).sum()
         });
@@ -323,11 +415,11 @@ impl Member {
             .zip(&border.potentials)
             .zip(common_rows)
             .map(|((spot, own), common)| {
-                let known = !self.is_new[spot.element];
-                let at = |place: usize| if known && place < self.leading { common[place] } else { own[place] };
-                self.places.iter().map(|&place| at(place)).collect()
+                let known = !is_new[spot.element];
+                let at = |place: usize| if known && place < *leading { common[place] } else { own[place] };
+                places.iter().map(|&place| at(place)).collect()
             })
             .collect();
-        finish(layout, mesh, at, (&model, spots, &rows, Some(radiation)))
+        finish(layout, mesh, at, (&model, spots, &rows, Some((radiation, twins))))
     }
 }

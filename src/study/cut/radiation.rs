@@ -3,7 +3,7 @@
 use crate::field::{CurrentNode, Solution, Sphere};
 use crate::interaction::quadrature::{Rule, gauss, legendre};
 use crate::layout::{Layout, Point};
-use crate::mesh::{Element, Mesh};
+use crate::mesh::{Element, MAX_DEGREE, Mesh};
 use faer::Mat;
 use num_complex::Complex64;
 
@@ -49,11 +49,16 @@ pub(super) struct Radiation {
     carried: Vec<Carried>,
     form: Mat<Complex64>,
     k_per_m: f64,
+    /// How every element of the longest mesh lies on the nodes: node, weights of its Legendre coefficients, m.
+    laid: Vec<Option<Vec<Laid>>>,
 }
+
+/// A node, and how much of each Legendre coefficient of an element's current (A) lies on it (A m).
+type Laid = (usize, [f64; MAX_DEGREE + 1]);
 
 impl Radiation {
     /// Lines of the longest layout of a family, the shortest one and the conductors whose ends move.
-    pub(super) fn new(longest: &Layout, shortest: &Layout, moving: &[usize], sphere: &Sphere) -> Self {
+    pub(super) fn new((longest, mesh): (&Layout, &Mesh), shortest: &Layout, moving: &[usize], sphere: &Sphere) -> Self {
         let mut nodes = Vec::new();
         let mut pieces = Vec::new();
         let mut carried = Vec::new();
@@ -83,37 +88,48 @@ impl Radiation {
             let stride = (nodes.len() - before) / places;
             carried.push(Carried { conductor: index, points, from, direction, range_m, places, pieces: first, stride });
         }
-        Self { pieces, carried, form: sphere.form(&nodes), k_per_m: sphere.k_per_m() }
+        let k_per_m = sphere.k_per_m();
+        let fixed = |c: usize| !carried.iter().any(|one| one.conductor == c);
+        let laid = mesh
+            .elements
+            .iter()
+            .map(|e| {
+                fixed(e.conductor).then(|| lay_element(e, (&pieces[e.conductor], k_per_m), Point::zeros())).flatten()
+            })
+            .collect();
+        Self { pieces, carried, form: sphere.form(&nodes), k_per_m, laid }
     }
 
     /// Power of a solution, W; `None` where the mesh leaves the lines.
-    pub(super) fn radiated_w(&self, layout: &Layout, mesh: &Mesh, solution: &Solution) -> Option<f64> {
+    pub(super) fn radiated_w(
+        &self,
+        layout: &Layout,
+        (mesh, twins): (&Mesh, &[Option<usize>]),
+        solution: &Solution,
+    ) -> Option<f64> {
         let n = self.form.nrows();
         let mut moments = vec![Complex64::ZERO; n];
         for (c, range) in mesh.conductor_elements.iter().enumerate() {
-            let place = self.carried.iter().find(|carried| carried.conductor == c);
-            let place = match place {
+            let moved = match self.carried.iter().find(|carried| carried.conductor == c) {
                 Some(carried) => Some((carried, carried.place(&layout.conductors[c].points)?)),
                 None => None,
             };
             for k in range.clone() {
                 let (e, current) = (&mesh.elements[k], &solution.currents[k]);
-                match &place {
-                    None => lay_element(e, current, (&self.pieces[c], self.k_per_m), Point::zeros(), |q, m| {
-                        moments[q] += m
-                    })?,
-                    Some((carried, (shift, weights))) => {
-                        lay_element(
-                            e,
-                            current,
-                            (&carried.pieces, self.k_per_m),
-                            *shift - carried.first_shift(),
-                            |q, m| {
-                                for (p, w) in weights.iter().enumerate() {
-                                    moments[q + p * carried.stride] += m * w;
-                                }
-                            },
-                        )?;
+                let on = |w: &[f64; MAX_DEGREE + 1]| current.iter().zip(w).map(|(c, w)| c * w).sum::<Complex64>();
+                match (&moved, twins[k].and_then(|twin| self.laid[twin].as_ref())) {
+                    (Some((carried, (shift, weights))), _) => {
+                        let pieces = (carried.pieces.as_slice(), self.k_per_m);
+                        for (q, w) in lay_element(e, pieces, *shift - carried.first_shift())? {
+                            for (p, weight) in weights.iter().enumerate() {
+                                moments[q + p * carried.stride] += on(&w) * weight;
+                            }
+                        }
+                    }
+                    (None, Some(laid)) => laid.iter().for_each(|(q, w)| moments[*q] += on(w)),
+                    (None, None) => {
+                        let laid = lay_element(e, (&self.pieces[c], self.k_per_m), Point::zeros())?;
+                        laid.iter().for_each(|(q, w)| moments[*q] += on(w));
                     }
                 }
             }
@@ -178,15 +194,10 @@ fn rule(e: &Element, k_per_m: f64) -> &'static Rule {
     gauss(POINTS[usize::from(k_per_m * e.length_m < SHORT)])
 }
 
-/// Current times length of an element laid on the nodes of the pieces it lies on.
-fn lay_element(
-    e: &Element,
-    current: &[Complex64; 4],
-    (pieces, k_per_m): (&[Piece], f64),
-    shift: Point,
-    mut add: impl FnMut(usize, Complex64),
-) -> Option<()> {
+/// How the current of an element lies on the nodes of the pieces it is part of; `None` where it lies on none.
+fn lay_element(e: &Element, (pieces, k_per_m): (&[Piece], f64), shift: Point) -> Option<Vec<Laid>> {
     let rule = rule(e, k_per_m);
+    let mut out: Vec<Laid> = Vec::new();
     for (xi, w) in rule.nodes.iter().zip(&rule.weights) {
         let along_m = e.from_m + 0.5 * (1.0 + xi) * e.length_m;
         let piece = pieces.iter().find(|p| along_m <= p.to_m + 1e-9).or(pieces.last())?;
@@ -199,13 +210,16 @@ fn lay_element(
         if x.abs() > 1.0 + 1e-6 {
             return None;
         }
-        let i: Complex64 = current.iter().zip(legendre(*xi)).map(|(c, p)| c * p).sum();
-        let moment = i * (0.5 * w * e.length_m);
-        for (q, l) in lagrange(piece.nodes, x).into_iter().enumerate() {
-            add(piece.first + q, moment * l);
+        let first = out.iter().position(|l| l.0 == piece.first).unwrap_or_else(|| {
+            out.extend((0..piece.nodes).map(|q| (piece.first + q, [0.0; MAX_DEGREE + 1])));
+            out.len() - piece.nodes
+        });
+        let p = legendre(*xi).map(|p| p * 0.5 * w * e.length_m);
+        for ((_, weights), l) in out[first..].iter_mut().zip(lagrange(piece.nodes, x)) {
+            weights.iter_mut().zip(p).for_each(|(weight, p)| *weight += l * p);
         }
     }
-    Some(())
+    Some(out)
 }
 
 /// Lagrange polynomials of a Gauss rule's nodes at x, in barycentric form (weights (−1)^q √((1 − x_q²) w_q): Wang and Xiang,

@@ -230,6 +230,9 @@ pub(super) fn singular(earth: &Surroundings, source: SingularMatrix) -> CutFailu
     CutFailure::Solving(Failure::Singular { frequency_hz: earth.frequency_hz(), source })
 }
 
+/// The form of the radiated power, and for every element the one of its mesh that is the same.
+pub(super) type Lines<'a> = (&'a Radiation, &'a [Option<usize>]);
+
 /// From the port model, and potentials as rows over the unknowns, to a reading.
 ///
 /// # Errors
@@ -238,7 +241,7 @@ pub(super) fn finish(
     layout: &Layout,
     mesh: &Mesh,
     at: &At,
-    (model, spots, rows, radiation): (&PortModel, Option<Spots>, &[Vec<Complex64>], Option<&Radiation>),
+    (model, spots, rows, radiation): (&PortModel, Option<Spots>, &[Vec<Complex64>], Option<Lines>),
 ) -> Result<Reading, CutFailure> {
     let earth = &at.earth;
     let parts = parts(layout, earth);
@@ -247,7 +250,7 @@ pub(super) fn finish(
     let potentials_v = rows.iter().map(|row| row.iter().zip(&unknowns).map(|(r, x)| r * x).sum()).collect();
     let currents = Solution::new(mesh, &unknowns);
     let radiated_w = radiation
-        .and_then(|r| r.radiated_w(layout, mesh, &currents))
+        .and_then(|(r, twins)| r.radiated_w(layout, (mesh, twins), &currents))
         .unwrap_or_else(|| radiation::direct(mesh, &currents, &at.sphere));
     let feed_a = port_currents[0];
     Ok(Solved { layout, mesh, earth, feed_a, currents, spots, potentials_v, radiated_w }.reading()?)
