@@ -65,6 +65,7 @@ impl Cut {
             stock: self.stock.as_deref().map_or(Ok(Vec::new()), stock).map_err(Stop::Usage)?,
             method: Method::default(),
             density: Density::default(),
+            trim: true,
         })
     }
 }
@@ -133,7 +134,10 @@ fn plain(outcome: &CutOutcome) -> String {
     }
     for stock in &outcome.stock {
         let state = if stock.within_limits { "within limits" } else { "beyond a limit" };
-        out.push(format!("  in stock, {}: {state}; at worst {} {:.3}", stock.name, stock.worst.quantity, stock.worst.value));
+        out.push(format!(
+            "  in stock, {}: {state}; at worst {} {:.3}",
+            stock.name, stock.worst.quantity, stock.worst.value
+        ));
     }
     for avoid in &outcome.lengths_to_avoid {
         out.push(format!(

@@ -134,13 +134,7 @@ impl Added {
     }
 
     /// New elements among themselves and with those near.
-    fn close_pairs(
-        &self,
-        earth: &Surroundings,
-        spots: &[Spot],
-        z: &mut Matrix,
-        potentials: &mut [Vec<Complex64>],
-    ) {
+    fn close_pairs(&self, earth: &Surroundings, spots: &[Spot], z: &mut Matrix, potentials: &mut [Vec<Complex64>]) {
         // only the places that occur, so that the matrix stays small
         let mut used: Vec<usize> = Vec::new();
         let mut maps: Vec<UnknownMap> = self.close_ids.iter().map(|&k| self.maps[k].clone()).collect();
@@ -291,7 +285,12 @@ impl Added {
     }
 
     /// Means over an element of P_a times the kernels of the closed-form families, at the nodes of a run.
-    fn kernels(&self, e: &Element, run: &Run, earth: &Surroundings) -> ([[Complex64; NODES]; 4], [[Complex64; NODES]; 4]) {
+    fn kernels(
+        &self,
+        e: &Element,
+        run: &Run,
+        earth: &Surroundings,
+    ) -> ([[Complex64; NODES]; 4], [[Complex64; NODES]; 4]) {
         let mut current = [[Complex64::ZERO; NODES]; 4];
         let mut potential = current;
         let rule = gauss(NODES);
@@ -392,7 +391,10 @@ fn runs(mesh: &Mesh, new_ids: &[usize], reach_m: impl Fn(usize, f64) -> f64) -> 
     for &k in new_ids {
         let follows = |last: &usize| {
             let (d, e) = (&mesh.elements[*last], &mesh.elements[k]);
-            *last + 1 == k && d.conductor == e.conductor && d.tangent.dot(&e.tangent) > 1.0 - 1e-12 && d.below == e.below
+            *last + 1 == k
+                && d.conductor == e.conductor
+                && d.tangent.dot(&e.tangent) > 1.0 - 1e-12
+                && d.below == e.below
         };
         match groups.last_mut() {
             Some(group) if group.last().is_some_and(follows) => group.push(k),
@@ -437,11 +439,11 @@ fn member_weights(from: f64, to: f64) -> [[f64; NODES]; MAX_DEGREE + 1] {
     for (eta, w) in rule.nodes.iter().zip(&rule.weights) {
         let x = all_legendre(0.5 * ((1.0 - eta) * from + (1.0 + eta) * to));
         let p = legendre(*eta);
-        for q in 0..NODES {
-            let y = node_values(q);
-            let lagrange: f64 = nodes.weights[q] * (0..NODES).map(|n| (n as f64 + 0.5) * x[n] * y[n]).sum::<f64>();
-            for b in 0..=MAX_DEGREE {
-                out[b][q] += 0.5 * w * p[b] * lagrange;
+        for (q, weight) in nodes.weights.iter().enumerate() {
+            let terms = x.iter().zip(node_values(q)).enumerate();
+            let lagrange: f64 = weight * terms.map(|(n, (x, y))| (n as f64 + 0.5) * x * y).sum::<f64>();
+            for (row, p) in out.iter_mut().zip(p) {
+                row[q] += 0.5 * w * p * lagrange;
             }
         }
     }

@@ -8,9 +8,7 @@
 use super::factor::{Factored, SingularMatrix};
 use super::fill::Matrix;
 use faer::linalg::matmul::matmul;
-use faer::linalg::triangular_solve::{
-    solve_unit_lower_triangular_in_place, solve_unit_upper_triangular_in_place,
-};
+use faer::linalg::triangular_solve::{solve_unit_lower_triangular_in_place, solve_unit_upper_triangular_in_place};
 use faer::{Accum, Mat, Par};
 use num_complex::Complex64;
 
@@ -93,8 +91,7 @@ impl Leading {
     pub fn solve(&self, system: Bordered, right: &Matrix) -> Result<(Matrix, f64), SingularMatrix> {
         let (m, t, p) = (system.leading, system.corner.ncols(), right.ncols());
         let one = Complex64::ONE;
-        let mut forward =
-            Mat::from_fn(m, t + p, |i, j| if j < t { system.columns[(i, j)] } else { right[(i, j - t)] });
+        let mut forward = Mat::from_fn(m, t + p, |i, j| if j < t { system.columns[(i, j)] } else { right[(i, j - t)] });
         let lower = self.lower.get(0..m, 0..m);
         solve_unit_lower_triangular_in_place(lower, forward.as_mut(), Par::Seq);
         let divided = Mat::from_fn(m, t + p, |i, j| forward[(i, j)] / self.diagonal[i]);
@@ -122,7 +119,8 @@ impl Leading {
         let mut bottom = right.get(m..m + t, 0..1).to_owned();
         matmul(bottom.as_mut(), Accum::Add, system.columns.transpose(), first, minus, Par::Seq);
         matmul(bottom.as_mut(), Accum::Add, system.corner.as_ref(), further, minus, Par::Seq);
-        let largest = |m: &Matrix| m.col_iter().flat_map(|c| c.iter().map(|v| v.norm()).collect::<Vec<_>>()).fold(0.0, f64::max);
+        let largest =
+            |m: &Matrix| m.col_iter().flat_map(|c| c.iter().map(|v| v.norm()).collect::<Vec<_>>()).fold(0.0, f64::max);
         let scale = (0..m + t).map(|i| right[(i, 0)].norm()).fold(f64::MIN_POSITIVE, f64::max);
         let worst = largest(&top).max(largest(&bottom)) / scale;
         if worst.is_nan() { f64::INFINITY } else { worst }
@@ -156,8 +154,7 @@ mod tests {
             let right = Mat::from_fn(n, 2, |i, j| Complex64::new((i + j) as f64, 1.0 - j as f64));
             let mut want = right.clone();
             Factored::new(small).unwrap().solve_in_place(&mut want);
-            let (x, residual) =
-                common.solve(Bordered { leading, columns: &columns, corner: &corner }, &right).unwrap();
+            let (x, residual) = common.solve(Bordered { leading, columns: &columns, corner: &corner }, &right).unwrap();
             assert!(residual < 1e-12, "{residual}");
             for i in 0..n {
                 for j in 0..2 {

@@ -39,8 +39,7 @@ impl Anchor {
 
     /// The vertex moves with an end.
     pub(super) fn displaces(&self, layout: &Layout, conductor: usize, vertex: usize) -> bool {
-        self.carries(conductor)
-            || self.moves(conductor) && vertex + 1 == layout.conductors[conductor].points.len()
+        self.carries(conductor) || self.moves(conductor) && vertex + 1 == layout.conductors[conductor].points.len()
     }
 }
 

@@ -20,7 +20,10 @@ fn refused(model: &str, arguments: &[&str], says: &[&str]) {
 
 #[test]
 fn a_scan_comes_out_on_the_axes_of_the_contract() {
-    let output = cut("gauge-hut", &["--conductor", "coax", "--range", "6 m .. 14 m by 0.5 m", "--stock", "33, 38, 50 ft", "--json"]);
+    let output = cut(
+        "gauge-hut",
+        &["--conductor", "coax", "--range", "6 m .. 14 m by 0.5 m", "--stock", "33, 38, 50 ft", "--json"],
+    );
     assert!(output.status.success(), "{}", String::from_utf8_lossy(&output.stderr));
     let json: Value = serde_json::from_slice(&output.stdout).unwrap();
     let lengths = json["lengths_m"].as_array().unwrap();
@@ -28,7 +31,15 @@ fn a_scan_comes_out_on_the_axes_of_the_contract() {
     assert_eq!(json["variants"][0], "nominal");
     assert_eq!(lengths.first().unwrap(), 10.0, "shorter ones lose the entry");
     assert_eq!(lengths.last().unwrap(), 11.5, "longer ones leave the route");
-    for quantity in ["entry_current_a", "entry_voltage_v", "end_voltage_v", "last_metre_current_a", "feed_ohm", "swr", "radiated_fraction"] {
+    for quantity in [
+        "entry_current_a",
+        "entry_voltage_v",
+        "end_voltage_v",
+        "last_metre_current_a",
+        "feed_ohm",
+        "swr",
+        "radiated_fraction",
+    ] {
         let values = json[quantity].as_array().unwrap();
         assert_eq!(values.len(), json["variants"].as_array().unwrap().len(), "{quantity}");
         assert_eq!(values[0].as_array().unwrap().len(), 15, "{quantity}: five bands with three frequencies each");
@@ -45,7 +56,16 @@ fn a_scan_comes_out_on_the_axes_of_the_contract() {
 
 #[test]
 fn two_lengths_add_an_axis() {
-    let arguments = ["--conductor", "coax", "--range", "10.5 m .. 11.5 m by 0.5 m", "--with", "radiator", "--with-range", "19 m .. 20 m by 1 m"];
+    let arguments = [
+        "--conductor",
+        "coax",
+        "--range",
+        "10.5 m .. 11.5 m by 0.5 m",
+        "--with",
+        "radiator",
+        "--with-range",
+        "19 m .. 20 m by 1 m",
+    ];
     let output = cut("gauge-hut", &[&arguments[..], &["--json"]].concat());
     assert!(output.status.success(), "{}", String::from_utf8_lossy(&output.stderr));
     let json: Value = serde_json::from_slice(&output.stdout).unwrap();
@@ -73,11 +93,28 @@ fn questions_that_cannot_be_meant_are_refused_with_the_mend() {
     refused("gauge-hut", &coax("6 .. 14 by 0.5"), &["\"6 .. 14 by 0.5\"", "unit"]);
     refused("gauge-hut", &coax("20 m .. 25 m by 0.5 m"), &["no length from 20 m to 25 m", "path only 11.99 m"]);
     refused("gauge-hut", &coax("2 m .. 25 m by 0.1 mm"), &["20000 are the most", "longer steps"]);
-    refused("gauge-hut", &["--conductor", "radiater", "--range", "4 m .. 5 m by 1 m"], &["no conductor", "\"radiator\"?"]);
-    refused("gauge-hut", &["--conductor", "coax", "--range", "10.5 m .. 11 m by 0.5 m", "--with", "radiator"], &["with-range"]);
     refused(
         "gauge-hut",
-        &["--conductor", "coax", "--range", "10.5 m .. 11 m by 0.5 m", "--with", "coax", "--with-range", "1 m .. 2 m by 1 m"],
+        &["--conductor", "radiater", "--range", "4 m .. 5 m by 1 m"],
+        &["no conductor", "\"radiator\"?"],
+    );
+    refused(
+        "gauge-hut",
+        &["--conductor", "coax", "--range", "10.5 m .. 11 m by 0.5 m", "--with", "radiator"],
+        &["with-range"],
+    );
+    refused(
+        "gauge-hut",
+        &[
+            "--conductor",
+            "coax",
+            "--range",
+            "10.5 m .. 11 m by 0.5 m",
+            "--with",
+            "coax",
+            "--with-range",
+            "1 m .. 2 m by 1 m",
+        ],
         &["again"],
     );
     refused("gauge-hut", &[&coax("10 m .. 11 m by 0.5 m")[..], &["--stock", "25, 33"]].concat(), &["--stock"]);

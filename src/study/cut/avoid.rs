@@ -29,9 +29,8 @@ pub(super) fn resonances(scan: &Scan, grid: &Grid, first: &Axis) -> Vec<LengthTo
     for (v, variant) in scan.variants().iter().enumerate() {
         for (f, &frequency_hz) in scan.frequencies_hz.iter().enumerate() {
             for w in &watched {
-                let least = |l: usize| {
-                    (0..grid.seconds).map(|s| (w.read)(grid.at(v, f, l, s))).fold(f64::INFINITY, f64::min)
-                };
+                let least =
+                    |l: usize| (0..grid.seconds).map(|s| (w.read)(grid.at(v, f, l, s))).fold(f64::INFINITY, f64::min);
                 let curve: Vec<f64> = (0..grid.lengths).map(least).collect();
                 out.extend(peaks(&first.lengths_m, &curve).into_iter().filter(|p| p.1 > w.limit).map(
                     |(length_m, value)| LengthToAvoid {
@@ -55,9 +54,8 @@ fn peaks(x: &[f64], y: &[f64]) -> Vec<(f64, f64)> {
         if y[n] <= 0.0 || y[n] < y[n - 1] || y[n] <= y[n + 1] {
             continue;
         }
-        let lowest = |side: &mut dyn Iterator<Item = &f64>| {
-            side.take_while(|v| **v <= y[n]).fold(y[n], |low, v| low.min(*v))
-        };
+        let lowest =
+            |side: &mut dyn Iterator<Item = &f64>| side.take_while(|v| **v <= y[n]).fold(y[n], |low, v| low.min(*v));
         let floor = lowest(&mut y[..n].iter().rev()).max(lowest(&mut y[n + 1..].iter()));
         if y[n] >= PROMINENCE * floor {
             out.push(vertex(&x[n - 1..=n + 1], &y[n - 1..=n + 1]));

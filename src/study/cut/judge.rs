@@ -52,7 +52,8 @@ fn worst(scan: &Scan, grid: &Grid, (l, s): (usize, usize), judging: Judging) -> 
                 let ratio = value / limit;
                 if out.as_ref().is_none_or(|o| ratio > o.0) {
                     let variant = variant.name.clone();
-                    out = Some((ratio, WorstCase { frequency_hz, variant, quantity: quantity.to_owned(), value, limit }));
+                    out =
+                        Some((ratio, WorstCase { frequency_hz, variant, quantity: quantity.to_owned(), value, limit }));
                 }
             }
         }
@@ -152,12 +153,11 @@ pub(super) fn judge(scan: &Scan, grid: &Grid, first: &Axis, second: Option<&Axis
         })
         .collect();
     let present = present(&scores, first);
-    let keeps = kept
-        && present.is_some_and(|l| {
+    let keeps =
+        kept && present.is_some_and(|l| {
             let best = found.first().map_or(f64::INFINITY, |p| scores.ratio[p.0]);
             scores.ratio[l] <= 1.0 && best >= MUCH_BETTER * scores.ratio[l]
-        })
-        && second.is_none();
+        }) && second.is_none();
     let verdict = match (kept, keeps) {
         (false, _) => CutVerdict::NoLength,
         (true, true) => CutVerdict::Keep,
@@ -266,7 +266,15 @@ pub(super) fn stock(
         .map(|(l, (name, length_m))| {
             let (ratio, worst_case) = worst(scan, &grid, (l, 0), Judging::All);
             let rank = worst(scan, &grid, (l, 0), judging).0;
-            (rank, StockOutcome { name: name.clone(), length_m: *length_m, within_limits: ratio <= 1.0, worst: worst_case })
+            (
+                rank,
+                StockOutcome {
+                    name: name.clone(),
+                    length_m: *length_m,
+                    within_limits: ratio <= 1.0,
+                    worst: worst_case,
+                },
+            )
         })
         .collect();
     ranked.sort_by(|a, b| a.0.total_cmp(&b.0));

@@ -56,7 +56,6 @@ pub(super) struct Radiation {
 /// A node, and how much of each Legendre coefficient of an element's current (A) lies on it (A m).
 type Laid = (usize, [f64; MAX_DEGREE + 1]);
 
-
 impl Radiation {
     /// Lines of the longest layout of a family, the shortest one and the conductors whose ends move.
     pub(super) fn new((longest, mesh): (&Layout, &Mesh), shortest: &Layout, moving: &[usize], sphere: &Sphere) -> Self {
@@ -94,7 +93,9 @@ impl Radiation {
         let laid = mesh
             .elements
             .iter()
-            .map(|e| fixed(e.conductor).then(|| lay_element(e, (&pieces[e.conductor], k_per_m), Point::zeros())).flatten())
+            .map(|e| {
+                fixed(e.conductor).then(|| lay_element(e, (&pieces[e.conductor], k_per_m), Point::zeros())).flatten()
+            })
             .collect();
         Self { pieces, carried, form: sphere.form(&nodes), k_per_m, laid }
     }

@@ -81,8 +81,7 @@ fn one(columns: &[Column], span_m: f64) -> Option<TrimOutcome> {
     let value = |z: Complex64| if high { z.inv().im } else { z.im };
     let at: Vec<f64> = columns.iter().map(|c| c.frequency_hz).collect();
     let g: Vec<f64> = columns.iter().map(|c| value(c.feed_ohm[1])).collect();
-    let by_length: Vec<f64> =
-        columns.iter().map(|c| (value(c.feed_ohm[2]) - value(c.feed_ohm[0])) / span_m).collect();
+    let by_length: Vec<f64> = columns.iter().map(|c| (value(c.feed_ohm[2]) - value(c.feed_ohm[0])) / span_m).collect();
     // from the middle: g = g1 + slope t + bend t²
     let (slope, bend) = match (&at[..], &g[..]) {
         ([f0, f1, f2], [g0, g1, g2]) => {
