@@ -81,6 +81,7 @@ impl Cut {
             stock: self.stock.as_deref().map_or(Ok(Vec::new()), stock).map_err(Stop::Usage)?,
             method: Method::default(),
             density: Density::default(),
+            trim: true,
         })
     }
 }

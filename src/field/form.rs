@@ -141,15 +141,16 @@ impl Sphere {
         }
     }
 
-    /// Nodes that carry the far field of any current on a line this long.
+    /// Nodes that carry the far field of any current on a line this long, which is at most [`Sphere::longest_m`].
     #[must_use]
     pub fn nodes_for(&self, length_m: f64) -> usize {
-        (0.6 * self.k * length_m + 10.0).ceil() as usize
+        (0.6 * self.k * length_m + 14.0).ceil() as usize
     }
 
-    /// Longest line that one rule of nodes serves, m.
+    /// Longest line that one rule of nodes serves to 10⁻⁶, m: interpolation of a wave of phase ±a at n Gauss nodes errs by about
+    /// aⁿ/(2ⁿ⁻¹ n!), and here a = 15, n = 32.
     #[must_use]
     pub fn longest_m(&self) -> f64 {
-        (MAX_POINTS as f64 - 11.0) / (0.6 * self.k)
+        30.0 / self.k
     }
 }

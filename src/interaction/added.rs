@@ -439,11 +439,11 @@ fn member_weights(from: f64, to: f64) -> [[f64; NODES]; MAX_DEGREE + 1] {
     for (eta, w) in rule.nodes.iter().zip(&rule.weights) {
         let x = all_legendre(0.5 * ((1.0 - eta) * from + (1.0 + eta) * to));
         let p = legendre(*eta);
-        for q in 0..NODES {
-            let y = node_values(q);
-            let lagrange: f64 = nodes.weights[q] * (0..NODES).map(|n| (n as f64 + 0.5) * x[n] * y[n]).sum::<f64>();
-            for b in 0..=MAX_DEGREE {
-                out[b][q] += 0.5 * w * p[b] * lagrange;
+        for (q, weight) in nodes.weights.iter().enumerate() {
+            let terms = x.iter().zip(node_values(q)).enumerate();
+            let lagrange: f64 = weight * terms.map(|(n, (x, y))| (n as f64 + 0.5) * x * y).sum::<f64>();
+            for (row, p) in out.iter_mut().zip(p) {
+                row[q] += 0.5 * w * p * lagrange;
             }
         }
     }

@@ -47,14 +47,14 @@ impl Pairs {
             if mirrored { mesh.elements.iter().map(Line::mirrored).collect() } else { lines.clone() };
         let mut list = Vec::new();
         let mut statics = Vec::new();
-        for i in 0..mesh.elements.len() {
-            for j in i..mesh.elements.len() {
+        for (i, line) in lines.iter().enumerate() {
+            for (j, other) in others.iter().enumerate().skip(i) {
                 if !keep(i, j) {
                     continue;
                 }
-                let pair = classify(mesh, (i, &lines[i]), (j, &others[j]), mirrored);
+                let pair = classify(mesh, (i, line), (j, other), mirrored);
                 let near = pair.1.map(|tubes| {
-                    statics.push(known.get(&lines[i], &others[j], tubes));
+                    statics.push(known.get(line, other, tubes));
                     (statics.len() - 1) as u32
                 });
                 list.push(Pair { near, ..pair.0 });
@@ -66,27 +66,37 @@ impl Pairs {
 
 /// Static moments of pairs on one line, which depend only on how the two lie to each other: kept for other meshes.
 #[derive(Debug, Clone, Default)]
-pub struct Statics(HashMap<[i64; 6], Static>);
+pub struct Statics(HashMap<[i64; 7], Static>);
 
 impl Statics {
-    fn key(one: &Line, two: &Line) -> [i64; 6] {
-        let offset_m = (two.start - one.start).dot(&one.tangent);
+    /// How two elements of one line lie to each other, and how their radii enter; `None` for others.
+    fn key(one: &Line, two: &Line, tubes: Tubes) -> Option<[i64; 7]> {
         let along = one.tangent.dot(&two.tangent);
-        [one.length_m, two.length_m, offset_m, along, one.radius_m, two.radius_m].map(|x| (x * 1e10).round() as i64)
+        let sight = two.start - one.start;
+        let offset_m = sight.dot(&one.tangent);
+        let off_axis_m = (sight - one.tangent * offset_m).norm();
+        if along.abs() < 1.0 - 1e-14 || off_axis_m > 1e-9 * (one.length_m + two.length_m) {
+            return None;
+        }
+        let fine = |x: f64| (x * 1e10).round() as i64;
+        let how = if let Tubes::Offset(c2) = tubes { fine(c2.sqrt()) } else { -1 };
+        let radii = [one.radius_m, two.radius_m].map(fine);
+        Some([fine(one.length_m), fine(two.length_m), fine(offset_m), along.signum() as i64, radii[0], radii[1], how])
     }
 
     fn get(&self, one: &Line, two: &Line, tubes: Tubes) -> Static {
-        let known = if tubes == Tubes::Coaxial { self.0.get(&Self::key(one, two)) } else { None };
-        known.copied().unwrap_or_else(|| moments(one, two, tubes))
+        let key = if self.0.is_empty() { None } else { Self::key(one, two, tubes) };
+        key.and_then(|key| self.0.get(&key)).copied().unwrap_or_else(|| moments(one, two, tubes))
     }
 
     /// Keep those of a mesh's pairs.
     pub(super) fn keep(&mut self, mesh: &Mesh, pairs: &Pairs) {
         for pair in &pairs.list {
+            let Some(index) = pair.near else { continue };
             let (e, f) = (&mesh.elements[pair.one], &mesh.elements[pair.two]);
             let (one, two) = (Line::of(e), Line::of(f));
-            if let Some(index) = pair.near.filter(|_| tubes(&one, &two, shares_node(e, f)) == Tubes::Coaxial) {
-                self.0.insert(Self::key(&one, &two), pairs.statics[index as usize]);
+            if let Some(key) = Self::key(&one, &two, tubes(&one, &two, shares_node(e, f))) {
+                self.0.insert(key, pairs.statics[index as usize]);
             }
         }
     }

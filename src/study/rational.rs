@@ -8,7 +8,7 @@ use num_complex::Complex64;
 use thiserror::Error;
 
 /// Samples taken before anything is known.
-const FIRST_SAMPLES: usize = 8;
+const FIRST_SAMPLES: usize = 9;
 /// Samples added at a time: two, so that a second core has work.
 const MORE_SAMPLES: usize = 2;
 /// Places between two neighbouring samples where fits are compared.

@@ -42,7 +42,7 @@ fn a_scan_comes_out_on_the_axes_of_the_contract() {
     ] {
         let values = json[quantity].as_array().unwrap();
         assert_eq!(values.len(), json["variants"].as_array().unwrap().len(), "{quantity}");
-        assert_eq!(values[0].as_array().unwrap().len(), 15, "{quantity}: five bands with three frequencies each");
+        assert_eq!(values[0].as_array().unwrap().len(), 12, "{quantity}: four bands with three frequencies each");
         assert_eq!(values[0][0].as_array().unwrap().len(), lengths.len(), "{quantity}");
     }
     let warnings = json["warnings"].to_string();

@@ -57,6 +57,12 @@ fn no_module_uses_one_that_stands_below_it() {
         files(&Path::new("src").join(module), &mut list);
         assert!(!list.is_empty());
         for file in list {
+            // tests beside the code may use what stands below it
+            let stem = file.file_stem().and_then(|s| s.to_str()).unwrap_or_default().to_string();
+            let parent = std::fs::read_to_string(file.with_file_name("mod.rs")).unwrap_or_default();
+            if parent.contains(&format!("#[cfg(test)]\nmod {stem};")) {
+                continue;
+            }
             let wrong = upward(&order, module, &std::fs::read_to_string(&file).unwrap());
             assert!(wrong.is_empty(), "{} uses {wrong:?}, below {module}", file.display());
         }

@@ -2,6 +2,7 @@
 
 use super::moving::Target;
 use super::{CutFailure, Lengths};
+use crate::interaction::Extent;
 use crate::layout::{Layout, Warning};
 use crate::quantity::metres;
 use crate::station::{Fault, Station};
@@ -16,6 +17,8 @@ pub(super) struct Axis {
     pub(super) lengths_m: Vec<f64>,
     /// What was left out and why.
     pub(super) warnings: Vec<Warning>,
+    /// The space that all these lengths take up, one a variant.
+    pub(super) extents: Vec<Extent>,
 }
 
 impl Axis {
@@ -52,8 +55,10 @@ pub(super) fn axis(
         .map_err(|faults| crate::station::Refused { sources: nominal.sources.clone(), faults })?;
     let present_m = target.conductors(&present).first().map_or(0.0, |&c| present.conductors[c].length_m());
     let mut warnings = Vec::new();
+    let present_extent = Extent::of(&present);
+    let mut extents = vec![present_extent; stations.len()];
     let verdicts: Vec<Option<Fault>> =
-        asked.lengths_m.iter().map(|&length_m| fault(stations, &target, length_m, held)).collect();
+        asked.lengths_m.iter().map(|&length_m| fault(stations, &target, length_m, held, &mut extents)).collect();
     let (Some(low), Some(high)) =
         (verdicts.iter().position(Option::is_none), verdicts.iter().rposition(Option::is_none))
     else {
@@ -83,29 +88,37 @@ pub(super) fn axis(
         );
         warnings.push(left_out(&target, &text));
     }
-    for n in low..high {
-        if let Some(fault) = &verdicts[n] {
-            warnings.push(left_out(&target, &format!("{} is left out: {}", metres(asked.lengths_m[n]), fault.reason)));
+    for (length_m, verdict) in asked.lengths_m.iter().zip(&verdicts).take(high).skip(low) {
+        if let Some(fault) = verdict {
+            warnings.push(left_out(&target, &format!("{} is left out: {}", metres(*length_m), fault.reason)));
         }
     }
-    let kept = (low..=high).filter(|&n| verdicts[n].is_none()).map(|n| asked.lengths_m[n]).collect();
-    Ok(Axis { target, present_m, lengths_m: kept, warnings })
+    let kept: Vec<f64> = (low..=high).filter(|&n| verdicts[n].is_none()).map(|n| asked.lengths_m[n]).collect();
+    Ok(Axis { target, present_m, lengths_m: kept, warnings, extents })
 }
 
 fn left_out(target: &Target, message: &str) -> Warning {
     Warning { about: target.name().to_owned(), message: message.to_owned() }
 }
 
-/// Why a length cannot be built, in any variant.
+/// Why a length cannot be built, in any variant; where it can, its extents join those of the others.
 fn fault(
     stations: &[(String, Station)],
     target: &Target,
     length_m: f64,
     held: Option<(&Target, f64)>,
+    extents: &mut [Extent],
 ) -> Option<Fault> {
     let mut sets = vec![(target, length_m)];
     sets.extend(held);
-    stations.iter().find_map(|(_, station)| place(station, &sets).err().map(first_of))
+    let placed = stations.iter().map(|(_, station)| place(station, &sets)).collect::<Result<Vec<_>, _>>();
+    match placed {
+        Ok(layouts) => {
+            extents.iter_mut().zip(&layouts).for_each(|(all, layout)| *all = all.union(Extent::of(layout)));
+            None
+        }
+        Err(faults) => Some(first_of(faults)),
+    }
 }
 
 fn first_of(faults: Vec<Fault>) -> Fault {
@@ -136,7 +149,7 @@ fn shortest(
 ) -> f64 {
     while holds - fails > 0.005 {
         let middle = 0.5 * (fails + holds);
-        if fault(stations, target, middle, held).is_none() { holds = middle } else { fails = middle }
+        if fault(stations, target, middle, held, &mut []).is_none() { holds = middle } else { fails = middle }
     }
     (holds * 100.0).ceil() / 100.0
 }
@@ -144,13 +157,13 @@ fn shortest(
 /// Lengths that can be bought and built; the rest is warned of.
 pub(super) fn stock(
     stations: &[(String, Station)],
-    axis: &Axis,
+    axis: &mut Axis,
     stock: &[(String, f64)],
     warnings: &mut Vec<Warning>,
 ) -> Vec<(String, f64)> {
     let mut kept = Vec::new();
     for (name, length_m) in stock {
-        match fault(stations, &axis.target, *length_m, None) {
+        match fault(stations, &axis.target, *length_m, None, &mut axis.extents) {
             None => kept.push((name.clone(), *length_m)),
             Some(fault) => warnings
                 .push(left_out(&axis.target, &format!("{name} from the stock cannot be built here: {}", fault.reason))),

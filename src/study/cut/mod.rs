@@ -51,6 +51,8 @@ pub struct Question {
     pub method: Method,
     /// Mesh density.
     pub density: Density,
+    /// Whether the trim rule is wanted: for a single frequency it takes a solve at one more beside it.
+    pub trim: bool,
 }
 
 /// How a scan is computed.
@@ -99,17 +101,16 @@ pub fn variants_of(document: &Document, catalogue: &dyn Catalogue) -> Result<Vec
 /// # Errors
 /// [`CutFailure`] when the question cannot be meant or a solution fails.
 pub fn cut(stations: &[(String, Station)], question: &Question) -> Result<CutOutcome, CutFailure> {
-    let (first, second) = axes(stations, question)?;
+    let (mut first, second) = axes(stations, question)?;
     let mut warnings = first.warnings.clone();
     warnings.extend(second.iter().flat_map(|s| s.warnings.clone()));
-    let stock = lengths::stock(stations, &first, &question.stock, &mut warnings);
-    let extra: Vec<f64> = stock.iter().map(|s| s.1).collect();
-    let scan = Scan::new(stations, &first, second.as_ref(), &extra, question)?;
+    let stock = lengths::stock(stations, &mut first, &question.stock, &mut warnings);
+    let scan = Scan::new(stations, &first, second.as_ref(), question)?;
     let grid = scan.grid(&first.lengths_m, second.as_ref().map(|s| s.lengths_m.as_slice()))?;
     let judged = judge::judge(&scan, &grid, &first, second.as_ref());
     let chosen = judged.picks.first().map_or((first.present_m, None), |p| (p.length_m, p.second_length_m));
     let stock = judge::stock(&scan, &stock, chosen.1)?;
-    let trim = trim::rule(&scan, &grid, (&first, second.as_ref()), chosen)?;
+    let trim = if question.trim { trim::rule(&scan, &grid, (&first, second.as_ref()), chosen)? } else { Vec::new() };
     for warning in &scan.nominal().warnings {
         if !warnings.contains(warning) {
             warnings.push(warning.clone());

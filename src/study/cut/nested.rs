@@ -17,6 +17,7 @@ use nalgebra::DMatrix;
 use num_complex::Complex64;
 use rayon::prelude::*;
 use std::collections::HashMap;
+use std::hash::{BuildHasherDefault, Hasher};
 
 /// Largest residual, relative to the right side, of an answer that stands.
 const MOST_RESIDUAL: f64 = 1e-9;
@@ -30,8 +31,6 @@ struct Placed {
     mesh: Mesh,
 }
 
-/// An element by where it lies, so that it is recognised in the mesh of another length.
-type ElementKey = (usize, usize, [i64; 8]);
 /// An unknown by the elements it lives on and how, mixed into one number.
 type UnknownKey = u64;
 
@@ -148,17 +147,40 @@ impl Placed {
     }
 }
 
-fn element_key(e: &Element) -> ElementKey {
-    let fine = |x: f64| (x * 1e7).round() as i64;
+/// An element by where it lies, so that it is recognised in the mesh of another length, mixed into one number.
+fn element_key(e: &Element) -> u64 {
+    let fine = |x: f64| (x * 1e7).round() as i64 as u64;
     let at = [e.from_m, e.to_m, e.start.x, e.start.y, e.start.z, e.end.x, e.end.y, e.end.z];
-    (e.conductor, e.degree, at.map(fine))
+    let first = mixed((e.conductor as u64) << 8 | e.degree as u64);
+    at.into_iter().fold(first, |key, x| mixed(key ^ fine(x)))
+}
+
+/// A map by numbers that are spread over 64 bits already.
+type Mixed<T> = HashMap<u64, T, BuildHasherDefault<Plain>>;
+
+/// Takes a number as its own hash.
+#[derive(Debug, Default)]
+struct Plain(u64);
+
+impl Hasher for Plain {
+    fn finish(&self) -> u64 {
+        self.0
+    }
+
+    fn write(&mut self, bytes: &[u8]) {
+        bytes.iter().for_each(|b| self.0 = mixed(self.0 ^ u64::from(*b)));
+    }
+
+    fn write_u64(&mut self, value: u64) {
+        self.0 = value;
+    }
 }
 
 /// For every unknown of a mesh: its key, and its level (`None` where it lives on an element that has none).
-fn unknown_keys(mesh: &Mesh, ids: &[usize], levels: &HashMap<usize, usize>) -> Vec<(UnknownKey, Option<usize>)> {
+fn unknown_keys(mesh: &Mesh, ids: &[usize], levels: &[Option<usize>]) -> Vec<(UnknownKey, Option<usize>)> {
     let mut out = vec![(0_u64, Some(0)); mesh.unknowns];
     for (element, id) in mesh.elements.iter().zip(ids) {
-        let level = levels.get(id).copied();
+        let level = levels[*id];
         element.each_unknown(|unknown, factors| {
             let how = factors.iter().fold(0_u64, |code, f| code * 16 + (4.0 * f + 8.0) as u64);
             let (key, highest) = &mut out[unknown];
@@ -185,7 +207,7 @@ impl Family {
             return (None, group);
         }
         group.sort_by_key(|p| p.index);
-        let mut known: HashMap<ElementKey, usize> = HashMap::new();
+        let mut known: Mixed<usize> = Mixed::default();
         let ids: Vec<Vec<usize>> = group
             .iter()
             .map(|p| {
@@ -206,7 +228,7 @@ impl Family {
         let mut order: Vec<(usize, usize)> =
             master_keys.iter().enumerate().filter_map(|(u, (_, level))| Some(((*level)?, u))).collect();
         order.sort_unstable();
-        let places: HashMap<UnknownKey, (usize, usize)> =
+        let places: Mixed<(usize, usize)> =
             order.iter().enumerate().map(|(place, &(level, u))| (master_keys[u].0, (level, place))).collect();
         let with_image = group[master].layout.earth != Earth::None;
         let layout = group[master].layout.clone();
@@ -215,7 +237,8 @@ impl Family {
         let interaction = Interaction::new(group[master].mesh.clone(), with_image);
         let statics = interaction.statics();
         let common: Common = (&levels, &order, &places);
-        let twins: HashMap<usize, usize> = ids[master].iter().enumerate().map(|(k, id)| (*id, k)).collect();
+        let mut twins = vec![None; known.len()];
+        ids[master].iter().enumerate().for_each(|(k, id)| twins[*id] = Some(k));
         let split: Vec<Result<Border, Box<Placed>>> =
             group.into_iter().zip(&ids).map(|(placed, ids)| Border::new(placed, ids, common, &twins)).collect();
         let (mut borders, mut alone) = (Vec::new(), Vec::new());
@@ -294,14 +317,12 @@ impl Family {
 }
 
 /// How far out along the scanned conductors each shared element of the longest lies: 0 where all lengths have it.
-fn levels(mesh: &Mesh, ids: &[usize], count: &[usize], members: usize) -> HashMap<usize, usize> {
-    let mut out = HashMap::new();
+fn levels(mesh: &Mesh, ids: &[usize], count: &[usize], members: usize) -> Vec<Option<usize>> {
+    let mut out = vec![None; count.len()];
     let mut outward: Vec<(f64, usize)> = Vec::new();
     for (element, &id) in mesh.elements.iter().zip(ids) {
         match count[id] {
-            n if n == members => {
-                out.insert(id, 0);
-            }
+            n if n == members => out[id] = Some(0),
             1 => {}
             _ => outward.push((element.from_m, id)),
         }
@@ -314,13 +335,13 @@ fn levels(mesh: &Mesh, ids: &[usize], count: &[usize], members: usize) -> HashMa
             level += 1;
             last_m = from_m;
         }
-        out.insert(id, level);
+        out[id] = Some(level);
     }
     out
 }
 
 /// Levels of elements, places of the longest's unknowns in order with their levels, and the places by unknown.
-type Common<'a> = (&'a HashMap<usize, usize>, &'a [(usize, usize)], &'a HashMap<UnknownKey, (usize, usize)>);
+type Common<'a> = (&'a [Option<usize>], &'a [(usize, usize)], &'a Mixed<(usize, usize)>);
 
 impl Border {
     /// A length against the common part; given back where it does not nest.
@@ -328,13 +349,14 @@ impl Border {
         placed: Placed,
         ids: &[usize],
         (levels, order, known): Common,
-        twins: &HashMap<usize, usize>,
+        twins: &[Option<usize>],
     ) -> Result<Self, Box<Placed>> {
-        let here: std::collections::HashSet<usize> = ids.iter().copied().collect();
+        let mut here = vec![false; levels.len()];
+        ids.iter().for_each(|id| here[*id] = true);
         // the outermost level up to which every element is here
-        let missing = levels.iter().filter(|(id, _)| !here.contains(id)).map(|(_, level)| *level).min();
+        let missing = levels.iter().zip(&here).filter(|(_, here)| !**here).filter_map(|(level, _)| *level).min();
         let below = missing.unwrap_or(usize::MAX);
-        let mut is_new: Vec<bool> = ids.iter().map(|id| levels.get(id).is_none_or(|level| *level >= below)).collect();
+        let mut is_new: Vec<bool> = ids.iter().map(|id| levels[*id].is_none_or(|level| level >= below)).collect();
         let leading = order.partition_point(|(level, _)| *level < below);
         let keys = unknown_keys(&placed.mesh, ids, levels);
         let mut places = vec![usize::MAX; keys.len()];
@@ -358,7 +380,7 @@ impl Border {
         for (k, element) in placed.mesh.elements.iter().enumerate() {
             element.each_unknown(|u, _| is_new[k] |= places[u] >= leading);
         }
-        let twins = ids.iter().map(|id| twins.get(id).copied()).collect();
+        let twins = ids.iter().map(|id| twins[*id]).collect();
         Ok(Self { placed, is_new, places, leading, twins })
     }
 }

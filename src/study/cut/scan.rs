@@ -76,7 +76,6 @@ impl Scan {
         stations: &[(String, Station)],
         first: &Axis,
         second: Option<&Axis>,
-        extra_m: &[f64],
         question: &Question,
     ) -> Result<Self, CutFailure> {
         let present = Layout::place(&stations[0].1).map_err(|faults| refused(&stations[0].1, faults))?;
@@ -85,23 +84,17 @@ impl Scan {
         if highest_hz <= 0.0 {
             return Err(Failure::NoFrequency.into());
         }
-        let ends = |axis: &Axis| [axis.lengths_m[0], axis.anchor_m()];
-        let mut extents = Vec::new();
-        for (_, station) in stations {
-            let firsts = first.lengths_m.iter().chain(extra_m).copied().chain([first.present_m]);
-            let seconds = second.map_or_else(|| vec![None], |s| ends(s).into_iter().map(Some).collect());
-            let mut extent: Option<Extent> = None;
-            for length_m in firsts {
-                for other_m in &seconds {
-                    let mut sets = vec![(&first.target, length_m)];
-                    sets.extend(second.zip(*other_m).map(|(s, m)| (&s.target, m)));
-                    if let Ok(layout) = lengths::place(station, &sets) {
-                        let one = Extent::of(&layout);
-                        extent = Some(extent.map_or(one, |all| all.union(one)));
+        let mut extents = first.extents.clone();
+        if let Some(second) = second {
+            for ((_, station), extent) in stations.iter().zip(&mut extents) {
+                for (one_m, other_m) in
+                    first.lengths_m.iter().flat_map(|l| second.lengths_m.iter().map(move |s| (*l, *s)))
+                {
+                    if let Ok(layout) = lengths::place(station, &[(&first.target, one_m), (&second.target, other_m)]) {
+                        *extent = extent.union(Extent::of(&layout));
                     }
                 }
             }
-            extents.push(extent.unwrap_or_else(|| Extent::of(&present)));
         }
         let list = stations
             .par_iter()
