@@ -8,7 +8,7 @@ use num_complex::Complex64;
 use thiserror::Error;
 
 /// Samples taken before anything is known.
-const FIRST_SAMPLES: usize = 9;
+const FIRST_SAMPLES: usize = 8;
 /// Samples added at a time: two, so that a second core has work.
 const MORE_SAMPLES: usize = 2;
 /// Places between two neighbouring samples where fits are compared.
@@ -111,6 +111,8 @@ impl Curve {
 /// - `tolerance`: relative, as [`Curve::error_estimate`].
 /// - `max_samples`: never more than this many points are asked for (but six in any case).
 ///
+/// See [`adaptive_from`] for another number of first points.
+///
 /// # Output
 /// A curve, also when the samples ran out: [`Curve::converged`] says so.
 ///
@@ -122,9 +124,23 @@ impl Curve {
 /// - [`CurveError::Range`] for an empty or reversed range.
 /// - [`CurveError::Shape`] where the sampler gives other than what was asked, or values that are not finite.
 pub fn adaptive<E>(
-    mut sampler: impl FnMut(&[f64]) -> Result<Vec<Vec<Complex64>>, E>,
+    sampler: impl FnMut(&[f64]) -> Result<Vec<Vec<Complex64>>, E>,
     low: f64,
     high: f64,
+    tolerance: f64,
+    max_samples: usize,
+) -> Result<Curve, CurveError<E>> {
+    adaptive_from(FIRST_SAMPLES, sampler, (low, high), tolerance, max_samples)
+}
+
+/// As [`adaptive`], with the number of Chebyshev points to start from.
+///
+/// # Errors
+/// As [`adaptive`].
+pub fn adaptive_from<E>(
+    first_samples: usize,
+    mut sampler: impl FnMut(&[f64]) -> Result<Vec<Vec<Complex64>>, E>,
+    (low, high): (f64, f64),
     tolerance: f64,
     max_samples: usize,
 ) -> Result<Curve, CurveError<E>> {
@@ -134,7 +150,7 @@ pub fn adaptive<E>(
     let (centre, half_width) = ((low + high) / 2.0, (high - low) / 2.0);
     let max_samples = max_samples.max(FEWEST_SAMPLES);
     let mut taken = Samples::default();
-    taken.take(&mut sampler, &chebyshev(FIRST_SAMPLES.min(max_samples)), centre, half_width)?;
+    taken.take(&mut sampler, &chebyshev(first_samples.clamp(2, max_samples)), centre, half_width)?;
     loop {
         let measure = Measure::new(&taken.values);
         let fit = Barycentric::fit(&taken.points, &taken.values, &measure, FIT_TIGHTER * tolerance);
