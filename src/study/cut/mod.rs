@@ -88,9 +88,9 @@ impl From<ChainError> for CutFailure {
 /// The station as written, named "nominal", and its variants.
 ///
 /// # Errors
-/// [`Refused`] with the faults of the station.
+/// [`Refused`] with the faults of the station, or else those of its variants.
 pub fn variants_of(document: &Document, catalogue: &dyn Catalogue) -> Result<Vec<(String, Station)>, Refused> {
-    Ok(vec![("nominal".to_owned(), document.station(catalogue)?)])
+    document.stations(catalogue)
 }
 
 /// Scan lengths.
