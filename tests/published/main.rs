@@ -11,6 +11,7 @@ mod halfspace;
 mod horizontal;
 mod independent;
 mod metal;
+mod near_field;
 mod network;
 mod rational;
 mod rods;

@@ -57,5 +57,8 @@ fn a_buried_wire_has_dwights_resistance() {
         let middle = Junction { position: Point::new(0.0, 0.0, -0.1), members: vec![(0, 0), (1, 0)], to_earth: false };
         let solved = resistance(vec![wire(half), wire(-half)], vec![middle], 100.0);
         assert!((solved / wanted - 1.0).abs() < 0.04, "{whole} m: {solved} against {wanted}");
+        // Sunde 1949 (form from memory): R = ρ/(πL) (ln(2L/√(2ad)) − 1), whole length L, depth d
+        let sunde = 100.0 / (std::f64::consts::PI * whole) * ((2.0 * whole / (2.0_f64 * 1e-3 * 0.1).sqrt()).ln() - 1.0);
+        assert!((solved / sunde - 1.0).abs() < 0.04, "{whole} m: {solved} against {sunde}");
     }
 }
