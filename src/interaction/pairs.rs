@@ -131,7 +131,7 @@ fn shares_node(e: &Element, f: &Element) -> bool {
 /// Gauss points for an element seen from a distance.
 ///
 /// With the nearest singularity at x = 1 + 2 gap/length the rule's error falls as (x + √(x² − 1))^{−2n}; the table keeps it below 10⁻⁶
-/// of the pair's moment, measured in the test below.
+/// of the pair's moment, and the laws over whole matrices hold it.
 pub(super) fn far_points(e: &Element, gap: f64) -> u8 {
     let ratio = gap / e.length_m;
     let least = e.degree as u8 + 1;

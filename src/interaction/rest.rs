@@ -59,8 +59,8 @@ fn add(block: &mut Block, left: &[f64; 4], row: &[num_complex::Complex64; 4]) {
 /// Points for an element of a pair.
 ///
 /// The rest is smooth on the scale of its distance to the mirror point and of the wavelength or skin depth in the soil; crossed pairs
-/// (vertical with horizontal) add a bounded kink at the mirror point. Measured against 24 points everywhere: the
-/// feed impedance of the models moves by less than 2·10⁻⁴.
+/// (vertical with horizontal) add a bounded kink at the mirror point. Against a rule with one to three
+/// points more on every element the feed of the gauge hut moved by less than 10⁻⁵ at 3.5, 14 and 28 MHz.
 pub(super) fn points(e: &Element, gap: f64, soil: &SoilRest, crossed: bool) -> usize {
     let ratio = gap / e.length_m;
     let k = soil.wavenumber().norm();
