@@ -43,7 +43,7 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
     }
     let sizes: Vec<usize> = rows.iter().map(|r| r.0).collect();
     let lapack = lapack_seconds(&sizes);
-    println!("station: {}; {} processor", station_name(&layout), braidwise::interaction::kernel::instruction_set());
+    println!("station: {}; {} processor", station_name(&layout), braidwise::processor::instruction_set());
     println!("unknowns  once a mesh ms   fill ms  factor ms  zgetrf ms  factor/zgetrf  fill/factor  matrix MB");
     for (k, (n, prepare, fill, factor)) in rows.iter().enumerate() {
         let reference = lapack.as_ref().and_then(|l| l.get(k)).copied();

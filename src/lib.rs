@@ -18,6 +18,8 @@ pub mod layout;
 
 pub mod mesh;
 
+pub mod processor;
+
 pub mod halfspace;
 
 pub mod interaction;

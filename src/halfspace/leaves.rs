@@ -4,6 +4,7 @@ use super::chebyshev::monomials;
 use super::patch::Patch;
 use super::spectral_sum::LANES;
 use super::tensor::{Halvings, Tensor};
+use crate::processor::mul_add;
 
 /// Total degree of a leaf's polynomial.
 pub(super) const DEGREE: usize = 5;
@@ -26,8 +27,8 @@ pub(super) struct Leaf {
 
 impl Leaf {
     /// The polynomials at (ρ, ζ).
-    #[inline]
-    pub(super) fn eval(&self, rho_m: f64, zeta_m: f64) -> [f64; LANES] {
+    #[inline(always)]
+    pub(super) fn eval<const FMA: bool>(&self, rho_m: f64, zeta_m: f64) -> [f64; LANES] {
         let x = (rho_m - self.rho_m) * self.per_rho;
         let y = (zeta_m - self.zeta_m) * self.per_zeta;
         let mut out = self.terms[TERMS - 1];
@@ -38,12 +39,12 @@ impl Leaf {
             for i in 1..=count {
                 let term = &self.terms[last - 1 - i];
                 for lane in 0..LANES {
-                    row[lane] = row[lane] * x + term[lane];
+                    row[lane] = mul_add::<FMA>(row[lane], x, term[lane]);
                 }
             }
             last -= count + 1;
             for lane in 0..LANES {
-                out[lane] = out[lane] * y + row[lane];
+                out[lane] = mul_add::<FMA>(out[lane], y, row[lane]);
             }
         }
         out
@@ -147,7 +148,7 @@ impl Leaves {
     }
 
     /// The leaf at a point of the patch (or the nearest one).
-    #[inline]
+    #[inline(always)]
     pub(super) fn at(&self, rho_m: f64, zeta_m: f64) -> &Leaf {
         let i = ((rho_m - self.low.0) * self.cells_per_m.0) as usize;
         let j = ((zeta_m - self.low.1) * self.cells_per_m.1) as usize;

@@ -37,7 +37,7 @@ impl LossTable {
     /// The kernels at (ρ, ζ), metres, without `charge`'s [`HalfSpace::loss_image`] over R'.
     #[must_use]
     pub fn remainder(&self, rho_m: f64, zeta_m: f64) -> LossKernels {
-        let [across, up, charge, up_charge, ..] = self.shells.eval(rho_m, zeta_m);
+        let [across, up, charge, up_charge, ..] = self.shells.eval::<false>(rho_m, zeta_m);
         LossKernels { across, up, charge, up_charge }
     }
 

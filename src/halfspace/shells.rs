@@ -43,7 +43,7 @@ struct Block {
 }
 
 impl Block {
-    #[inline]
+    #[inline(always)]
     fn at(&self, rho_m: f64, zeta_m: f64) -> &Leaves {
         if self.leaves.len() == 1 {
             return &self.leaves[0];
@@ -58,7 +58,7 @@ impl Block {
 const MOST_POINTS: usize = 44;
 
 /// A shell's number is the binary exponent of the larger of ρ and ζ, suitably scaled.
-#[inline]
+#[inline(always)]
 fn shell_of(size: f64) -> i64 {
     (size.to_bits() >> 52) as i64 - 1023
 }
@@ -109,7 +109,7 @@ impl Shells {
         self.patches.iter().flatten().flat_map(|block| &block.leaves).map(|piece| piece.leaves.len()).sum()
     }
 
-    #[inline]
+    #[inline(always)]
     fn leaves(&self, rho_m: f64, zeta_m: f64) -> Option<(&Leaves, f64, f64)> {
         let (mut rho, mut zeta) = (rho_m, zeta_m);
         let mut size = rho.max(zeta);
@@ -125,10 +125,10 @@ impl Shells {
     }
 
     /// The functions; zero outside the box where no polynomial is.
-    #[inline]
-    pub(super) fn eval(&self, rho_m: f64, zeta_m: f64) -> [f64; LANES] {
+    #[inline(always)]
+    pub(super) fn eval<const FMA: bool>(&self, rho_m: f64, zeta_m: f64) -> [f64; LANES] {
         match self.leaves(rho_m, zeta_m) {
-            Some((leaves, rho, zeta)) => leaves.at(rho, zeta).eval(rho, zeta),
+            Some((leaves, rho, zeta)) => leaves.at(rho, zeta).eval::<FMA>(rho, zeta),
             None => [0.0; LANES],
         }
     }

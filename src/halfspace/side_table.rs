@@ -74,10 +74,15 @@ impl SideTable {
     }
 
     /// The remainders xx, zz, phi, p_rho at (ρ, ζ), metres. Outside the box the value is an extrapolation, or zero.
-    #[inline]
     #[must_use]
     pub fn eval(&self, rho_m: f64, zeta_m: f64) -> [Complex64; 4] {
-        self.four(self.shells.eval(rho_m, zeta_m))
+        self.eval_inlined::<false>(rho_m, zeta_m)
+    }
+
+    /// [`Self::eval`] as a part of work that [`crate::processor`] compiles.
+    #[inline(always)]
+    pub(crate) fn eval_inlined<const FMA: bool>(&self, rho_m: f64, zeta_m: f64) -> [Complex64; 4] {
+        self.four(self.shells.eval::<FMA>(rho_m, zeta_m))
     }
 
     /// [`Self::eval`] for many pairs; `out` must be as long as the distances.
@@ -94,7 +99,7 @@ impl SideTable {
         self.shells.eval_gradient(rho_m, zeta_m).map(|v| self.four(v))
     }
 
-    #[inline]
+    #[inline(always)]
     fn four(&self, v: [f64; 6]) -> [Complex64; 4] {
         let (xx, q, p) = (Complex64::new(v[0], v[1]), Complex64::new(v[2], v[3]), Complex64::new(v[4], v[5]));
         [xx, xx + self.zz_from_q * q, q * self.phi_from_q, p]

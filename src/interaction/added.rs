@@ -1,18 +1,22 @@
 //! The columns that a few new elements add to a system already known.
 //!
 //! New elements and those near them are paired as everywhere. Seen from further away, a straight run of new elements is one line on
-//! which the kernels are smooth: they are evaluated at its Gauss nodes only and interpolated, whatever the elements on it. The
-//! rest of the soil's potentials is integrated pair by pair, as in the full matrix.
+//! which the kernels are smooth: they are evaluated at its Gauss nodes only and interpolated, whatever the elements on it.
 
-use super::fill::{Interaction, Legendre, Matrix, UnknownMap, add_local, combine, region_of};
+use super::assembly::add_metal_loss;
+use super::block::SIDE;
+use super::fill::{Interaction, Matrix, UnknownMap, region_of};
 use super::kernel::{LINE_POINTS, LineMoments, MOST_POINTS, line_moments};
+use super::lagrange::stretch_weights;
 use super::line::{Line, Tubes, clearance, tubes};
 use super::pairs::{Statics, far_points};
 use super::probe::{Spot, slope, value_weights};
 use super::quadrature::{gauss, legendre};
-use super::rest;
-use super::surroundings::Surroundings;
+use super::rest::{Kernels, points as rest_points};
+use super::surroundings::{Family, SoilRest, Surroundings};
+use crate::halfspace::Region;
 use crate::mesh::{Element, MAX_DEGREE, Mesh};
+use crate::processor::{Vectorised, widest};
 use faer::linalg::matmul::matmul;
 use faer::{Accum, Mat, Par};
 use num_complex::Complex64;
@@ -106,7 +110,7 @@ impl Added {
             ports: Vec::new(),
             conductor_elements: Vec::new(),
         };
-        let close = Interaction::among(close, with_image, known, |i, _| i < new_count);
+        let close = Interaction::among(close, with_image, known, new_count);
         let placed = |e: &Element| {
             let mut map = e.legendre_map();
             map.iter_mut().for_each(|(unknown, _)| *unknown = places[*unknown]);
@@ -156,7 +160,7 @@ impl Added {
         let wanted: Vec<Spot> = local.iter().map(|l| l.1).collect();
         let (mut block, rows) = self.close.gather(earth, &wanted, &maps, used.len());
         for (element, map) in self.close.mesh().elements.iter().zip(&maps).take(self.new_count) {
-            add_local(element, map, earth, &mut block);
+            add_metal_loss(element, map, earth.air().angular, &mut block);
         }
         for (j, &v) in used.iter().enumerate().filter(|(_, v)| **v >= self.leading) {
             for (i, &u) in used.iter().enumerate() {
@@ -183,7 +187,8 @@ impl Added {
         let mut probes: Vec<(usize, [Complex64; NODES])> = Vec::new();
         for &k in &self.far_ids {
             let e = &mesh.elements[k];
-            let (current, potential) = self.kernels(e, run, earth);
+            let sight = Sight { element: e, run, earth, with_image: self.with_image };
+            let (current, potential) = widest(sight);
             for &(u, factors) in &self.maps[k] {
                 let charge = slope(&factors);
                 for q in 0..NODES {
@@ -261,7 +266,6 @@ impl Added {
                 }
             }
         }
-        self.soil_pairs(elements, (earth, spots), z, potentials);
     }
 
     /// How the further unknowns lie on the nodes of a run: currents (times length; the charges' half left empty), and charges.
@@ -283,106 +287,91 @@ impl Added {
         }
         (laid, charges)
     }
+}
 
-    /// Means over an element of P_a times the kernels of the closed-form families, at the nodes of a run.
-    fn kernels(
-        &self,
-        e: &Element,
-        run: &Run,
-        earth: &Surroundings,
-    ) -> ([[Complex64; NODES]; 4], [[Complex64; NODES]; 4]) {
-        let mut current = [[Complex64::ZERO; NODES]; 4];
-        let mut potential = current;
-        let rule = gauss(NODES);
-        for family in earth.families() {
-            if region_of(e, &run.line) != family.region || family.mirrored && !self.with_image {
-                continue;
-            }
-            let line = if family.mirrored { Line::mirrored(&run.line) } else { Line::of(&run.line) };
-            let one = Line::of(e);
-            let offset_m2 = match tubes(&one, &line, false) {
-                Tubes::Offset(c2) => c2,
-                Tubes::Coaxial => e.radius_m.powi(2) + run.line.radius_m.powi(2),
-            };
-            let points = gauss(usize::from(far_points(e, clearance(&one, &line))).clamp(e.degree + 1, MOST_POINTS));
-            let nodes: [_; NODES] = std::array::from_fn(|q| line.at(rule.nodes[q]));
-            let (t, u) = (e.tangent, run.line.tangent);
-            let w = family.weight;
-            let along = w.horizontal * (t.x * u.x + t.y * u.y) + w.vertical * (t.z * u.z);
-            let places = std::array::from_fn(|axis| std::array::from_fn(|q| nodes[q][axis]));
-            let (mut at, mut left) = ([[0.0; 3]; MOST_POINTS], [[0.0; 4]; MOST_POINTS]);
-            let count = points.nodes.len();
-            for (n, (xi, weight)) in points.nodes.iter().zip(&points.weights).enumerate() {
-                at[n] = one.at(*xi).into();
-                left[n] = legendre(*xi).map(|x| 0.5 * weight * x);
-            }
-            let k = (family.k.re, -family.k.im);
-            let sums: LineMoments = line_moments((&at[..count], &left[..count]), &places, offset_m2, k);
-            for a in 0..=MAX_DEGREE {
-                for q in 0..NODES {
-                    let g = Complex64::new(sums[a][0][q], sums[a][1][q]);
-                    current[a][q] += along * g;
-                    potential[a][q] += w.potential * g;
-                }
+/// Means over an element of P_a times the kernels, vector potential (its component along the run) and scalar potential.
+type NodeKernels = ([[Complex64; NODES]; SIDE], [[Complex64; NODES]; SIDE]);
+
+/// [`NodeKernels`] of an element at the nodes of a run, as work for the processor.
+struct Sight<'a> {
+    element: &'a Element,
+    run: &'a Run,
+    earth: &'a Surroundings,
+    with_image: bool,
+}
+
+impl Vectorised for Sight<'_> {
+    type Output = NodeKernels;
+
+    #[inline(always)]
+    fn run<const FMA: bool>(self) -> NodeKernels {
+        let mut out = ([[Complex64::ZERO; NODES]; SIDE], [[Complex64::ZERO; NODES]; SIDE]);
+        for family in self.earth.families() {
+            let is_here = region_of(self.element, &self.run.line) == family.region;
+            if is_here && (self.with_image || !family.mirrored) {
+                self.add_family::<FMA>(&family, &mut out);
             }
         }
-        (current, potential)
-    }
-
-    /// The rest of the soil's potentials between new elements and those far from them.
-    fn soil_pairs(
-        &self,
-        elements: &[Element],
-        (earth, spots): (&Surroundings, &[Spot]),
-        z: &mut Matrix,
-        potentials: &mut [Vec<Complex64>],
-    ) {
-        let Some(soil) = earth.soil() else { return };
-        let medium = earth.air();
-        let all = z.nrows();
-        for &new in &self.close_ids[..self.new_count] {
-            let f = &elements[new];
-            let map = &self.maps[new];
-            for &k in &self.far_ids {
-                let e = &elements[k];
-                // in the order of the full matrix, so that the rule is the same
-                let (first, second) = if k < new { (e, f) } else { (f, e) };
-                let blocks = rest::blocks(first, second, soil, region_of(first, second));
-                let area = medium.magnetic() * (e.length_m * f.length_m);
-                let block = combine(&blocks.current, area, &blocks.potential, medium.electric() * 4.0);
-                let other = &self.maps[k];
-                let turned = k >= new;
-                for (v, y) in map.iter().filter(|(v, _)| *v >= self.leading) {
-                    let column = applied(&block, y, turned);
-                    for (u, x) in other {
-                        let value: Complex64 = (0..=MAX_DEGREE).map(|a| column[a] * x[a]).sum();
-                        debug_assert!(*u < all);
-                        z[(*u, v - self.leading)] += value;
-                    }
-                }
-                for (spot, row) in spots.iter().zip(potentials.iter_mut()) {
-                    let factor = -2.0 * medium.electric();
-                    let w = value_weights(spot.xi);
-                    if spot.element == k {
-                        for (v, y) in map.iter().filter(|(v, _)| *v >= self.leading) {
-                            let column = applied(&blocks.potential, &slope(y), turned);
-                            row[*v] += factor * (0..=MAX_DEGREE).map(|a| column[a] * w[a]).sum::<Complex64>();
-                        }
-                    } else if spot.element == new {
-                        for (u, x) in other {
-                            let column = applied(&blocks.potential, &slope(x), !turned);
-                            row[*u] += factor * (0..=MAX_DEGREE).map(|a| column[a] * w[a]).sum::<Complex64>();
-                        }
-                    }
-                }
-            }
+        if let Some(soil) = self.earth.soil() {
+            self.add_rest::<FMA>(soil, &mut out);
         }
+        out
     }
 }
 
-/// A block applied to coefficients of its second element, or of its first where turned.
-fn applied(block: &super::fill::Block, y: &[f64; MAX_DEGREE + 1], turned: bool) -> Legendre {
-    std::array::from_fn(|a| (0..=MAX_DEGREE).map(|b| if turned { block[b][a] } else { block[a][b] } * y[b]).sum())
+impl Sight<'_> {
+    #[inline(always)]
+    fn add_family<const FMA: bool>(&self, family: &Family, (current, potential): &mut NodeKernels) {
+        let (e, run) = (self.element, &self.run.line);
+        let line = if family.mirrored { Line::mirrored(run) } else { Line::of(run) };
+        let one = Line::of(e);
+        let offset_m2 = match tubes(&one, &line, false) {
+            Tubes::Offset(c2) => c2,
+            Tubes::Coaxial => e.radius_m.powi(2) + run.radius_m.powi(2),
+        };
+        let count = usize::from(far_points(e, clearance(&one, &line))).clamp(e.degree + 1, MOST_POINTS);
+        let (points, rule) = (gauss(count), gauss(NODES));
+        let nodes: [_; NODES] = std::array::from_fn(|q| line.at(rule.nodes[q]));
+        let (t, u) = (e.tangent, run.tangent);
+        let w = family.weight;
+        let along = w.horizontal * (t.x * u.x + t.y * u.y) + w.vertical * (t.z * u.z);
+        let places = std::array::from_fn(|axis| std::array::from_fn(|q| nodes[q][axis]));
+        let (mut at, mut left) = ([[0.0; 3]; MOST_POINTS], [[0.0; SIDE]; MOST_POINTS]);
+        for (n, (xi, weight)) in points.nodes.iter().zip(&points.weights).enumerate() {
+            at[n] = one.at(*xi).into();
+            left[n] = legendre(*xi).map(|x| 0.5 * weight * x);
+        }
+        let k = (family.k.re, -family.k.im);
+        let sums: LineMoments = line_moments::<FMA>((&at[..count], &left[..count]), &places, offset_m2, k);
+        for a in 0..SIDE {
+            for q in 0..NODES {
+                let g = Complex64::new(sums[a][0][q], sums[a][1][q]);
+                current[a][q] += along * g;
+                potential[a][q] += w.potential * g;
+            }
+        }
+    }
+
+    #[inline(always)]
+    fn add_rest<const FMA: bool>(&self, soil: &SoilRest, (current, potential): &mut NodeKernels) {
+        let (e, run) = (self.element, &self.run.line);
+        let region = region_of(e, run);
+        let kernels = Kernels::of(e, run, region);
+        let other = if region == Region::Across { Line::of(run) } else { Line::mirrored(run) };
+        let points = gauss(rest_points(e, clearance(&Line::of(e), &other), soil, kernels.crossed));
+        let rule = gauss(NODES);
+        for (xi, weight) in points.nodes.iter().zip(&points.weights) {
+            let here = e.at(*xi);
+            let left = legendre(*xi).map(|x| 0.5 * weight * x);
+            for q in 0..NODES {
+                let (c, p) = kernels.at::<FMA>(soil, here, run.at(rule.nodes[q]));
+                for a in 0..SIDE {
+                    current[a][q] += c * left[a];
+                    potential[a][q] += p * left[a];
+                }
+            }
+        }
+    }
 }
 
 /// New elements gathered into straight runs.
@@ -424,45 +413,7 @@ fn run(mesh: &Mesh, group: &[usize], reach_m: impl Fn(usize, f64) -> f64) -> Opt
         let from = 2.0 * (e.start - line.start).dot(&line.tangent) / line.length_m - 1.0;
         let to = 2.0 * (e.end - line.start).dot(&line.tangent) / line.length_m - 1.0;
         members.push((k, from, to));
-        weights.push(member_weights(from, to));
+        weights.push(stretch_weights(NODES, from, to));
     }
     Some(Run { line, members, weights })
-}
-
-/// Means over a stretch of a run of P_b times the Lagrange polynomials of its Gauss nodes.
-///
-/// ℓ_q(x) = w_q Σ_n (n + ½) P_n(x_q) P_n(x), exact for the Gauss rule's own nodes (discrete orthogonality).
-fn member_weights(from: f64, to: f64) -> [[f64; NODES]; MAX_DEGREE + 1] {
-    let nodes = gauss(NODES);
-    let rule = gauss((NODES + MAX_DEGREE).div_ceil(2));
-    let mut out = [[0.0; NODES]; MAX_DEGREE + 1];
-    for (eta, w) in rule.nodes.iter().zip(&rule.weights) {
-        let x = all_legendre(0.5 * ((1.0 - eta) * from + (1.0 + eta) * to));
-        let p = legendre(*eta);
-        for (q, weight) in nodes.weights.iter().enumerate() {
-            let terms = x.iter().zip(node_values(q)).enumerate();
-            let lagrange: f64 = weight * terms.map(|(n, (x, y))| (n as f64 + 0.5) * x * y).sum::<f64>();
-            for (row, p) in out.iter_mut().zip(p) {
-                row[q] += 0.5 * w * p * lagrange;
-            }
-        }
-    }
-    out
-}
-
-/// P_0..P_15 at a node.
-fn node_values(q: usize) -> &'static [f64; NODES] {
-    static VALUES: std::sync::OnceLock<Vec<[f64; NODES]>> = std::sync::OnceLock::new();
-    &VALUES.get_or_init(|| gauss(NODES).nodes.iter().map(|x| all_legendre(*x)).collect())[q]
-}
-
-/// P_0..P_15 at x.
-fn all_legendre(x: f64) -> [f64; NODES] {
-    let mut p = [1.0; NODES];
-    p[1] = x;
-    for n in 2..NODES {
-        let m = n as f64;
-        p[n] = ((2.0 * m - 1.0) * x * p[n - 1] - (m - 1.0) * p[n - 2]) / m;
-    }
-    p
 }

@@ -1,24 +1,10 @@
-//! e^{−jkR}/R for many distances at once, compiled for the processor it runs on.
+//! e^{−jkR}/R for many distances at once.
 //!
 //! The sine and cosine are branch-free polynomials after a three-part reduction by π/2 (Cody & Waite 1980; minimax
-//! coefficients of the fdlibm kernels), absolute error below 3·10⁻¹⁶ for arguments up to 10⁵. The same source is compiled for
-//! AVX-512, AVX2 and the baseline, and chosen at run time: the only `unsafe` of the program.
-#![allow(unsafe_code)]
+//! coefficients of the fdlibm kernels), absolute error below 3·10⁻¹⁶ for arguments up to 10⁵.
 
-/// Which instruction set the kernel was chosen for, e.g. "avx2".
-#[must_use]
-pub fn instruction_set() -> &'static str {
-    #[cfg(target_arch = "x86_64")]
-    {
-        if std::is_x86_feature_detected!("avx512f") {
-            return "avx512";
-        }
-        if std::is_x86_feature_detected!("avx2") && std::is_x86_feature_detected!("fma") {
-            return "avx2";
-        }
-    }
-    "baseline"
-}
+use super::block::{Block, SIDE};
+use crate::processor::{Vectorised, mul_add, widest};
 
 /// Squared distances to e^{−j(k − jα)R}/R.
 #[inline(always)]
@@ -49,36 +35,32 @@ pub(super) struct PointPair<'a> {
     /// The same on the second.
     pub(super) sources: &'a [Vec<f64>; 3],
     /// Weight times P_0..P_3 at each point of the first element.
-    pub(super) left: &'a [[f64; 4]],
+    pub(super) left: &'a [[f64; SIDE]],
     /// The same of the second.
-    pub(super) right: &'a [[f64; 4]],
+    pub(super) right: &'a [[f64; SIDE]],
     /// Added to every squared distance, m².
     pub(super) offset_m2: f64,
     /// Take the static part 1/R − k²R/2 out.
     pub(super) rest_only: bool,
 }
 
-/// Real and imaginary parts of a 4 × 4 block of moments.
-pub(super) type SplitBlock = ([[f64; 4]; 4], [[f64; 4]; 4]);
-
 /// Most points on one element.
 pub(super) const MOST_POINTS: usize = 8;
 const ROOM: usize = MOST_POINTS * MOST_POINTS;
 
-/// Σ_q Σ_r left_a right_b e^{−j(k − jα)R}/R for a pair of elements, 1/m; with `rest_only` less Σ (1/R − k²R/2).
-pub(super) fn pair_block(pair: &PointPair, k_per_m: f64, alpha_per_m: f64) -> SplitBlock {
-    #[cfg(target_arch = "x86_64")]
-    {
-        if std::is_x86_feature_detected!("avx512f") {
-            // SAFETY: the processor has AVX-512F, checked on the line above.
-            return unsafe { pair_avx512(pair, k_per_m, alpha_per_m) };
-        }
-        if std::is_x86_feature_detected!("avx2") && std::is_x86_feature_detected!("fma") {
-            // SAFETY: the processor has AVX2 and FMA, checked on the line above.
-            return unsafe { pair_avx2(pair, k_per_m, alpha_per_m) };
+/// [`pair_block`] by itself, compiled for the processor.
+pub(super) fn pair_moments(pair: &PointPair, k_per_m: f64, alpha_per_m: f64) -> Block {
+    struct Work<'a>(&'a PointPair<'a>, f64, f64);
+
+    impl Vectorised for Work<'_> {
+        type Output = Block;
+
+        #[inline(always)]
+        fn run<const FMA: bool>(self) -> Block {
+            pair_block::<FMA>(self.0, self.1, self.2)
         }
     }
-    pair_loop::<false>(pair, k_per_m, alpha_per_m)
+    widest(Work(pair, k_per_m, alpha_per_m))
 }
 
 /// Places on a line at which an element's field is wanted.
@@ -88,36 +70,9 @@ pub(super) const LINE_POINTS: usize = 16;
 pub(super) type LineMoments = [[[f64; LINE_POINTS]; 2]; 4];
 
 /// Σ_q left_a e^{−j(k − jα)R}/R at places u, v, w for points x, y, z of an element with their weights, 1/m.
-pub(super) fn line_moments(
-    points: (&[[f64; 3]], &[[f64; 4]]),
-    places: &[[f64; LINE_POINTS]; 3],
-    offset_m2: f64,
-    (k_per_m, alpha_per_m): (f64, f64),
-) -> LineMoments {
-    #[cfg(target_arch = "x86_64")]
-    {
-        if std::is_x86_feature_detected!("avx2") && std::is_x86_feature_detected!("fma") {
-            // SAFETY: the processor has AVX2 and FMA, checked on the line above.
-            return unsafe { line_avx2(points, places, offset_m2, (k_per_m, alpha_per_m)) };
-        }
-    }
-    line_loop::<false>(points, places, offset_m2, (k_per_m, alpha_per_m))
-}
-
-#[cfg(target_arch = "x86_64")]
-#[target_feature(enable = "avx2,fma")]
-fn line_avx2(
-    points: (&[[f64; 3]], &[[f64; 4]]),
-    places: &[[f64; LINE_POINTS]; 3],
-    offset_m2: f64,
-    k: (f64, f64),
-) -> LineMoments {
-    line_loop::<true>(points, places, offset_m2, k)
-}
-
 #[inline(always)]
-fn line_loop<const FMA: bool>(
-    (points, left): (&[[f64; 3]], &[[f64; 4]]),
+pub(super) fn line_moments<const FMA: bool>(
+    (points, left): (&[[f64; 3]], &[[f64; SIDE]]),
     [u, v, w]: &[[f64; LINE_POINTS]; 3],
     offset_m2: f64,
     (k, alpha): (f64, f64),
@@ -140,20 +95,9 @@ fn line_loop<const FMA: bool>(
     out
 }
 
-#[cfg(target_arch = "x86_64")]
-#[target_feature(enable = "avx512f")]
-fn pair_avx512(pair: &PointPair, k: f64, alpha: f64) -> SplitBlock {
-    pair_loop::<true>(pair, k, alpha)
-}
-
-#[cfg(target_arch = "x86_64")]
-#[target_feature(enable = "avx2,fma")]
-fn pair_avx2(pair: &PointPair, k: f64, alpha: f64) -> SplitBlock {
-    pair_loop::<true>(pair, k, alpha)
-}
-
+/// Σ_q Σ_r left_a right_b e^{−j(k − jα)R}/R for a pair of elements, 1/m; with `rest_only` less Σ (1/R − k²R/2).
 #[inline(always)]
-fn pair_loop<const FMA: bool>(pair: &PointPair, k: f64, alpha: f64) -> SplitBlock {
+pub(super) fn pair_block<const FMA: bool>(pair: &PointPair, k: f64, alpha: f64) -> Block {
     let (n, m) = (pair.left.len().min(MOST_POINTS), pair.right.len().min(MOST_POINTS));
     let [x, y, z] = pair.observers;
     let [u, v, w] = pair.sources;
@@ -178,7 +122,7 @@ fn pair_loop<const FMA: bool>(pair: &PointPair, k: f64, alpha: f64) -> SplitBloc
             im[i] += half_im * r;
         }
     }
-    let (mut out_re, mut out_im) = ([[0.0; 4]; 4], [[0.0; 4]; 4]);
+    let mut out = Block::ZERO;
     for q in 0..n {
         let (mut sum_re, mut sum_im) = ([0.0; 4], [0.0; 4]);
         for r in 0..m {
@@ -188,51 +132,33 @@ fn pair_loop<const FMA: bool>(pair: &PointPair, k: f64, alpha: f64) -> SplitBloc
                 sum_im[i] = mul_add::<FMA>(b, weights[i], sum_im[i]);
             }
         }
-        for a in 0..4 {
-            for b in 0..4 {
-                out_re[a][b] = mul_add::<FMA>(pair.left[q][a], sum_re[b], out_re[a][b]);
-                out_im[a][b] = mul_add::<FMA>(pair.left[q][a], sum_im[b], out_im[a][b]);
-            }
-        }
+        out.add_outer::<FMA>(&pair.left[q], &sum_re, &sum_im);
     }
-    (out_re, out_im)
+    out
 }
 
 /// Cosine and sine of many angles, any sign, |angle| < 10⁵; all slices of one length.
 pub fn cos_sin(angles_rad: &[f64], cos: &mut [f64], sin: &mut [f64]) {
-    #[cfg(target_arch = "x86_64")]
-    {
-        if std::is_x86_feature_detected!("avx2") && std::is_x86_feature_detected!("fma") {
-            // SAFETY: the processor has AVX2 and FMA, checked on the line above.
-            return unsafe { cos_sin_avx2(angles_rad, cos, sin) };
+    struct Work<'a>(&'a [f64], &'a mut [f64], &'a mut [f64]);
+
+    impl Vectorised for Work<'_> {
+        type Output = ();
+
+        #[inline(always)]
+        fn run<const FMA: bool>(self) {
+            let n = self.0.len().min(self.1.len()).min(self.2.len());
+            let (angles, cos, sin) = (&self.0[..n], &mut self.1[..n], &mut self.2[..n]);
+            for i in 0..n {
+                (sin[i], cos[i]) = sin_cos::<FMA>(angles[i]);
+            }
         }
     }
-    cos_sin_loop::<false>(angles_rad, cos, sin);
-}
-
-#[cfg(target_arch = "x86_64")]
-#[target_feature(enable = "avx2,fma")]
-fn cos_sin_avx2(angles: &[f64], cos: &mut [f64], sin: &mut [f64]) {
-    cos_sin_loop::<true>(angles, cos, sin);
-}
-
-#[inline(always)]
-fn cos_sin_loop<const FMA: bool>(angles: &[f64], cos: &mut [f64], sin: &mut [f64]) {
-    let n = angles.len().min(cos.len()).min(sin.len());
-    let (angles, cos, sin) = (&angles[..n], &mut cos[..n], &mut sin[..n]);
-    for i in 0..n {
-        (sin[i], cos[i]) = sin_cos::<FMA>(angles[i]);
-    }
-}
-
-#[inline(always)]
-fn mul_add<const FMA: bool>(a: f64, b: f64, c: f64) -> f64 {
-    if FMA { a.mul_add(b, c) } else { a * b + c }
+    widest(Work(angles_rad, cos, sin));
 }
 
 /// Sine and cosine of |x| < 10⁵.
 #[inline(always)]
-fn sin_cos<const FMA: bool>(x: f64) -> (f64, f64) {
+pub(super) fn sin_cos<const FMA: bool>(x: f64) -> (f64, f64) {
     // π/2 in three parts of 33, 33 and 53 bits
     const P1: f64 = 1.570_796_326_734_125_6;
     const P2: f64 = 6.077_100_506_303_966e-11;

@@ -4,7 +4,7 @@
 //! [`crate::field::FarField::downward_w`].
 
 use super::fill::{Interaction, Legendre, derive};
-use super::kernel::{PointPair, pair_block};
+use super::kernel::{PointPair, pair_moments};
 use super::quadrature::{gauss, legendre};
 use super::rest::points;
 use super::surroundings::{SoilRest, Surroundings};
@@ -74,7 +74,7 @@ impl Interaction {
                     offset_m2: pair.offset_m2,
                     rest_only: false,
                 };
-                pair_block(&points, 0.0, 0.0).0
+                pair_moments(&points, 0.0, 0.0).re
             }
         };
         let mut sum = 0.0;

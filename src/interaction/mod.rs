@@ -7,16 +7,21 @@
 //! - `quadrature`, `kernel`: Gauss rules and the vectorised wave
 //! - `line`, `near`, `pairs`: what depends only on geometry, kept for every frequency
 //! - `local`, `sleeve`: metal and jackets
-//! - `surroundings`: the earth at one frequency; `rest`: what soil adds beyond images; `loss`: what its near field takes
-//! - `fill`: the matrix at one frequency
+//! - `surroundings`: the earth at one frequency; `rest`: what soil adds beyond images, `group`, `lagrange`: the same from afar;
+//!   `loss`: what its near field takes
+//! - `walk`: all pairs with everything the earth does to them; `block`: the moments of a pair
+//! - `fill`: the matrix at one frequency, through `assembly`; `potential`, `probe`: potentials along all conductors, or at a few places
 //! - `factor`: its factorisation, checked
-//! - `probe`: potentials at a few places as rows over the unknowns
 //! - `added`, `leading`: the columns that a few further elements add, and a factorisation that serves every smaller system it begins with
 
 mod added;
+mod assembly;
+mod block;
 pub mod factor;
 mod fill;
+mod group;
 pub mod kernel;
+mod lagrange;
 mod leading;
 mod line;
 mod local;
@@ -24,17 +29,20 @@ mod loss;
 mod medium;
 mod near;
 mod pairs;
+mod potential;
 mod probe;
 pub mod quadrature;
 mod rest;
 mod sleeve;
 mod surroundings;
+mod walk;
 
 pub use added::{Added, Columns, Seen};
 pub use factor::{Factored, SingularMatrix};
-pub use fill::{Interaction, Legendre, Matrix, PotentialMap};
+pub use fill::{Interaction, Legendre, Matrix};
 pub use leading::{Bordered, Leading};
 pub use local::internal_impedance;
 pub use pairs::Statics;
+pub use potential::PotentialMap;
 pub use probe::Spot;
 pub use surroundings::{Extent, Surroundings};

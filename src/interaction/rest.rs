@@ -1,59 +1,87 @@
 //! What soil adds to a pair beyond e^{−jkR}/R: smooth kernels, integrated by plain product rules.
 
-use super::fill::{Block, PairBlocks, ZERO};
+use super::block::{PairBlocks, SIDE};
 use super::line::{Line, clearance};
 use super::quadrature::{gauss, legendre};
 use super::surroundings::SoilRest;
 use crate::halfspace::Region;
-use crate::mesh::{Element, MAX_DEGREE};
+use crate::layout::Point;
+use crate::mesh::Element;
+use crate::processor::mul_add;
+use num_complex::Complex64;
 
 /// Fewest points on an element; most points below it.
 const FEWEST: usize = 2;
 const MOST: usize = 24;
 
-/// Means over a pair of the soil's rest.
-pub(super) fn blocks(e: &Element, f: &Element, soil: &SoilRest, region: Region) -> PairBlocks {
-    let other = if region == Region::Across { Line::of(f) } else { Line::mirrored(f) };
-    let gap = clearance(&Line::of(e), &other);
-    let crossed = e.tangent.z.abs() * f.tangent.xy().norm() + f.tangent.z.abs() * e.tangent.xy().norm() > 1e-9;
-    let (n, m) = (points(e, gap, soil, crossed), points(f, gap, soil, crossed));
-    let (one, two) = (gauss(n), gauss(m));
-    let mut out = PairBlocks { current: ZERO, potential: ZERO };
-    for (xi, w) in one.nodes.iter().zip(&one.weights) {
-        let p = e.at(*xi);
-        let left = legendre(*xi).map(|x| 0.5 * w * x);
-        let mut current = [num_complex::Complex64::ZERO; MAX_DEGREE + 1];
-        let mut potential = current;
-        for (eta, v) in two.nodes.iter().zip(&two.weights) {
-            let q = f.at(*eta);
-            let right = legendre(*eta).map(|x| 0.5 * v * x);
-            let d = (p - q).xy();
-            let rho = d.norm();
-            let k = soil.rest(region, rho, p.z, q.z, crossed);
-            let (t, u) = (e.tangent, f.tangent);
-            let mut c = k.xx * (t.x * u.x + t.y * u.y) + k.zz * (t.z * u.z);
-            if crossed && rho > 0.0 {
-                let toward = d / rho;
-                // K_zx = p_rho cos φ, K_xz = −p_rho cos φ, φ from source to observer
-                c += k.p_rho * (t.z * toward.dot(&u.xy()) - toward.dot(&t.xy()) * u.z);
-            }
-            for b in 0..=MAX_DEGREE {
-                current[b] += c * right[b];
-                potential[b] += k.phi * right[b];
-            }
-        }
-        add(&mut out.current, &left, &current);
-        add(&mut out.potential, &left, &potential);
-    }
-    out
+/// The soil's kernels between two straight lines.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Kernels {
+    region: Region,
+    /// One is horizontal where the other is not.
+    pub(super) crossed: bool,
+    /// Product of the tangents' horizontal parts, and of their vertical ones.
+    level: f64,
+    upright: f64,
+    tangents: (Point, Point),
 }
 
-fn add(block: &mut Block, left: &[f64; 4], row: &[num_complex::Complex64; 4]) {
-    for (line, l) in block.iter_mut().zip(left) {
-        for (cell, r) in line.iter_mut().zip(row) {
-            *cell += r * l;
-        }
+impl Kernels {
+    /// For two lines on given sides of the surface.
+    pub(super) fn of(e: &Element, f: &Element, region: Region) -> Self {
+        let (t, u) = (e.tangent, f.tangent);
+        let crossed = t.z.abs() * u.xy().norm() + u.z.abs() * t.xy().norm() > 1e-9;
+        Self { region, crossed, level: t.x * u.x + t.y * u.y, upright: t.z * u.z, tangents: (t, u) }
     }
+
+    /// t·K·t' and K_Φ between a point of each, 1/m.
+    #[inline(always)]
+    pub(super) fn at<const FMA: bool>(&self, soil: &SoilRest, p: Point, q: Point) -> (Complex64, Complex64) {
+        let d = (p - q).xy();
+        let rho = (d.x * d.x + d.y * d.y).sqrt();
+        let k = soil.rest::<FMA>(self.region, rho, (p.z, q.z), self.crossed);
+        let mut current = k.xx * self.level + k.zz * self.upright;
+        if self.crossed && rho > 0.0 {
+            let (t, u) = self.tangents;
+            let toward = d / rho;
+            // K_zx = p_rho cos φ, K_xz = −p_rho cos φ, φ from source to observer
+            current += k.p_rho * (t.z * toward.dot(&u.xy()) - toward.dot(&t.xy()) * u.z);
+        }
+        (current, k.phi)
+    }
+}
+
+/// Add the means over a pair of the soil's rest.
+#[inline(always)]
+pub(super) fn add<const FMA: bool>(e: &Element, f: &Element, soil: &SoilRest, region: Region, out: &mut PairBlocks) {
+    let other = if region == Region::Across { Line::of(f) } else { Line::mirrored(f) };
+    let gap = clearance(&Line::of(e), &other);
+    let kernels = Kernels::of(e, f, region);
+    let (one, two) = (gauss(points(e, gap, soil, kernels.crossed)), gauss(points(f, gap, soil, kernels.crossed)));
+    for (xi, w) in one.nodes.iter().zip(&one.weights) {
+        let p = e.at(*xi);
+        let left = moments(one.nodes.len(), *xi, *w);
+        let [mut current_re, mut current_im, mut potential_re, mut potential_im] = [[0.0; SIDE]; 4];
+        for (eta, v) in two.nodes.iter().zip(&two.weights) {
+            let right = moments(two.nodes.len(), *eta, *v);
+            let (current, potential) = kernels.at::<FMA>(soil, p, f.at(*eta));
+            for b in 0..SIDE {
+                current_re[b] = mul_add::<FMA>(current.re, right[b], current_re[b]);
+                current_im[b] = mul_add::<FMA>(current.im, right[b], current_im[b]);
+                potential_re[b] = mul_add::<FMA>(potential.re, right[b], potential_re[b]);
+                potential_im[b] = mul_add::<FMA>(potential.im, right[b], potential_im[b]);
+            }
+        }
+        out.current.add_outer::<FMA>(&left, &current_re, &current_im);
+        out.potential.add_outer::<FMA>(&left, &potential_re, &potential_im);
+    }
+}
+
+/// Weight times P_0..P_3 at a point. A rule cannot tell moments of as high a degree as it has points: left out rather than wrong.
+#[inline(always)]
+fn moments(points: usize, xi: f64, weight: f64) -> [f64; SIDE] {
+    let p = legendre(xi);
+    std::array::from_fn(|a| if a < points { 0.5 * weight * p[a] } else { 0.0 })
 }
 
 /// Points for an element of a pair.

@@ -7,7 +7,7 @@
 //! instead, the negative elastance would outweigh the tube's own for charge that varies within a radius or two, and a fine mesh
 //! would find resonances that are not there.
 
-use super::fill::{Block, PairBlocks, ZERO};
+use super::block::{Block, PairBlocks};
 use super::line::{Line, Tubes, tubes};
 use super::near::{Moments, moments};
 use crate::mesh::{MAX_DEGREE, Mesh};
@@ -28,8 +28,9 @@ impl Sleeve {
     /// What the jacket adds to a pair in a medium of this relative permittivity.
     pub(super) fn blocks(&self, medium: Complex64) -> PairBlocks {
         let factor = 1.0 / self.permittivity - 1.0 / medium;
-        let potential: Block = self.difference.map(|row| row.map(|x| factor * x));
-        PairBlocks { current: ZERO, potential }
+        let mut potential = Block::ZERO;
+        potential.add_real::<false>(factor, &self.difference);
+        PairBlocks { current: Block::ZERO, potential }
     }
 }
 

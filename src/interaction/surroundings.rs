@@ -2,9 +2,11 @@
 //!
 //! Built once a frequency and soil, shared by every pair, every mesh of the same station and every study there.
 
+use super::kernel::sin_cos;
 use super::medium::Medium;
 use crate::halfspace::{
-    AcrossDistances, AcrossTable, Distances, HalfSpace, HalfSpaceError, Potentials, Region, SideTable,
+    AcrossDistances, AcrossTable, Distances, HalfSpace, HalfSpaceError, ImageCoefficients, Potentials, Region,
+    SideTable,
 };
 use crate::layout::{EarthAt, Layout};
 use num_complex::Complex64;
@@ -115,6 +117,8 @@ pub(crate) struct SoilRest {
     pub(super) above: Option<SideTable>,
     below: Option<SideTable>,
     across: Option<AcrossTable>,
+    /// The closed-form parts above, below and across.
+    images: [ImageCoefficients; 3],
     /// Use reflection coefficients instead of the rest: for comparison only.
     reflected: bool,
 }
@@ -131,7 +135,7 @@ impl Surroundings {
                 let above = extent.distances(extent.above_m).map(|d| SideTable::above(&space, d, TABLE_TOLERANCE));
                 let below = extent.distances(extent.below_m).map(|d| SideTable::below(&space, d, TABLE_TOLERANCE));
                 let across = extent.across().map(|d| AcrossTable::build(&space, d, TABLE_TOLERANCE));
-                Some(SoilRest { space, above, below, across, reflected: false })
+                Some(SoilRest { space, above, below, across, images: images(&space), reflected: false })
             }
             _ => None,
         };
@@ -149,7 +153,14 @@ impl Surroundings {
         let soil = match earth {
             EarthAt::Soil { permittivity, conductivity_s_per_m } => {
                 let space = HalfSpace::new(frequency_hz, permittivity, conductivity_s_per_m)?;
-                Some(SoilRest { space, above: None, below: None, across: None, reflected: true })
+                Some(SoilRest {
+                    space,
+                    above: None,
+                    below: None,
+                    across: None,
+                    images: images(&space),
+                    reflected: true,
+                })
             }
             _ => None,
         };
@@ -219,22 +230,36 @@ impl Surroundings {
     }
 }
 
+fn images(space: &HalfSpace) -> [ImageCoefficients; 3] {
+    [Region::Above, Region::Below, Region::Across].map(|region| space.image_coefficients(region))
+}
+
 impl SoilRest {
     /// Wavenumber in the soil, 1/m.
     pub(crate) fn wavenumber(&self) -> Complex64 {
         self.space.k1_per_m()
     }
 
-    /// What is left of the four potentials beyond the families, 1/m; with `crossed` the image of `p_rho` is included, without it `p_rho`
-    /// is of no use (only vertical with horizontal currents meet it).
-    pub(crate) fn rest(&self, region: Region, rho_m: f64, z_m: f64, z_source_m: f64, crossed: bool) -> Potentials {
+    /// Wavenumber in the air, 1/m.
+    pub(crate) fn air_wavenumber(&self) -> f64 {
+        self.space.k0_per_m()
+    }
+
+    /// What is left of the four potentials beyond the families at (z, z'), 1/m; with `crossed` the image of `p_rho` is included, without
+    /// it `p_rho` is of no use (only vertical with horizontal currents meet it).
+    #[inline(always)]
+    pub(crate) fn rest<const FMA: bool>(
+        &self,
+        region: Region,
+        rho_m: f64,
+        (z_m, z_source_m): (f64, f64),
+        crossed: bool,
+    ) -> Potentials {
         let zeta = z_m.abs() + z_source_m.abs();
-        if self.reflected {
-            return self.specular(rho_m, zeta);
-        }
         let tabulated = match region {
-            Region::Above => self.above.as_ref().map(|t| t.eval(rho_m, zeta)),
-            Region::Below => self.below.as_ref().map(|t| t.eval(rho_m, zeta)),
+            _ if self.reflected => return self.specular(rho_m, zeta),
+            Region::Above => self.above.as_ref().map(|t| t.eval_inlined::<FMA>(rho_m, zeta)),
+            Region::Below => self.below.as_ref().map(|t| t.eval_inlined::<FMA>(rho_m, zeta)),
             Region::Across => {
                 let (height, depth) = (z_m.max(z_source_m), -z_m.min(z_source_m));
                 self.across.as_ref().map(|t| t.eval(rho_m, height.max(0.0), depth.max(0.0)))
@@ -246,8 +271,11 @@ impl SoilRest {
         };
         let r = (rho_m * rho_m + zeta * zeta).sqrt();
         if crossed && r > 0.0 {
-            let c = self.space.image_coefficients(region);
-            rest.p_rho += c.image.p_rho * (-Complex64::I * c.wavenumber_per_m * r).exp() * rho_m / (r * (r + zeta));
+            let c = &self.images[region as usize];
+            let k = c.wavenumber_per_m;
+            let (sin, cos) = sin_cos::<FMA>(k.re * r);
+            let size = rho_m / (r * (r + zeta)) * if k.im == 0.0 { 1.0 } else { (k.im * r).exp() };
+            rest.p_rho += c.image.p_rho * Complex64::new(size * cos, -size * sin);
         }
         rest
     }
