@@ -5,7 +5,7 @@
 //! U = η0 k²/(32π²) (|N_θ|² + |N_φ|²) for peak currents.
 
 use super::along::Solution;
-use crate::interaction::kernel::cos_sin;
+use crate::processor::cos_sin;
 use crate::interaction::quadrature::{MAX_POINTS, gauss, legendre};
 use crate::layout::{EarthAt, Point};
 use crate::mesh::Mesh;

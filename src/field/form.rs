@@ -5,7 +5,7 @@
 //! Directions as in [`super::FarField`]: a Gauss rule in elevation, equal steps in bearing, with more points than the pattern has lobes.
 
 use crate::interaction::Extent;
-use crate::interaction::kernel::cos_sin;
+use crate::processor::cos_sin;
 use crate::interaction::quadrature::{MAX_POINTS, gauss};
 use crate::layout::{EarthAt, Point};
 use crate::quantity::{EPSILON_0_F_PER_M, ETA_0_OHM, SPEED_OF_LIGHT_M_PER_S};

@@ -6,10 +6,11 @@ use super::chebyshev::spread;
 use super::panels::Fineness;
 use super::potentials::tilt;
 use super::rule::{Node, Reach};
-use super::soil::{HalfSpace, Region, exp_less_one};
+use super::soil::{HalfSpace, Region};
 use super::spectral_sum::{LANES, SpectralSum};
 use super::spectrum::{Spectral, Weights};
 use super::tensor::Tensor;
+use crate::processor::{Vectorised, falls, mul_add, widest};
 use num_complex::Complex64;
 use rayon::prelude::*;
 
@@ -187,17 +188,7 @@ fn sample(space: &HalfSpace, sides: Sides, count: [usize; 3], fineness: Fineness
     let columns = heights.len() * depths.len();
     let fill = |node: &Node, out: &mut [f64]| {
         let s = Spectral::at(space, node);
-        let deep = fronts(&weights, node, &s, &depths);
-        for (i, &height) in heights.iter().enumerate() {
-            let fall = (-s.u0 * height).exp();
-            for (j, deep) in deep.iter().enumerate() {
-                for (f, value) in deep.iter().enumerate() {
-                    let value = value * fall;
-                    out[2 * f * columns + i * depths.len() + j] = value.re;
-                    out[(2 * f + 1) * columns + i * depths.len() + j] = value.im;
-                }
-            }
-        }
+        widest(Columns { out, fronts: fronts(&weights, node, &s), u: (s.u0, s.u1), heights: &heights, depths: &depths });
     };
     let mut data = SpectralSum::new(&rhos, columns, &fill).run(space, reach, fineness);
     let k0 = Complex64::new(space.k0_per_m(), 0.0);
@@ -215,19 +206,68 @@ fn sample(space: &HalfSpace, sides: Sides, count: [usize; 3], fineness: Fineness
     Tensor { size: count, data }.transformed()
 }
 
-/// Weighted spectral functions at every depth, without the factor of the height.
-fn fronts(weights: &Weights, node: &Node, s: &Spectral, depths: &[f64]) -> Vec<[Complex64; 3]> {
+/// Weighted spectral functions in front of e^{−u₀(z+|z'|)}, and in front of e^{−u₀z−u₁|z'|}.
+fn fronts(weights: &Weights, node: &Node, s: &Spectral) -> [[Complex64; 2]; 3] {
     let weight = node.weight * s.lambda;
     let [h, q, p] = weights.reduced(s);
-    let (full_h, full_q, full_p) = (weight * weights.full_h(s), weight * weights.full_q(s), p + weights.slope);
-    let (h, q) = (weight * h, weight * q);
-    let (p, full_p) = (-node.weight * p, -node.weight * full_p);
-    let at = |&depth: &f64| {
-        let level = (-s.u0 * depth).exp();
-        let lag = exp_less_one(-(s.u1 - s.u0) * depth);
-        [level * (h + full_h * lag), level * (q + full_q * lag), level * (p + full_p * lag)]
-    };
-    depths.iter().map(at).collect()
+    let (full_h, full_q) = (weight * weights.full_h(s), weight * weights.full_q(s));
+    let full_p = -node.weight * (p + weights.slope);
+    [[weight * h - full_h, full_h], [weight * q - full_q, full_q], [-node.weight * p - full_p, full_p]]
+}
+
+/// The spectral side of one node at every height and depth, as work for the processor.
+struct Columns<'a> {
+    out: &'a mut [f64],
+    fronts: [[Complex64; 2]; 3],
+    u: (Complex64, Complex64),
+    heights: &'a [f64],
+    depths: &'a [f64],
+}
+
+/// Most Chebyshev points along one axis, and what is usually enough.
+const MOST_SAMPLES: usize = 128;
+const FEW_SAMPLES: usize = 24;
+
+impl Vectorised for Columns<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn run<const FMA: bool>(self) {
+        if self.heights.len().max(self.depths.len()) <= FEW_SAMPLES {
+            self.write::<FEW_SAMPLES, FMA>();
+        } else {
+            self.write::<MOST_SAMPLES, FMA>();
+        }
+    }
+}
+
+impl Columns<'_> {
+    #[inline(always)]
+    fn write<const ROOM: usize, const FMA: bool>(self) {
+        let (m, n) = (self.heights.len().min(ROOM), self.depths.len().min(ROOM));
+        let [mut up_re, mut up_im, mut level_re, mut level_im, mut down_re, mut down_im] = [[0.0; ROOM]; 6];
+        falls::<FMA>(self.u.0, &self.heights[..m], &mut up_re[..m], &mut up_im[..m]);
+        falls::<FMA>(self.u.0, &self.depths[..n], &mut level_re[..n], &mut level_im[..n]);
+        falls::<FMA>(self.u.1, &self.depths[..n], &mut down_re[..n], &mut down_im[..n]);
+        for ([near, full], both) in self.fronts.iter().zip(self.out.chunks_exact_mut(2 * m * n)) {
+            let (mut deep_re, mut deep_im) = ([0.0; ROOM], [0.0; ROOM]);
+            for j in 0..n {
+                let re = mul_add::<FMA>(near.re, level_re[j], -near.im * level_im[j]);
+                let im = mul_add::<FMA>(near.re, level_im[j], near.im * level_re[j]);
+                deep_re[j] = mul_add::<FMA>(full.re, down_re[j], mul_add::<FMA>(-full.im, down_im[j], re));
+                deep_im[j] = mul_add::<FMA>(full.re, down_im[j], mul_add::<FMA>(full.im, down_re[j], im));
+            }
+            let (to_re, to_im) = both.split_at_mut(m * n);
+            for i in 0..m {
+                let (re, im) = (up_re[i], up_im[i]);
+                let (to_re, to_im) = (&mut to_re[i * n..(i + 1) * n], &mut to_im[i * n..(i + 1) * n]);
+                for j in 0..n {
+                    to_re[j] = mul_add::<FMA>(deep_re[j], re, -deep_im[j] * im);
+                    to_im[j] = mul_add::<FMA>(deep_re[j], im, deep_im[j] * re);
+                }
+            }
+        }
+    }
 }
 
 #[cfg(test)]

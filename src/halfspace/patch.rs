@@ -8,7 +8,11 @@ use super::soil::{HalfSpace, Region};
 use super::spectral_sum::SpectralSum;
 use super::spectrum::{Spectral, Weights};
 use super::tensor::Tensor;
+use crate::processor::{Vectorised, falls, mul_add, widest};
 use num_complex::Complex64;
+
+/// More samples along an axis than any table takes.
+const MOST_SAMPLES: usize = 224;
 
 /// A rectangle and how many Chebyshev points it gets each way.
 #[derive(Debug, Clone, Copy)]
@@ -46,7 +50,7 @@ impl Patch {
             let [h, q, p] = weights.reduced(&s);
             let weight = node.weight * s.lambda;
             let u = if below { s.u1 } else { s.u0 };
-            columns(out, [weight * h, weight * q * q_scale, -node.weight * p], u, &zetas);
+            widest(Columns { out, front: [weight * h, weight * q * q_scale, -node.weight * p], u, zetas: &zetas });
         };
         let mut values = SpectralSum::new(&rhos, n, &fill).run(space, reach, fineness);
         let k = space.wavenumber_per_m(region);
@@ -67,23 +71,27 @@ impl Patch {
     }
 }
 
-/// front · e^{−uζ} at every ζ, as lanes × ζ.
-fn columns(out: &mut [f64], front: [Complex64; 3], u: Complex64, zetas: &[f64]) {
-    let n = zetas.len();
-    for (j, &zeta) in zetas.iter().enumerate() {
-        let size = (-u.re * zeta).exp();
-        if u.im == 0.0 {
-            for (f, front) in front.iter().enumerate() {
-                out[2 * f * n + j] = front.re * size;
-                out[(2 * f + 1) * n + j] = front.im * size;
-            }
-        } else {
-            let (sin, cos) = (-u.im * zeta).sin_cos();
-            let fall = Complex64::new(size * cos, size * sin);
-            for (f, front) in front.iter().enumerate() {
-                let value = front * fall;
-                out[2 * f * n + j] = value.re;
-                out[(2 * f + 1) * n + j] = value.im;
+/// front · e^{−uζ} at every ζ, as lanes × ζ, as work for the processor.
+struct Columns<'a> {
+    out: &'a mut [f64],
+    front: [Complex64; 3],
+    u: Complex64,
+    zetas: &'a [f64],
+}
+
+impl Vectorised for Columns<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn run<const FMA: bool>(self) {
+        let n = self.zetas.len().min(MOST_SAMPLES);
+        let (mut re, mut im) = ([0.0; MOST_SAMPLES], [0.0; MOST_SAMPLES]);
+        falls::<FMA>(self.u, &self.zetas[..n], &mut re[..n], &mut im[..n]);
+        for (front, both) in self.front.iter().zip(self.out.chunks_exact_mut(2 * n)) {
+            let (to_re, to_im) = both.split_at_mut(n);
+            for j in 0..n {
+                to_re[j] = mul_add::<FMA>(front.re, re[j], -front.im * im[j]);
+                to_im[j] = mul_add::<FMA>(front.re, im[j], front.im * re[j]);
             }
         }
     }

@@ -7,6 +7,7 @@ use super::bessel_fast::{hankel_fast, j01_fast};
 use super::panels::Fineness;
 use super::rule::{Node, Reach, Wave, nodes};
 use super::soil::HalfSpace;
+use crate::processor::{Vectorised, mul_add, widest};
 
 /// Real and imaginary parts of H, Q and ∂P/∂ρ.
 pub(super) const LANES: usize = 6;
@@ -110,13 +111,13 @@ impl<'a, F: Fn(&Node, &mut [f64])> SpectralSum<'a, F> {
     }
 
     fn flush(&mut self) {
-        let n = self.columns;
-        let (count, width) = (self.filled, LANES * n);
-        for (row, bessel) in self.total.chunks_exact_mut(width).zip(self.bessel.chunks_exact(2 * BATCH)) {
-            let (first, second) = row.split_at_mut(4 * n);
-            product(first, &bessel[..count], &self.spectral, width, 0);
-            product(second, &bessel[BATCH..BATCH + count], &self.spectral, width, 4 * n);
-        }
+        widest(Flush {
+            columns: self.columns,
+            count: self.filled,
+            bessel: &self.bessel,
+            spectral: &self.spectral,
+            total: &mut self.total,
+        });
         self.filled = 0;
     }
 
@@ -133,21 +134,49 @@ impl<'a, F: Fn(&Node, &mut [f64])> SpectralSum<'a, F> {
     }
 }
 
+/// One batch added to the total, as work for the processor.
+struct Flush<'a> {
+    columns: usize,
+    count: usize,
+    bessel: &'a [f64],
+    spectral: &'a [f64],
+    total: &'a mut [f64],
+}
+
+impl Vectorised for Flush<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn run<const FMA: bool>(self) {
+        let (n, width) = (self.columns, LANES * self.columns);
+        for (row, bessel) in self.total.chunks_exact_mut(width).zip(self.bessel.chunks_exact(2 * BATCH)) {
+            let (first, second) = row.split_at_mut(4 * n);
+            product::<FMA>(first, &bessel[..self.count], self.spectral, width, 0);
+            product::<FMA>(second, &bessel[BATCH..BATCH + self.count], self.spectral, width, 4 * n);
+        }
+    }
+}
+
 /// row += Σ bessel[t] · spectral[t·width + from ..].
-fn product(row: &mut [f64], bessel: &[f64], spectral: &[f64], width: usize, from: usize) {
+#[inline(always)]
+fn product<const FMA: bool>(row: &mut [f64], bessel: &[f64], spectral: &[f64], width: usize, from: usize) {
     let n = row.len();
-    let side = |t: usize| &spectral[t * width + from..t * width + from + n];
     let whole = bessel.len() / 4 * 4;
     for t in (0..whole).step_by(4) {
         let (p, q, r, s) = (bessel[t], bessel[t + 1], bessel[t + 2], bessel[t + 3]);
-        let (a, b, c, d) = (side(t), side(t + 1), side(t + 2), side(t + 3));
-        for (k, out) in row.iter_mut().enumerate() {
-            *out += p * a[k] + q * b[k] + (r * c[k] + s * d[k]);
+        let a = &spectral[t * width + from..t * width + from + n];
+        let b = &spectral[(t + 1) * width + from..(t + 1) * width + from + n];
+        let c = &spectral[(t + 2) * width + from..(t + 2) * width + from + n];
+        let d = &spectral[(t + 3) * width + from..(t + 3) * width + from + n];
+        for k in 0..n {
+            let pair = mul_add::<FMA>(p, a[k], row[k]);
+            row[k] = mul_add::<FMA>(q, b[k], pair) + mul_add::<FMA>(r, c[k], s * d[k]);
         }
     }
-    for (t, b) in bessel.iter().enumerate().skip(whole) {
-        for (out, a) in row.iter_mut().zip(side(t)) {
-            *out += b * a;
+    for t in whole..bessel.len() {
+        let a = &spectral[t * width + from..t * width + from + n];
+        for k in 0..n {
+            row[k] = mul_add::<FMA>(bessel[t], a[k], row[k]);
         }
     }
 }

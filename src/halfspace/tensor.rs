@@ -2,6 +2,7 @@
 
 use super::chebyshev::{analysis, restriction};
 use super::spectral_sum::LANES;
+use crate::processor::{Vectorised, mul_add, widest};
 
 /// Values or coefficients `[lane][first][second][third]`.
 #[derive(Debug, Clone)]
@@ -54,18 +55,7 @@ impl Tensor {
         size[axis] = to;
         let outer = self.data.len() / (from * inner);
         let mut data = vec![0.0; outer * to * inner];
-        if inner == 1 {
-            let turned: Vec<f64> = (0..from * to).map(|p| matrix[(p % to) * from + p / to]).collect();
-            for (source, target) in self.data.chunks_exact(from).zip(data.chunks_exact_mut(to)) {
-                combine(target, source, &turned);
-            }
-            return Self { size, data };
-        }
-        for (source, target) in self.data.chunks_exact(from * inner).zip(data.chunks_exact_mut(to * inner)) {
-            for (row, weights) in target.chunks_exact_mut(inner).zip(matrix.chunks_exact(from)) {
-                combine(row, weights, source);
-            }
-        }
+        widest(Along { from, to, inner, matrix, source: &self.data, target: &mut data });
         Self { size, data }
     }
 
@@ -136,20 +126,59 @@ impl Tensor {
     }
 }
 
-/// row += Σ weights[i] · (row i of `rows`).
-fn combine(row: &mut [f64], weights: &[f64], rows: &[f64]) {
-    let n = row.len();
-    let (weights4, rows4) = (weights.chunks_exact(4), rows.chunks_exact(4 * n));
-    let (rest_weights, rest_rows) = (weights4.remainder(), rows4.remainder());
-    for (w, r) in weights4.zip(rows4) {
-        let (a, b, c, d) = (&r[..n], &r[n..2 * n], &r[2 * n..3 * n], &r[3 * n..4 * n]);
-        for (k, out) in row.iter_mut().enumerate() {
-            *out += w[0] * a[k] + w[1] * b[k] + (w[2] * c[k] + w[3] * d[k]);
+/// A matrix applied to one axis, as work for the processor.
+struct Along<'a> {
+    from: usize,
+    to: usize,
+    /// Product of the sizes behind the axis.
+    inner: usize,
+    matrix: &'a [f64],
+    source: &'a [f64],
+    target: &'a mut [f64],
+}
+
+impl Vectorised for Along<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn run<const FMA: bool>(self) {
+        let Self { from, to, inner, matrix, source, target } = self;
+        if inner == 1 {
+            let mut turned = vec![0.0; from * to];
+            for p in 0..from * to {
+                turned[p] = matrix[(p % to) * from + p / to];
+            }
+            for (source, target) in source.chunks_exact(from).zip(target.chunks_exact_mut(to)) {
+                combine::<FMA>(target, source, &turned);
+            }
+            return;
+        }
+        for (source, target) in source.chunks_exact(from * inner).zip(target.chunks_exact_mut(to * inner)) {
+            for (row, weights) in target.chunks_exact_mut(inner).zip(matrix.chunks_exact(from)) {
+                combine::<FMA>(row, weights, source);
+            }
         }
     }
-    for (w, r) in rest_weights.iter().zip(rest_rows.chunks_exact(n)) {
-        for (out, r) in row.iter_mut().zip(r) {
-            *out += w * r;
+}
+
+/// row += Σ weights[i] · (row i of `rows`).
+#[inline(always)]
+fn combine<const FMA: bool>(row: &mut [f64], weights: &[f64], rows: &[f64]) {
+    let n = row.len();
+    let whole = weights.len() / 4 * 4;
+    for i in (0..whole).step_by(4) {
+        let w = &weights[i..i + 4];
+        let r = &rows[i * n..(i + 4) * n];
+        let (a, b, c, d) = (&r[..n], &r[n..2 * n], &r[2 * n..3 * n], &r[3 * n..4 * n]);
+        for k in 0..n {
+            let pair = mul_add::<FMA>(w[0], a[k], row[k]);
+            row[k] = mul_add::<FMA>(w[1], b[k], pair) + mul_add::<FMA>(w[2], c[k], w[3] * d[k]);
+        }
+    }
+    for i in whole..weights.len() {
+        let r = &rows[i * n..(i + 1) * n];
+        for k in 0..n {
+            row[k] = mul_add::<FMA>(weights[i], r[k], row[k]);
         }
     }
 }

@@ -1,10 +1,7 @@
 //! e^{−jkR}/R for many distances at once.
-//!
-//! The sine and cosine are branch-free polynomials after a three-part reduction by π/2 (Cody & Waite 1980; minimax
-//! coefficients of the fdlibm kernels), absolute error below 3·10⁻¹⁶ for arguments up to 10⁵.
 
 use super::block::{Block, SIDE};
-use crate::processor::{Vectorised, mul_add, widest};
+use crate::processor::{Vectorised, mul_add, sin_cos, widest};
 
 /// Squared distances to e^{−j(k − jα)R}/R.
 #[inline(always)]
@@ -137,95 +134,9 @@ pub(super) fn pair_block<const FMA: bool>(pair: &PointPair, k: f64, alpha: f64) 
     out
 }
 
-/// Cosine and sine of many angles, any sign, |angle| < 10⁵; all slices of one length.
-pub fn cos_sin(angles_rad: &[f64], cos: &mut [f64], sin: &mut [f64]) {
-    struct Work<'a>(&'a [f64], &'a mut [f64], &'a mut [f64]);
-
-    impl Vectorised for Work<'_> {
-        type Output = ();
-
-        #[inline(always)]
-        fn run<const FMA: bool>(self) {
-            let n = self.0.len().min(self.1.len()).min(self.2.len());
-            let (angles, cos, sin) = (&self.0[..n], &mut self.1[..n], &mut self.2[..n]);
-            for i in 0..n {
-                (sin[i], cos[i]) = sin_cos::<FMA>(angles[i]);
-            }
-        }
-    }
-    widest(Work(angles_rad, cos, sin));
-}
-
-/// Sine and cosine of |x| < 10⁵.
-#[inline(always)]
-pub(super) fn sin_cos<const FMA: bool>(x: f64) -> (f64, f64) {
-    // π/2 in three parts of 33, 33 and 53 bits
-    const P1: f64 = 1.570_796_326_734_125_6;
-    const P2: f64 = 6.077_100_506_303_966e-11;
-    const P3: f64 = 2.022_266_248_795_950_6e-21;
-    const ROUND: f64 = 6_755_399_441_055_744.0; // 1.5·2⁵²: adding it rounds to an integer
-    let shifted = mul_add::<FMA>(x, std::f64::consts::FRAC_2_PI, ROUND);
-    let quadrant = shifted.to_bits();
-    let q = shifted - ROUND;
-    let r = mul_add::<FMA>(-q, P3, mul_add::<FMA>(-q, P2, mul_add::<FMA>(-q, P1, x)));
-    let z = r * r;
-    let s = mul_add::<FMA>(
-        z,
-        mul_add::<FMA>(
-            z,
-            mul_add::<FMA>(
-                z,
-                mul_add::<FMA>(
-                    z,
-                    mul_add::<FMA>(z, 1.589_690_995_211_55e-10, -2.505_076_025_340_686_3e-8),
-                    2.755_731_370_707_006_8e-6,
-                ),
-                -1.984_126_982_985_795e-4,
-            ),
-            8.333_333_333_322_49e-3,
-        ),
-        -1.666_666_666_666_663_2e-1,
-    );
-    let sin = mul_add::<FMA>(r * z, s, r);
-    let c = mul_add::<FMA>(
-        z,
-        mul_add::<FMA>(
-            z,
-            mul_add::<FMA>(
-                z,
-                mul_add::<FMA>(
-                    z,
-                    mul_add::<FMA>(z, -1.135_964_755_778_819_5e-11, 2.087_572_321_298_175e-9),
-                    -2.755_731_435_139_066e-7,
-                ),
-                2.480_158_728_947_673e-5,
-            ),
-            -1.388_888_888_887_411e-3,
-        ),
-        4.166_666_666_666_66e-2,
-    );
-    let cos = mul_add::<FMA>(z * z, c, mul_add::<FMA>(z, -0.5, 1.0));
-    let swap = quadrant & 1 == 1;
-    let (a, b) = if swap { (cos, sin) } else { (sin, cos) };
-    let sin_sign = (quadrant & 2) << 62;
-    let cos_sign = (quadrant.wrapping_add(1) & 2) << 62;
-    (f64::from_bits(a.to_bits() ^ sin_sign), f64::from_bits(b.to_bits() ^ cos_sign))
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-
-    #[test]
-    fn sine_and_cosine_agree_with_the_library_to_rounding() {
-        for i in 0..200_000 {
-            let x = (f64::from(i) * 0.37).powf(1.03) * if i % 2 == 0 { 1.0 } else { -1.0 };
-            if x.abs() < 1e5 {
-                let (s, c) = sin_cos::<false>(x);
-                assert!((s - x.sin()).abs() < 4e-16 && (c - x.cos()).abs() < 4e-16, "x = {x}: {s} {c}");
-            }
-        }
-    }
 
     #[test]
     fn the_wave_decays_and_turns_as_it_should() {

@@ -20,7 +20,7 @@ mod block;
 pub mod factor;
 mod fill;
 mod group;
-pub mod kernel;
+mod kernel;
 mod lagrange;
 mod leading;
 mod line;

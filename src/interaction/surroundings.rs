@@ -2,13 +2,13 @@
 //!
 //! Built once a frequency and soil, shared by every pair, every mesh of the same station and every study there.
 
-use super::kernel::sin_cos;
 use super::medium::Medium;
 use crate::halfspace::{
     AcrossDistances, AcrossTable, Distances, HalfSpace, HalfSpaceError, ImageCoefficients, Potentials, Region,
     SideTable,
 };
 use crate::layout::{EarthAt, Layout};
+use crate::processor::sin_cos;
 use num_complex::Complex64;
 
 /// What one family of source lines (the conductors themselves, or their images) contributes.

@@ -2,7 +2,12 @@
 //!
 //! Takes a piece of work; runs it compiled for AVX-512, AVX2 with FMA, or the baseline, chosen at run time. The only `unsafe` of the
 //! program stands here.
+//! `elementary` holds the functions that such work needs.
 #![allow(unsafe_code)]
+
+mod elementary;
+
+pub use elementary::{cos_sin, exp, falls, sin_cos};
 
 /// Work that gains from wide vectors. Mark `run` and everything it calls `#[inline(always)]`: what is not inlined is compiled
 /// for the baseline, closures given to `map` and `from_fn` among it.
