@@ -5,10 +5,10 @@
 //! U = η0 k²/(32π²) (|N_θ|² + |N_φ|²) for peak currents.
 
 use super::along::Solution;
-use crate::processor::cos_sin;
 use crate::interaction::quadrature::{MAX_POINTS, gauss, legendre};
 use crate::layout::{EarthAt, Point};
 use crate::mesh::Mesh;
+use crate::processor::cos_sin;
 use crate::quantity::{EPSILON_0_F_PER_M, ETA_0_OHM, SPEED_OF_LIGHT_M_PER_S};
 use num_complex::Complex64;
 use std::f64::consts::PI;

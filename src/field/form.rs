@@ -5,9 +5,9 @@
 //! Directions as in [`super::FarField`]: a Gauss rule in elevation, equal steps in bearing, with more points than the pattern has lobes.
 
 use crate::interaction::Extent;
-use crate::processor::cos_sin;
 use crate::interaction::quadrature::{MAX_POINTS, gauss};
 use crate::layout::{EarthAt, Point};
+use crate::processor::cos_sin;
 use crate::quantity::{EPSILON_0_F_PER_M, ETA_0_OHM, SPEED_OF_LIGHT_M_PER_S};
 use faer::linalg::matmul::matmul;
 use faer::{Accum, Mat, Par};
@@ -141,14 +141,21 @@ impl Sphere {
         }
     }
 
-    /// Nodes that carry the far field of any current on a line this long, which is at most [`Sphere::longest_m`].
+    /// Nodes that carry the far field of any current on a line this long, which is at most [`Sphere::longest_m`], to some 10⁻⁶:
+    /// interpolation of a wave of phase ±a at n Gauss nodes errs by about aⁿ/(2ⁿ⁻¹ n!). Four at least, so that polynomials as on an
+    /// element are carried too.
     #[must_use]
     pub fn nodes_for(&self, length_m: f64) -> usize {
-        (0.6 * self.k * length_m + 14.0).ceil() as usize
+        let half = 0.5 * self.k * length_m;
+        let (mut error, mut nodes) = (2.0, 0);
+        while nodes < 4 || error > 3e-7 && nodes < MAX_POINTS {
+            nodes += 1;
+            error *= 0.5 * half / nodes as f64;
+        }
+        nodes
     }
 
-    /// Longest line that one rule of nodes serves to 10⁻⁶, m: interpolation of a wave of phase ±a at n Gauss nodes errs by about
-    /// aⁿ/(2ⁿ⁻¹ n!), and here a = 15, n = 32.
+    /// Longest line that one rule of nodes serves, m: 33 nodes.
     #[must_use]
     pub fn longest_m(&self) -> f64 {
         30.0 / self.k

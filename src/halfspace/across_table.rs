@@ -188,7 +188,13 @@ fn sample(space: &HalfSpace, sides: Sides, count: [usize; 3], fineness: Fineness
     let columns = heights.len() * depths.len();
     let fill = |node: &Node, out: &mut [f64]| {
         let s = Spectral::at(space, node);
-        widest(Columns { out, fronts: fronts(&weights, node, &s), u: (s.u0, s.u1), heights: &heights, depths: &depths });
+        widest(Columns {
+            out,
+            fronts: fronts(&weights, node, &s),
+            u: (s.u0, s.u1),
+            heights: &heights,
+            depths: &depths,
+        });
     };
     let mut data = SpectralSum::new(&rhos, columns, &fill).run(space, reach, fineness);
     let k0 = Complex64::new(space.k0_per_m(), 0.0);

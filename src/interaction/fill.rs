@@ -63,7 +63,7 @@ impl Interaction {
         let image_nodes =
             with_image.then(|| Nodes::of(&mesh.elements.iter().map(Line::mirrored).collect::<Vec<_>>(), &on_images));
         let maps = mesh.elements.iter().map(Element::legendre_map).collect();
-        let sleeves = sleeves(&mesh).into_iter().filter(|s| s.one < split).collect();
+        let sleeves = sleeves(&mesh, &direct, known);
         Self { mesh, maps, split, direct, image, nodes, image_nodes, sleeves }
     }
 
@@ -72,6 +72,7 @@ impl Interaction {
     pub fn statics(&self) -> Statics {
         let mut out = Statics::default();
         self.direct.iter().for_each(|pairs| out.keep(&self.mesh, pairs));
+        out.keep_sleeves(&self.mesh, &self.sleeves);
         out
     }
 

@@ -4,6 +4,7 @@ use super::kernel::MOST_POINTS;
 use super::line::{Line, Tubes, clearance, tubes};
 use super::near::{Static, moments};
 use super::quadrature::{gauss, legendre};
+use super::sleeve::{Sleeve, over_jacket};
 use crate::mesh::{Element, Mesh};
 use std::collections::HashMap;
 
@@ -84,7 +85,7 @@ impl Statics {
         Some([fine(one.length_m), fine(two.length_m), fine(offset_m), along.signum() as i64, radii[0], radii[1], how])
     }
 
-    fn get(&self, one: &Line, two: &Line, tubes: Tubes) -> Static {
+    pub(super) fn get(&self, one: &Line, two: &Line, tubes: Tubes) -> Static {
         let key = if self.0.is_empty() { None } else { Self::key(one, two, tubes) };
         key.and_then(|key| self.0.get(&key)).copied().unwrap_or_else(|| moments(one, two, tubes))
     }
@@ -97,6 +98,20 @@ impl Statics {
             let (one, two) = (Line::of(e), Line::of(f));
             if let Some(key) = Self::key(&one, &two, tubes(&one, &two, shares_node(e, f))) {
                 self.0.insert(key, pairs.statics[index as usize]);
+            }
+        }
+    }
+}
+
+impl Statics {
+    /// Keep those of a mesh's jackets.
+    pub(super) fn keep_sleeves(&mut self, mesh: &Mesh, sleeves: &[Sleeve]) {
+        for sleeve in sleeves {
+            let (e, f) = (&mesh.elements[sleeve.one], &mesh.elements[sleeve.two]);
+            let Some(jacket) = e.jacket else { continue };
+            let (one, outside) = over_jacket(e, f, jacket.thickness_m);
+            if let Some(key) = Self::key(&one, &outside, Tubes::Coaxial) {
+                self.0.insert(key, sleeve.over);
             }
         }
     }

@@ -9,8 +9,9 @@
 
 use super::block::{Block, PairBlocks};
 use super::line::{Line, Tubes, tubes};
-use super::near::{Moments, moments};
-use crate::mesh::{MAX_DEGREE, Mesh};
+use super::near::{Moments, Static};
+use super::pairs::{Pairs, Statics};
+use crate::mesh::{Element, MAX_DEGREE, Mesh};
 use num_complex::Complex64;
 
 /// Two elements on one line in one jacket.
@@ -22,6 +23,8 @@ pub(super) struct Sleeve {
     permittivity: f64,
     /// Mean of P_a P_b (K_aa − K_ab) over the pair, 1/m.
     difference: Moments,
+    /// Static moments of the metal with the jacket's outside.
+    pub(super) over: Static,
 }
 
 impl Sleeve {
@@ -35,26 +38,32 @@ impl Sleeve {
 }
 
 /// All pairs (one ≤ two) that share a jacket and lie on one line, near enough for the two kernels to differ.
-pub(super) fn sleeves(mesh: &Mesh) -> Vec<Sleeve> {
+///
+/// # Inputs
+/// - `direct`: all pairs of the mesh, with their static moments
+/// - `known`: static moments of a mesh with like elements
+pub(super) fn sleeves(mesh: &Mesh, direct: &[Pairs], known: &Statics) -> Vec<Sleeve> {
     let mut out = Vec::new();
-    for (i, e) in mesh.elements.iter().enumerate() {
-        let Some(jacket) = e.jacket.filter(|j| j.thickness_m > 0.0) else { continue };
-        for (j, f) in mesh.elements.iter().enumerate().skip(i) {
-            if f.jacket != e.jacket || f.radius_m != e.radius_m || f.below != e.below {
-                continue;
-            }
-            let (one, two) = (Line::of(e), Line::of(f));
-            if tubes(&one, &two, false) != Tubes::Coaxial {
-                continue;
-            }
-            let outside = Line { radius_m: e.radius_m + jacket.thickness_m, ..two };
-            let (bare, over) = (moments(&one, &two, Tubes::Coaxial), moments(&one, &outside, Tubes::Coaxial));
-            let area = e.length_m * f.length_m;
-            let difference = std::array::from_fn(|a| {
-                std::array::from_fn::<f64, { MAX_DEGREE + 1 }, _>(|b| (bare.inverse[a][b] - over.inverse[a][b]) / area)
-            });
-            out.push(Sleeve { one: i, two: j, permittivity: jacket.permittivity, difference });
+    for (pairs, pair) in direct.iter().flat_map(|pairs| pairs.list.iter().map(move |pair| (pairs, pair))) {
+        let (e, f) = (&mesh.elements[pair.one], &mesh.elements[pair.two]);
+        let (Some(jacket), Some(near)) = (e.jacket.filter(|j| j.thickness_m > 0.0), pair.near) else { continue };
+        let alike = f.jacket == e.jacket && f.radius_m == e.radius_m && f.below == e.below;
+        if !alike || tubes(&Line::of(e), &Line::of(f), false) != Tubes::Coaxial {
+            continue;
         }
+        let bare = &pairs.statics[near as usize];
+        let (one, outside) = over_jacket(e, f, jacket.thickness_m);
+        let over = known.get(&one, &outside, Tubes::Coaxial);
+        let area = e.length_m * f.length_m;
+        let difference = std::array::from_fn(|a| {
+            std::array::from_fn::<f64, { MAX_DEGREE + 1 }, _>(|b| (bare.inverse[a][b] - over.inverse[a][b]) / area)
+        });
+        out.push(Sleeve { one: pair.one, two: pair.two, permittivity: jacket.permittivity, difference, over });
     }
     out
+}
+
+/// The metal of the first, and the outside of the jacket of the second.
+pub(super) fn over_jacket(e: &Element, f: &Element, thickness_m: f64) -> (Line, Line) {
+    (Line::of(e), Line { radius_m: e.radius_m + thickness_m, ..Line::of(f) })
 }
