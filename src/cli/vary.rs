@@ -7,8 +7,9 @@ use crate::layout::{Layout, PartKind};
 use crate::outcome::vary::{DEFAULT_WANT, Quantity, VaryOutcome, quantity_names};
 use crate::output;
 use crate::station::Embedded;
+use crate::study::Watch;
 use crate::study::store::{Store, StoreError};
-use crate::study::vary::{self, Axis, Plan, Sampling, VaryError, Watch};
+use crate::study::vary::{self, Axis, Plan, Sampling, VaryError};
 use clap::Args;
 use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
 use std::io::{IsTerminal, Write};
@@ -158,13 +159,13 @@ impl Bar {
 }
 
 impl Watch for Bar {
-    fn begins(&self, points: usize, there: usize) {
-        self.bar.set_length(points as u64);
+    fn begins(&self, steps: usize, there: usize) {
+        self.bar.set_length(steps as u64);
         self.bar.set_position(there as u64);
         self.bar.reset_eta();
     }
 
-    fn point_done(&self) {
+    fn step_done(&self) {
         self.bar.inc(1);
     }
 

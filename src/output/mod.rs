@@ -16,6 +16,7 @@ mod bands;
 mod cautions;
 mod csv_studies;
 mod figures;
+mod lengths_text;
 mod whole;
 mod worst;
 

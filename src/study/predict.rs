@@ -70,6 +70,9 @@ pub enum Failure {
     /// No power can flow.
     #[error(transparent)]
     Chain(#[from] ChainError),
+    /// Whoever watches said stop.
+    #[error("stopped before the end")]
+    Stopped,
 }
 
 /// Predict a station.

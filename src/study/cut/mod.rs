@@ -6,6 +6,7 @@
 //! solution, `radiation` the power into the far field, `judge` windows and picks, `avoid` resonances to stay away from, `trim` how the match moves with length.
 
 mod avoid;
+mod coax;
 mod judge;
 mod lengths;
 mod moving;
@@ -22,6 +23,7 @@ use crate::network::ChainError;
 use crate::outcome::cut::{CutOutcome, OverLength};
 use crate::outcome::place::LimitsOutcome;
 use crate::station::{Catalogue, Document, Refused, Station};
+pub(super) use coax::CoaxLengths;
 use lengths::Axis;
 use reading::Reading;
 use scan::{Grid, Scan};

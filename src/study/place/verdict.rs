@@ -19,15 +19,16 @@ const LEAST_VOLTAGE_V: f64 = 3.0;
 /// A choke may raise the worst voltage at the radio by this factor.
 const VOLTAGE_SLACK: f64 = 1.05;
 /// Heat in the choke worth naming, as a share of the power.
-const LARGE_HEAT: f64 = 0.05;
+pub(super) const LARGE_HEAT: f64 = 0.05;
 /// With no place within the limits, the worst case may get worse by this factor inside the window of the least bad.
 const WINDOW_WORSE: f64 = 1.1;
 
-const QUANTITIES: [&str; 4] = ["entry_current_a", "last_metre_current_a", "swr", "end_voltage_v"];
+/// What is judged, by the names of the arrays.
+pub(super) const QUANTITIES: [&str; 4] = ["entry_current_a", "last_metre_current_a", "swr", "end_voltage_v"];
 
 /// One value against its limit.
 #[derive(Debug, Clone, Copy)]
-struct Case {
+pub(super) struct Case {
     variant: usize,
     frequency: usize,
     quantity: usize,
@@ -40,7 +41,7 @@ impl Case {
         self.value / self.limit
     }
 
-    fn outcome(&self, of: &PlaceOutcome) -> WorstCase {
+    pub(super) fn outcome(&self, of: &PlaceOutcome) -> WorstCase {
         WorstCase {
             frequency_hz: of.frequencies_hz[self.frequency],
             variant: of.variants[self.variant].clone(),
@@ -55,10 +56,10 @@ impl Case {
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Judged {
     /// Cases beyond a limit.
-    beyond: usize,
+    pub(super) beyond: usize,
     /// Largest share of the power that the choke turns into heat.
-    heat: f64,
-    worst: Case,
+    pub(super) heat: f64,
+    pub(super) worst: Case,
 }
 
 impl Judged {
@@ -74,24 +75,24 @@ impl Judged {
 
     /// What keeps its limits comes first. Among what does not, the one whose worst case is the least of its limit beyond it, however many
     /// cases are; among what does, the one furthest from its limits, and of two alike the cooler.
-    fn better(&self, other: &Self) -> Ordering {
+    pub(super) fn better(&self, other: &Self) -> Ordering {
         let rank = |j: &Self| j.worst.ratio().ln() + if j.keeps() { j.heat } else { 0.0 };
         other.keeps().cmp(&self.keeps()).then(rank(self).total_cmp(&rank(other)))
     }
 
     /// All limits are kept.
-    fn keeps(&self) -> bool {
+    pub(super) fn keeps(&self) -> bool {
         self.beyond == 0
     }
 
     /// Whether another place is as good as far as a window goes.
-    fn window_takes(&self, other: &Self) -> bool {
+    pub(super) fn window_takes(&self, other: &Self) -> bool {
         if self.keeps() { other.keeps() } else { other.worst.ratio() <= WINDOW_WORSE * self.worst.ratio() }
     }
 }
 
 /// Limits in the order of [`QUANTITIES`].
-fn limits(outcome: &PlaceOutcome) -> [f64; 4] {
+pub(super) fn limits(outcome: &PlaceOutcome) -> [f64; 4] {
     let highest = outcome.without.end_voltage_v.iter().flatten().flatten().fold(0.0_f64, |m, v| m.max(*v));
     let volts = (VOLTAGE_SLACK * highest).max(LEAST_VOLTAGE_V);
     [outcome.limits.entry_current_a, outcome.limits.entry_current_a, outcome.limits.swr, volts]
@@ -110,7 +111,8 @@ fn cases<'a>(
     })
 }
 
-fn judge_without(outcome: &PlaceOutcome, limits: [f64; 4]) -> Option<Judged> {
+/// How the station stands without a choke.
+pub(super) fn judge_without(outcome: &PlaceOutcome, limits: [f64; 4]) -> Option<Judged> {
     let w = &outcome.without;
     let plain = |of: &OverFrequency<f64>, v: usize, f: usize| Some(of[v][f]);
     Judged::of(cases(outcome, limits, |v, f, q| match q {
@@ -133,13 +135,26 @@ fn judge(outcome: &PlaceOutcome, limits: [f64; 4], choke: usize, place: usize) -
     judged.map(|j| Judged { heat, ..j })
 }
 
+/// How every place stands, `[choke][place]`.
+pub(super) fn judge_all(outcome: &PlaceOutcome, limits: [f64; 4]) -> Vec<Vec<Judged>> {
+    (0..outcome.chokes.len())
+        .map(|c| (0..outcome.places_m.len()).filter_map(|p| judge(outcome, limits, c, p)).collect())
+        .collect()
+}
+
+/// Of the places within a hand's breadth of one the worst.
+pub(super) fn worst_beside(places_m: &[f64], judged: &[Judged], place: usize) -> usize {
+    let near = |q: &usize| (places_m[*q] - places_m[place]).abs() <= SLACK_M + 1e-9;
+    let low = (0..=place).rev().take_while(near).last().unwrap_or(place);
+    let high = (place..places_m.len()).take_while(near).last().unwrap_or(place);
+    (low..=high).max_by(|a, b| judged[*a].better(&judged[*b])).unwrap_or(place)
+}
+
 /// Fill in verdict, reason and picks.
 pub(super) fn decide(outcome: &mut PlaceOutcome) {
     let limits = limits(outcome);
     let offered = offered(outcome);
-    let judged: Vec<Vec<Judged>> = (0..outcome.chokes.len())
-        .map(|c| (0..outcome.places_m.len()).filter_map(|p| judge(outcome, limits, c, p)).collect())
-        .collect();
+    let judged = judge_all(outcome, limits);
     let mut found: Vec<(Judged, PlacePick)> =
         (0..outcome.chokes.len()).filter_map(|c| pick(outcome, c, &judged[c], &offered)).collect();
     let width = |p: &PlacePick| p.window_m[1] - p.window_m[0];
@@ -163,7 +178,7 @@ pub(super) fn decide(outcome: &mut PlaceOutcome) {
 }
 
 /// Which places a hand can reach.
-fn offered(outcome: &PlaceOutcome) -> Vec<bool> {
+pub(super) fn offered(outcome: &PlaceOutcome) -> Vec<bool> {
     let within = |x: f64| outcome.reachable_m.iter().any(|r| x >= r[0] - 1e-9 && x <= r[1] + 1e-9);
     outcome.places_m.iter().map(|x| outcome.reachable_m.is_empty() || within(*x)).collect()
 }
@@ -171,13 +186,8 @@ fn offered(outcome: &PlaceOutcome) -> Vec<bool> {
 /// The best place of a choke that also holds a hand's breadth to either side, with its window.
 fn pick(outcome: &PlaceOutcome, choke: usize, judged: &[Judged], offered: &[bool]) -> Option<(Judged, PlacePick)> {
     let places = &outcome.places_m;
-    let beside = |p: usize| {
-        let near = |q: usize| (places[q] - places[p]).abs() <= SLACK_M + 1e-9;
-        let low = (0..=p).rev().take_while(|q| near(*q)).last().unwrap_or(p);
-        let high = (p..places.len()).take_while(|q| near(*q)).last().unwrap_or(p);
-        judged[low..=high].iter().max_by(|a, b| a.better(b)).copied().unwrap_or(judged[p])
-    };
-    let robust: Vec<Option<Judged>> = (0..places.len()).map(|p| offered[p].then(|| beside(p))).collect();
+    let robust: Vec<Option<Judged>> =
+        (0..places.len()).map(|p| offered[p].then(|| judged[worst_beside(places, judged, p)])).collect();
     let best = robust.iter().enumerate().filter_map(|(p, r)| r.map(|r| (p, r))).min_by(|a, b| a.1.better(&b.1))?.0;
     let here = judged[best];
     let holds = |q: usize| offered[q] && here.window_takes(&judged[q]);
