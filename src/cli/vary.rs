@@ -51,6 +51,9 @@ fn quantities() -> String {
     let mut text = String::from(
         "A point that cannot be meant or solved is kept with its reason, and the rest go on.\n\
          Rods, bonds and everything protective are given and cannot be varied.\n\n\
+         Formats: --csv FILE, a row a point, variant and frequency, a column a quantity; --jsonl FILE, the same rows as JSON\n\
+         lines, an object a line; --json, one document with the rows of every point and its \"summary\": each quantity as\n\
+         written and at its worst over the variants, with the variant and frequency. With none of them, tables to read.\n\n\
          Quantities for --want, currents and voltages RMS:\n",
     );
     for name in quantity_names() {

@@ -14,7 +14,7 @@ pub use sample::{SampleError, Sampling};
 
 use super::store::{Finished, Store, StoreError};
 use super::watch::Watch;
-use crate::outcome::vary::{Quantity, VariedPoint};
+use crate::outcome::vary::{Quantity, VariedPoint, VariedSummary};
 use crate::station::{Catalogue, Document, Refused};
 use serde_json::Value;
 use solve::{Job, Work};
@@ -149,7 +149,8 @@ pub fn collect(plan: &Plan, store: &Store) -> Result<Vec<VariedPoint>, VaryError
     let mut out = Vec::new();
     for values in plan.points()? {
         if let Some(Finished { rows, failed, .. }) = store.get(&plan.key(&values), &want)? {
-            out.push(VariedPoint { values, rows, failed });
+            let summary = VariedSummary::of(&plan.want, &rows);
+            out.push(VariedPoint { values, rows, failed, summary });
         }
     }
     Ok(out)
