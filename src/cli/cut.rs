@@ -2,6 +2,7 @@
 
 use super::flags::{Length, StationArgs, drew, lengths};
 use super::load::load;
+use super::progress::watched;
 use super::stop::Stop;
 use crate::mesh::Density;
 use crate::output;
@@ -51,7 +52,7 @@ impl Cut {
         let question = self.question()?;
         let loaded = load(&self.station)?;
         let stations = cut::variants_of(&loaded.document, &Embedded)?;
-        let outcome = cut::cut(&stations, &question)?;
+        let outcome = watched("steps", |watch| cut::cut_watched(&stations, &question, watch))?;
         if let Some(path) = &self.csv {
             output::whole_file(path, |w| output::csv::cut(&outcome, w))?;
         }

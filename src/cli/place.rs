@@ -2,13 +2,15 @@
 
 use super::flags::{self, Length, StationArgs, drew};
 use super::load::{Loaded, load};
+use super::progress::watched;
 use super::stop::Stop;
 use crate::outcome::joint::LengthsOutcome;
+use crate::outcome::place::PlaceOutcome;
 use crate::output;
 use crate::quantity;
 use crate::station::Embedded;
 use crate::study::cut::variants_of;
-use crate::study::{Candidate, PlaceFailure, PlaceOptions, Unwatched, place, place_over_lengths};
+use crate::study::{Candidate, PlaceFailure, PlaceOptions, Watch, place_over_lengths, place_watched};
 use clap::Args;
 use std::io::Write;
 use std::path::PathBuf;
@@ -58,9 +60,11 @@ impl Place {
             .map(|range| flags::lengths(range).map_err(|e| Stop::Usage(format!("--lengths \"{range}\": {e}"))));
         let range = range.transpose()?;
         let loaded = load(&self.station)?;
-        let lengths = range.map(|lengths_m| self.over_lengths(&loaded, &lengths_m)).transpose()?;
-        let mut outcome = place(&loaded.layout, &loaded.variants, &options)?;
-        outcome.lengths = lengths;
+        let outcome = watched("steps", |watch| -> Result<PlaceOutcome, Stop> {
+            let lengths = range.map(|lengths_m| self.over_lengths(&loaded, &lengths_m, watch)).transpose()?;
+            let placed = place_watched(&loaded.layout, &loaded.variants, &options, watch)?;
+            Ok(PlaceOutcome { lengths, ..placed })
+        })?;
         if let Some(path) = &self.csv {
             output::whole_file(path, |w| output::csv::place(&outcome, w))?;
         }
@@ -77,9 +81,9 @@ impl Place {
         Ok(())
     }
 
-    fn over_lengths(&self, loaded: &Loaded, lengths_m: &[f64]) -> Result<LengthsOutcome, Stop> {
+    fn over_lengths(&self, loaded: &Loaded, lengths_m: &[f64], watch: &dyn Watch) -> Result<LengthsOutcome, Stop> {
         let stations = variants_of(&loaded.document, &Embedded)?;
-        Ok(place_over_lengths(&stations, lengths_m, &self.options(STEP_OVER_LENGTHS_M)?, &Unwatched)?)
+        Ok(place_over_lengths(&stations, lengths_m, &self.options(STEP_OVER_LENGTHS_M)?, watch)?)
     }
 
     fn options(&self, usual_step_m: f64) -> Result<PlaceOptions, Stop> {

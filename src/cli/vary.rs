@@ -2,17 +2,16 @@
 
 use super::flags::StationArgs;
 use super::load::{Loaded, load, set};
-use super::stop::{self, Stop};
+use super::progress::interruptible;
+use super::stop::Stop;
 use crate::layout::{Layout, PartKind};
 use crate::outcome::vary::{DEFAULT_WANT, Quantity, VaryOutcome, quantity_names};
 use crate::output;
 use crate::station::Embedded;
-use crate::study::Watch;
 use crate::study::store::{Store, StoreError};
 use crate::study::vary::{self, Axis, Plan, Sampling, VaryError};
 use clap::Args;
-use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
-use std::io::{IsTerminal, Write};
+use std::io::Write;
 use std::path::PathBuf;
 
 /// Arguments of `vary`.
@@ -67,12 +66,10 @@ impl Vary {
         let loaded = load(&self.station)?;
         let plan = self.plan(&loaded.layout)?;
         let store = self.open()?;
-        stop::finish_points_at_work();
-        let bar = Bar::new();
-        let ended = vary::vary(&loaded.document, &Embedded, &plan, &store, &bar);
-        bar.bar.finish_and_clear();
+        let (ended, interrupted) =
+            interruptible("points", |watch| vary::vary(&loaded.document, &Embedded, &plan, &store, watch));
         let ended = ended?;
-        if ended.stopped {
+        if ended.stopped || interrupted {
             let kept = match &self.store {
                 Some(path) => format!("they are in {}, and the same command goes on from there", path.display()),
                 None => "they are gone; with --store FILE they are kept".to_owned(),
@@ -141,39 +138,6 @@ impl Vary {
         };
         writeln!(std::io::stdout().lock(), "{text}")?;
         Ok(())
-    }
-}
-
-/// Progress on standard error when a person is watching, and Ctrl-C.
-struct Bar {
-    bar: ProgressBar,
-}
-
-impl Bar {
-    fn new() -> Self {
-        let target =
-            if std::io::stderr().is_terminal() { ProgressDrawTarget::stderr() } else { ProgressDrawTarget::hidden() };
-        let bar = ProgressBar::with_draw_target(Some(0), target);
-        if let Ok(style) = ProgressStyle::with_template("{bar:30} {pos} of {len} points, {eta} left") {
-            bar.set_style(style);
-        }
-        Self { bar }
-    }
-}
-
-impl Watch for Bar {
-    fn begins(&self, steps: usize, there: usize) {
-        self.bar.set_length(steps as u64);
-        self.bar.set_position(there as u64);
-        self.bar.reset_eta();
-    }
-
-    fn step_done(&self) {
-        self.bar.inc(1);
-    }
-
-    fn stop(&self) -> bool {
-        stop::interrupted()
     }
 }
 

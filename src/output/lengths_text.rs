@@ -48,16 +48,18 @@ fn answer(joint: &LengthsOutcome, units: Units) -> String {
 }
 
 fn choice(pick: &LengthPick, units: Units) -> String {
-    let [from, to] = pick.length_window_m;
-    let [low, high] = pick.window_m;
+    let within = |[from, to]: [f64; 2], what: &str| match to - from {
+        width if width < 5e-3 => "no other".to_string(),
+        _ => format!("{what} from {}", figures::distances(from, to, units)),
+    };
     format!(
-        "{} of coax and put choke \"{}\" at {} from the feed point (at that length anywhere from {} holds, and with the choke there \
-         any length from {})",
+        "{} of coax with choke \"{}\" at {} from the feed point (places that hold at that length: {}; lengths that hold with the \
+         choke there: {})",
         figures::distance(pick.length_m, units),
         pick.choke,
         figures::distance(pick.at_m, units),
-        figures::distances(low, high, units),
-        figures::distances(from, to, units)
+        within(pick.window_m, "anywhere"),
+        within(pick.length_window_m, "any")
     )
 }
 
@@ -77,13 +79,15 @@ mod tests {
         let text = paragraphs(&joint, Units::Metres);
         for said in [
             "coax from 9.00 to 25.00 m, 41 lengths",
-            "Take 11.40 m of coax and put choke \"5 kohm\" at 5.70 m",
-            "at that length anywhere from 5.40 to 5.90 m holds, and with the choke there any length from 10.80 to 11.80 m",
-            "Runner-up: 15.20 m of coax and put choke \"2 kohm\"",
+            "Take 11.40 m of coax with choke \"5 kohm\" at 5.70 m",
+            "hold at that length: anywhere from 5.40 to 5.90 m; lengths that hold with the choke there: any from 10.80 to 11.80 m",
+            "Runner-up: 15.20 m of coax with choke \"2 kohm\"",
         ] {
             assert!(text.contains(said), "{said} is missing in\n{text}");
         }
         assert!(paragraphs(&joint, Units::Feet).contains("Take 37.4 ft of coax"));
+        joint.picks[0].length_window_m = [11.4, 11.4];
+        assert!(paragraphs(&joint, Units::Metres).contains("with the choke there: no other)"));
         joint.verdict = PlaceVerdict::NoneNeeded;
         joint.why = "with 10 m of coax the station keeps its limits without a choke".into();
         let text = paragraphs(&joint, Units::Metres);

@@ -109,3 +109,8 @@ pub fn whole_file(
 ) -> Result<(), OutputError> {
     whole::write_with(path, |file| fill(file))
 }
+
+/// Removes files that are being written. Only for a process that ends right after: nothing can be written any more.
+pub fn remove_unfinished() {
+    whole::remove_unfinished();
+}

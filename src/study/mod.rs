@@ -22,5 +22,5 @@ pub use place::{
     Candidate, DEFAULT_RESISTANCES_OHM, MOST_VALUES, PlaceFailure, PlaceOptions, place, place_over_lengths,
     place_watched,
 };
-pub use predict::{Failure, Options, predict, predict_variants};
+pub use predict::{Failure, Options, predict, predict_variants, predict_variants_watched};
 pub use watch::{Unwatched, Watch};

@@ -108,7 +108,7 @@ fn a_person_reads_the_pair_of_length_and_place() {
     let more = ["--step", "50 cm", "--impedance", "2 kohm", "--lengths", "14 m .. 15 m by 0.5 m"];
     let out = text(&place("levee-straight", &more).success().get_output().stdout);
     assert!(out.contains("Length of the coax and place of the choke together"), "{out}");
-    assert!(out.contains("of coax and put choke \"2 kohm\" at") && !out.contains("NaN"), "{out}");
+    assert!(out.contains("of coax with choke \"2 kohm\" at") && !out.contains("NaN"), "{out}");
 }
 
 #[test]
