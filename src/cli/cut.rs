@@ -1,13 +1,14 @@
 //! `braidwise cut`.
 
-use super::flags::{Length, StationArgs, drew};
+use super::flags::{Length, StationArgs, drew, lengths};
 use super::load::load;
+use super::progress::watched;
 use super::stop::Stop;
 use crate::mesh::Density;
 use crate::output;
 use crate::quantity::length_m;
 use crate::station::Embedded;
-use crate::study::cut::{self, CutFailure, Lengths, MOST_LENGTHS, Method, Question};
+use crate::study::cut::{self, CutFailure, Lengths, Method, Question};
 use clap::Args;
 use std::io::Write;
 use std::path::PathBuf;
@@ -51,7 +52,7 @@ impl Cut {
         let question = self.question()?;
         let loaded = load(&self.station)?;
         let stations = cut::variants_of(&loaded.document, &Embedded)?;
-        let outcome = cut::cut(&stations, &question)?;
+        let outcome = watched("steps", |watch| cut::cut_watched(&stations, &question, watch))?;
         if let Some(path) = &self.csv {
             output::whole_file(path, |w| output::csv::cut(&outcome, w))?;
         }
@@ -96,31 +97,6 @@ impl From<CutFailure> for Stop {
     }
 }
 
-/// "4 m .. 25 m by 0.5 m" as lengths in metres, both ends included where the steps reach them.
-fn lengths(range: &str) -> Result<Vec<f64>, String> {
-    let shape = "write it as \"4 m .. 25 m by 0.5 m\"";
-    let (from, rest) = range.split_once("..").ok_or_else(|| format!("this is no range; {shape}"))?;
-    let (to, step) = rest.split_once("by").ok_or_else(|| format!("the step is missing; {shape}"))?;
-    let read = |text: &str| length_m(text.trim()).map_err(|e| e.to_string());
-    let (from, to, step) = (read(from)?, read(to)?, read(step)?);
-    if step <= 0.0 {
-        return Err("the step must be longer than zero".to_owned());
-    }
-    if from <= 0.0 {
-        return Err("a length must be longer than zero".to_owned());
-    }
-    if to < from {
-        return Err(format!("the range is reversed; write the shorter length first: {shape}"));
-    }
-    let steps = ((to - from) / step + 1e-9).floor();
-    if steps >= MOST_LENGTHS as f64 {
-        return Err(format!("that is {steps} lengths and {MOST_LENGTHS} are the most; take longer steps"));
-    }
-    // to the micrometre, so that 10 + 3 × 0.1 reads 10.3
-    let at = |n: usize| ((from + step * n as f64) * 1e6).round() / 1e6;
-    Ok((0..=steps as usize).map(at).collect())
-}
-
 /// "25, 33, 50 ft" as names and metres; a bare number takes the unit of the last.
 fn stock(text: &str) -> Result<Vec<(String, f64)>, String> {
     let parts: Vec<&str> = text.split(',').map(str::trim).collect();
@@ -141,24 +117,6 @@ fn stock(text: &str) -> Result<Vec<(String, f64)>, String> {
 mod tests {
     #![allow(clippy::unwrap_used)]
     use super::*;
-
-    #[test]
-    fn ranges_are_read_and_bad_ones_say_why() {
-        assert_eq!(lengths("10 m .. 10.4 m by 10 cm").unwrap(), [10.0, 10.1, 10.2, 10.3, 10.4]);
-        assert_eq!(lengths("10 ft .. 12 ft by 1 ft").unwrap(), [3.048, 3.3528, 3.6576]);
-        for (bad, says) in [
-            ("25 m .. 4 m by 1 m", "reversed"),
-            ("4 m .. 25 m by 0 m", "step"),
-            ("4 m .. 25 m", "step is missing"),
-            ("4 m to 25 m by 1 m", "no range"),
-            ("0 m .. 25 m by 1 m", "longer than zero"),
-            ("4 m .. 25 m by 1 mHz", "length"),
-            ("4 m .. 25 m by 1 um", ""),
-        ] {
-            let error = lengths(bad).unwrap_err();
-            assert!(error.contains(says), "{bad}: {error}");
-        }
-    }
 
     #[test]
     fn a_stock_takes_the_unit_of_its_last() {

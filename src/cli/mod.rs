@@ -1,6 +1,7 @@
 //! The command line: what was typed becomes calls of the library; no physics here.
 //!
-//! One file per command; `flags` holds what they share, `load` reads the station, `stop` the exit statuses and Ctrl-C.
+//! One file per command; `flags` holds what they share, `load` reads the station, `progress` shows how far a study is, `stop` holds the
+//! exit statuses and Ctrl-C.
 
 mod check;
 mod cut;
@@ -8,6 +9,7 @@ mod flags;
 mod load;
 mod place;
 mod predict;
+mod progress;
 mod stop;
 mod vary;
 

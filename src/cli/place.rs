@@ -1,11 +1,16 @@
 //! `braidwise place`.
 
-use super::flags::{Length, StationArgs, drew};
-use super::load::load;
+use super::flags::{self, Length, StationArgs, drew};
+use super::load::{Loaded, load};
+use super::progress::watched;
 use super::stop::Stop;
+use crate::outcome::joint::LengthsOutcome;
+use crate::outcome::place::PlaceOutcome;
 use crate::output;
 use crate::quantity;
-use crate::study::{Candidate, PlaceFailure, PlaceOptions, place};
+use crate::station::Embedded;
+use crate::study::cut::variants_of;
+use crate::study::{Candidate, PlaceFailure, PlaceOptions, Watch, place_over_lengths, place_watched};
 use clap::Args;
 use std::io::Write;
 use std::path::PathBuf;
@@ -18,16 +23,19 @@ pub(super) struct Place {
     /// One JSON document on standard output, nothing else
     #[arg(long)]
     json: bool,
-    /// Distance between the places tried
-    #[arg(long, value_name = "LENGTH", default_value = "1 cm")]
-    step: String,
+    /// Distance between the places tried [default: 1 cm, and 5 cm where --lengths has them tried on every length]
+    #[arg(long, value_name = "LENGTH")]
+    step: Option<String>,
+    /// Try these lengths of the coax too, and choose length and place together, e.g. "5 m .. 25 m by 0.5 m"
+    #[arg(long, value_name = "RANGE")]
+    lengths: Option<String>,
     /// A candidate's resistance, e.g. "2 kohm" (repeatable); without any, and without chokes in the file, 0.5 to 10 kohm
     #[arg(long = "impedance", value_name = "RESISTANCE")]
     impedances: Vec<String>,
     /// A choke of the file that stays where it is, while the others are candidates (repeatable)
     #[arg(long = "keep", value_name = "NAME")]
     keep: Vec<String>,
-    /// Write every value as CSV
+    /// Write every value at the length in the file as CSV
     #[arg(long, value_name = "FILE")]
     csv: Option<PathBuf>,
     /// Draw the maps into a folder (SVG and PNG)
@@ -38,11 +46,25 @@ pub(super) struct Place {
     units: Length,
 }
 
+/// Distance between places on one length, m.
+const STEP_M: f64 = 0.01;
+/// Distance between places where every length has them, m: as far as a hand may set a choke beside the mark.
+const STEP_OVER_LENGTHS_M: f64 = 0.05;
+
 impl Place {
     pub(super) fn run(&self) -> Result<(), Stop> {
-        let options = self.options()?;
+        let options = self.options(STEP_M)?;
+        let range = self
+            .lengths
+            .as_deref()
+            .map(|range| flags::lengths(range).map_err(|e| Stop::Usage(format!("--lengths \"{range}\": {e}"))));
+        let range = range.transpose()?;
         let loaded = load(&self.station)?;
-        let outcome = place(&loaded.layout, &loaded.variants, &options)?;
+        let outcome = watched("steps", |watch| -> Result<PlaceOutcome, Stop> {
+            let lengths = range.map(|lengths_m| self.over_lengths(&loaded, &lengths_m, watch)).transpose()?;
+            let placed = place_watched(&loaded.layout, &loaded.variants, &options, watch)?;
+            Ok(PlaceOutcome { lengths, ..placed })
+        })?;
         if let Some(path) = &self.csv {
             output::whole_file(path, |w| output::csv::place(&outcome, w))?;
         }
@@ -59,8 +81,16 @@ impl Place {
         Ok(())
     }
 
-    fn options(&self) -> Result<PlaceOptions, Stop> {
-        let step_m = quantity::length_m(&self.step).map_err(|e| Stop::Usage(format!("--step: {e}")))?;
+    fn over_lengths(&self, loaded: &Loaded, lengths_m: &[f64], watch: &dyn Watch) -> Result<LengthsOutcome, Stop> {
+        let stations = variants_of(&loaded.document, &Embedded)?;
+        Ok(place_over_lengths(&stations, lengths_m, &self.options(STEP_OVER_LENGTHS_M)?, watch)?)
+    }
+
+    fn options(&self, usual_step_m: f64) -> Result<PlaceOptions, Stop> {
+        let step_m = match &self.step {
+            Some(step) => quantity::length_m(step).map_err(|e| Stop::Usage(format!("--step: {e}")))?,
+            None => usual_step_m,
+        };
         let candidates = self.impedances.iter().map(|text| {
             let ohm = quantity::resistance_ohm(text).map_err(|e| Stop::Usage(format!("--impedance: {e}")))?;
             if ohm > 0.0 && ohm.is_finite() {
@@ -82,6 +112,10 @@ impl Place {
 
 impl From<PlaceFailure> for Stop {
     fn from(failure: PlaceFailure) -> Self {
-        if failure.is_usage() { Stop::Usage(failure.to_string()) } else { Stop::Could(failure.to_string()) }
+        match failure {
+            PlaceFailure::Refused(refused) => Stop::Refused(refused),
+            PlaceFailure::Study(failure) => failure.into(),
+            _ => Stop::Usage(failure.to_string()),
+        }
     }
 }

@@ -2,6 +2,7 @@
 
 use super::flags::{Length, StationArgs, drew};
 use super::load::{load, references};
+use super::progress::watched;
 use super::stop::Stop;
 use crate::layout::{BandEdge, FrequencyPoint, Layout};
 use crate::mesh::Density;
@@ -9,8 +10,8 @@ use crate::outcome::Prediction;
 use crate::outcome::curve::InterpolatedCurve;
 use crate::output;
 use crate::quantity;
-use crate::study::curve::{CurveOptions, PortCurve, of_bands, spaced};
-use crate::study::{Options, pattern, predict_variants};
+use crate::study::curve::{CurveOptions, PortCurve, of_bands_watched, spaced};
+use crate::study::{Failure, Options, Watch, pattern, predict_variants_watched};
 use clap::Args;
 use num_complex::Complex64;
 use serde::Serialize;
@@ -71,13 +72,18 @@ impl Predict {
         let range = self.range()?;
         let density = Density { factor: self.density };
         let options = Options { density, frequencies: range.map(|(low, high)| full(low, high, self.points)) };
-        let mut prediction = predict_variants(&loaded.layout, &loaded.variants, &options)?;
-        if self.pattern || self.plots.is_some() {
-            for frequency_hz in pattern_frequencies(&prediction) {
-                prediction.patterns.push(pattern(&loaded.layout, frequency_hz)?);
+        let (prediction, curve) = watched("steps", |watch| -> Result<_, Failure> {
+            let mut prediction = predict_variants_watched(&loaded.layout, &loaded.variants, &options, watch)?;
+            if self.pattern || self.plots.is_some() {
+                for frequency_hz in pattern_frequencies(&prediction) {
+                    if watch.stop() {
+                        return Err(Failure::Stopped);
+                    }
+                    prediction.patterns.push(pattern(&loaded.layout, frequency_hz)?);
+                }
             }
-        }
-        let curve = self.curve(&loaded.layout, range)?;
+            Ok((prediction, self.curve(&loaded.layout, range, watch)?))
+        })?;
         if let Some(path) = &self.csv {
             output::whole_file(path, |w| output::csv::prediction(&prediction, w))?;
         }
@@ -113,13 +119,19 @@ impl Predict {
     }
 
     /// The interpolated curve where one was asked for.
-    fn curve(&self, layout: &Layout, range: Option<(f64, f64)>) -> Result<Option<InterpolatedCurve>, Stop> {
+    fn curve(
+        &self,
+        layout: &Layout,
+        range: Option<(f64, f64)>,
+        watch: &dyn Watch,
+    ) -> Result<Option<InterpolatedCurve>, Failure> {
         let options = CurveOptions { density: Density { factor: self.density }, ..CurveOptions::default() };
         Ok(match range {
             Some((low, high)) => {
-                Some(PortCurve::new(layout, low, high, options)?.outcome(&spaced(low, high, CURVE_POINTS))?)
+                let curve = PortCurve::watched(layout, (low, high), options, watch)?;
+                Some(curve.outcome(&spaced(low, high, CURVE_POINTS))?)
             }
-            None if self.curve => Some(of_bands(layout, BAND_POINTS, options)?),
+            None if self.curve => Some(of_bands_watched(layout, BAND_POINTS, options, watch)?),
             None => None,
         })
     }

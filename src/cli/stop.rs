@@ -1,11 +1,11 @@
 //! Why the program stops, and with which exit status: 0 done; 1 could not; 2 the command line or station is wrong; 130 interrupted.
 
-use crate::output::OutputError;
+use crate::output::{self, OutputError};
 use crate::station::Refused;
 use crate::study::Failure;
 use std::io::IsTerminal;
 use std::process::ExitCode;
-use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::atomic::{AtomicU8, Ordering};
 
 /// A reason to stop.
 #[derive(Debug)]
@@ -51,6 +51,7 @@ impl From<Failure> for Stop {
     fn from(failure: Failure) -> Self {
         match failure {
             Failure::NoFrequency => Stop::Usage(failure.to_string()),
+            Failure::Stopped => Stop::Interrupted("nothing was written".to_owned()),
             _ => Stop::Could(failure.to_string()),
         }
     }
@@ -62,29 +63,43 @@ impl From<std::io::Error> for Stop {
     }
 }
 
-/// Set while a command finishes the points at work after a first Ctrl-C.
-static FINISHES: AtomicBool = AtomicBool::new(false);
-/// Set by the first Ctrl-C of such a command.
-static INTERRUPTED: AtomicBool = AtomicBool::new(false);
+/// What Ctrl-C does just now.
+static STATE: AtomicU8 = AtomicU8::new(AT_ONCE);
+/// It ends the program.
+const AT_ONCE: u8 = 0;
+/// It asks the study to finish the steps at work.
+const STEPS_AT_WORK: u8 = 1;
+/// It has asked, and ends the program the next time.
+const ASKED: u8 = 2;
 
-/// End with status 130 on Ctrl-C. Files appear whole or not at all, so nothing needs tidying.
+fn moves(from: u8, to: u8) -> bool {
+    STATE.compare_exchange(from, to, Ordering::SeqCst, Ordering::SeqCst).is_ok()
+}
+
+/// End with status 130 on Ctrl-C, and take files along that are half written.
 pub(super) fn on_interrupt() {
     // a second handler in one process cannot happen: `run` is called once
     let _ = ctrlc::set_handler(|| {
-        if FINISHES.load(Ordering::SeqCst) && !INTERRUPTED.swap(true, Ordering::SeqCst) {
+        if moves(STEPS_AT_WORK, ASKED) {
             return;
         }
+        output::remove_unfinished();
         eprintln!("interrupted");
         std::process::exit(130);
     });
 }
 
 /// From here on the first Ctrl-C only sets [`interrupted`]; a second one ends the program at once.
-pub(super) fn finish_points_at_work() {
-    FINISHES.store(true, Ordering::SeqCst);
+pub(super) fn finish_steps_at_work() {
+    STATE.store(STEPS_AT_WORK, Ordering::SeqCst);
 }
 
-/// Whether Ctrl-C was pressed since [`finish_points_at_work`].
+/// Whether Ctrl-C was pressed since [`finish_steps_at_work`].
 pub(super) fn interrupted() -> bool {
-    INTERRUPTED.load(Ordering::SeqCst)
+    STATE.load(Ordering::SeqCst) == ASKED
+}
+
+/// From here on Ctrl-C ends the program at once again; whether it was pressed before.
+pub(super) fn end_at_once() -> bool {
+    !moves(STEPS_AT_WORK, AT_ONCE)
 }

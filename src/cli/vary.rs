@@ -2,16 +2,16 @@
 
 use super::flags::StationArgs;
 use super::load::{Loaded, load, set};
-use super::stop::{self, Stop};
+use super::progress::interruptible;
+use super::stop::Stop;
 use crate::layout::{Layout, PartKind};
 use crate::outcome::vary::{DEFAULT_WANT, Quantity, VaryOutcome, quantity_names};
 use crate::output;
 use crate::station::Embedded;
 use crate::study::store::{Store, StoreError};
-use crate::study::vary::{self, Axis, Plan, Sampling, VaryError, Watch};
+use crate::study::vary::{self, Axis, Plan, Sampling, VaryError};
 use clap::Args;
-use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
-use std::io::{IsTerminal, Write};
+use std::io::Write;
 use std::path::PathBuf;
 
 /// Arguments of `vary`.
@@ -50,6 +50,9 @@ fn quantities() -> String {
     let mut text = String::from(
         "A point that cannot be meant or solved is kept with its reason, and the rest go on.\n\
          Rods, bonds and everything protective are given and cannot be varied.\n\n\
+         Formats: --csv FILE, a row a point, variant and frequency, a column a quantity; --jsonl FILE, the same rows as JSON\n\
+         lines, an object a line; --json, one document with the rows of every point and its \"summary\": each quantity as\n\
+         written and at its worst over the variants, with the variant and frequency. With none of them, tables to read.\n\n\
          Quantities for --want, currents and voltages RMS:\n",
     );
     for name in quantity_names() {
@@ -63,12 +66,10 @@ impl Vary {
         let loaded = load(&self.station)?;
         let plan = self.plan(&loaded.layout)?;
         let store = self.open()?;
-        stop::finish_points_at_work();
-        let bar = Bar::new();
-        let ended = vary::vary(&loaded.document, &Embedded, &plan, &store, &bar);
-        bar.bar.finish_and_clear();
+        let (ended, interrupted) =
+            interruptible("points", |watch| vary::vary(&loaded.document, &Embedded, &plan, &store, watch));
         let ended = ended?;
-        if ended.stopped {
+        if ended.stopped || interrupted {
             let kept = match &self.store {
                 Some(path) => format!("they are in {}, and the same command goes on from there", path.display()),
                 None => "they are gone; with --store FILE they are kept".to_owned(),
@@ -137,39 +138,6 @@ impl Vary {
         };
         writeln!(std::io::stdout().lock(), "{text}")?;
         Ok(())
-    }
-}
-
-/// Progress on standard error when a person is watching, and Ctrl-C.
-struct Bar {
-    bar: ProgressBar,
-}
-
-impl Bar {
-    fn new() -> Self {
-        let target =
-            if std::io::stderr().is_terminal() { ProgressDrawTarget::stderr() } else { ProgressDrawTarget::hidden() };
-        let bar = ProgressBar::with_draw_target(Some(0), target);
-        if let Ok(style) = ProgressStyle::with_template("{bar:30} {pos} of {len} points, {eta} left") {
-            bar.set_style(style);
-        }
-        Self { bar }
-    }
-}
-
-impl Watch for Bar {
-    fn begins(&self, points: usize, there: usize) {
-        self.bar.set_length(points as u64);
-        self.bar.set_position(there as u64);
-        self.bar.reset_eta();
-    }
-
-    fn point_done(&self) {
-        self.bar.inc(1);
-    }
-
-    fn stop(&self) -> bool {
-        stop::interrupted()
     }
 }
 

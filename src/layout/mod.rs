@@ -18,6 +18,9 @@ mod place;
 mod surface;
 mod terminals;
 
+/// The impedance of a lumped part, as data.
+pub use crate::station::Law as PartLaw;
+
 use nalgebra::Vector3;
 
 /// A point or direction in space, metres: east, north, up.
@@ -215,38 +218,6 @@ pub enum PartKind {
     Choke,
     /// An `[[inline]]` part.
     Inline,
-}
-
-/// The impedance of a lumped part, as data.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub enum PartLaw {
-    /// The same at every frequency.
-    Fixed {
-        /// Ohm.
-        resistance_ohm: f64,
-        /// Ohm.
-        reactance_ohm: f64,
-    },
-    /// Resistance, inductance and capacitance in parallel.
-    ParallelResonant {
-        /// Ohm.
-        resistance_ohm: f64,
-        /// Henry.
-        inductance_h: f64,
-        /// Farad.
-        capacitance_f: f64,
-    },
-    /// Any of the three, in series or in parallel.
-    Elements {
-        /// Ohm.
-        resistance_ohm: Option<f64>,
-        /// Henry.
-        inductance_h: Option<f64>,
-        /// Farad.
-        capacitance_f: Option<f64>,
-        /// True: in series.
-        in_series: bool,
-    },
 }
 
 /// A choke or an inline part in its place.

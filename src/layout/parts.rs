@@ -2,9 +2,9 @@
 
 use super::place::{JOIN_M, Placing};
 use super::terminals::GAP_RADII;
-use super::{Feed, PartKind, PartLaw, PlacedPart};
+use super::{Feed, PartKind, PlacedPart};
 use crate::quantity::{metres, metres_and_feet};
-use crate::station::{Law, Part, PartSort};
+use crate::station::{Part, PartSort};
 
 impl Placing<'_> {
     /// Places every part; chokes come first, in file order.
@@ -66,15 +66,7 @@ impl Placing<'_> {
             PartSort::Choke => PartKind::Choke,
             PartSort::Inline => PartKind::Inline,
         };
-        Some(PlacedPart {
-            name: name.clone(),
-            kind,
-            conductor,
-            at_m: part.at_m.value,
-            from_m,
-            to_m,
-            law: law(part.law),
-        })
+        Some(PlacedPart { name: name.clone(), kind, conductor, at_m: part.at_m.value, from_m, to_m, law: part.law })
     }
 
     /// The gap of a part: centred on its place; at a join on the feed side of it; inside the conductor; clear of the
@@ -121,17 +113,5 @@ fn word(sort: PartSort) -> &'static str {
     match sort {
         PartSort::Choke => "choke",
         PartSort::Inline => "inline part",
-    }
-}
-
-fn law(law: Law) -> PartLaw {
-    match law {
-        Law::Fixed { resistance_ohm, reactance_ohm } => PartLaw::Fixed { resistance_ohm, reactance_ohm },
-        Law::ParallelResonant { resistance_ohm, inductance_h, capacitance_f } => {
-            PartLaw::ParallelResonant { resistance_ohm, inductance_h, capacitance_f }
-        }
-        Law::Elements { resistance_ohm, inductance_h, capacitance_f, in_series } => {
-            PartLaw::Elements { resistance_ohm, inductance_h, capacitance_f, in_series }
-        }
     }
 }

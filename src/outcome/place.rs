@@ -3,6 +3,7 @@
 //! Arrays are nested in the order their documentation names: `[variant][choke][frequency][place]` means
 //! `values[variant][choke][frequency][place]`. `variants[0]` is always "nominal", the station as written.
 
+use super::joint::LengthsOutcome;
 use crate::layout::Warning;
 use num_complex::Complex64;
 use serde::{Deserialize, Serialize};
@@ -76,6 +77,9 @@ pub struct PlaceOutcome {
     /// Everything doubtful.
     #[serde(default)]
     pub warnings: Vec<Warning>,
+    /// The length of the coax chosen together with the place, where that was asked for.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub lengths: Option<LengthsOutcome>,
 }
 
 /// Limits a choice had to keep.

@@ -29,6 +29,97 @@ pub struct VariedPoint {
     /// Why there are no results.
     #[serde(default, skip_serializing_if = "Option::is_none")]
     pub failed: Option<String>,
+    /// Nominal and over the variants, one a quantity wanted; empty where the point failed.
+    #[serde(default, skip_serializing_if = "Vec::is_empty")]
+    pub summary: Vec<VariedSummary>,
+}
+
+/// One quantity of a point: its ends over the frequencies, as written and over all variants.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct VariedSummary {
+    /// The quantity.
+    pub quantity: String,
+    /// Which way it gets worse; `None` where neither is worse.
+    pub worse: Option<Worse>,
+    /// The station as written.
+    pub nominal: VariedEnds,
+    /// All variants, the station as written among them.
+    pub over_variants: VariedEnds,
+}
+
+/// The ends of a quantity; all `None` where it exists nowhere.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct VariedEnds {
+    /// The smallest value.
+    pub smallest: Option<VariedExtreme>,
+    /// The largest value.
+    pub largest: Option<VariedExtreme>,
+    /// Of the two the worse; `None` where neither is.
+    pub worst: Option<VariedExtreme>,
+}
+
+/// A value and where it occurs.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct VariedExtreme {
+    /// The value.
+    pub value: f64,
+    /// Variant.
+    pub variant: String,
+    /// Hz.
+    pub frequency_hz: f64,
+}
+
+/// Which way a quantity gets worse.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "lowercase")]
+pub enum Worse {
+    /// The larger the worse: standing-wave ratio, currents, voltages, losses, errors.
+    Larger,
+    /// The smaller the worse: what is radiated.
+    Smaller,
+}
+
+impl VariedSummary {
+    /// Every quantity wanted over the rows of a point.
+    #[must_use]
+    pub fn of(want: &[Quantity], rows: &[VariedRow]) -> Vec<Self> {
+        if rows.is_empty() {
+            return Vec::new();
+        }
+        let one = |(n, quantity): (usize, &Quantity)| {
+            let worse = quantity.worse();
+            Self {
+                quantity: quantity.name.clone(),
+                worse,
+                nominal: VariedEnds::of(rows.iter().filter(|r| r.variant == "nominal"), n, worse),
+                over_variants: VariedEnds::of(rows.iter(), n, worse),
+            }
+        };
+        want.iter().enumerate().map(one).collect()
+    }
+}
+
+impl VariedEnds {
+    /// The ends of the value with an index; of equal ones the first counts.
+    fn of<'a>(rows: impl Iterator<Item = &'a VariedRow>, value: usize, worse: Option<Worse>) -> Self {
+        let (mut smallest, mut largest): (Option<VariedExtreme>, Option<VariedExtreme>) = (None, None);
+        for row in rows {
+            let Some(value) = row.values.get(value).copied().flatten() else { continue };
+            let here = || Some(VariedExtreme { value, variant: row.variant.clone(), frequency_hz: row.frequency_hz });
+            if smallest.as_ref().is_none_or(|s| value < s.value) {
+                smallest = here();
+            }
+            if largest.as_ref().is_none_or(|l| value > l.value) {
+                largest = here();
+            }
+        }
+        let worst = match worse {
+            Some(Worse::Larger) => largest.clone(),
+            Some(Worse::Smaller) => smallest.clone(),
+            None => None,
+        };
+        Self { smallest, largest, worst }
+    }
 }
 
 /// The quantities of a point in one variant at one frequency.
@@ -175,6 +266,25 @@ impl Quantity {
         value.filter(|v| v.is_finite())
     }
 
+    /// Which way it gets worse; `None` for resistances, reactances, places, constants and what must only balance.
+    #[must_use]
+    pub fn worse(&self) -> Option<Worse> {
+        let losses = ["earth_w", "metal_w", "line_w", "transformer_w", "chokes_w", "inline_w", "dissipated_w"];
+        let last = self.name.rsplit('.').next().unwrap_or(&self.name);
+        if last.starts_with("radiated_") {
+            Some(Worse::Smaller)
+        } else if last == "swr"
+            || last.ends_with("_a")
+            || last.ends_with("_v")
+            || losses.contains(&last)
+            || self.needs_second_mesh()
+        {
+            Some(Worse::Larger)
+        } else {
+            None
+        }
+    }
+
     /// Whether it rests on the power radiated or lost in the earth, which are dear.
     #[must_use]
     pub fn needs_power_budget(&self) -> bool {
@@ -223,6 +333,58 @@ mod tests {
         assert_eq!(near("shield.entry_curent_a")[0], "shield.entry_current_a");
         assert_eq!(near("choke.entry.dissipated_w")[0], "choke.entry choke.dissipated_w");
         assert!(Quantity::named("choke.entry choke.voltage_v", &["entry choke".to_owned()], &[]).is_ok());
+    }
+
+    fn wanted(names: &[&str]) -> Vec<Quantity> {
+        names.iter().map(|n| Quantity::named(n, &["a.b choke".to_owned()], &[]).unwrap()).collect()
+    }
+
+    #[test]
+    fn a_summary_has_nominal_and_worst_with_variant_and_frequency() {
+        let row = |variant: &str, frequency_hz: f64, values: [Option<f64>; 3]| VariedRow {
+            variant: variant.to_owned(),
+            frequency_hz,
+            band: None,
+            edge: None,
+            values: values.to_vec(),
+        };
+        let rows = [
+            row("nominal", 7e6, [Some(2.0), Some(0.5), None]),
+            row("nominal", 14e6, [Some(1.5), Some(0.6), None]),
+            row("flood", 7e6, [Some(3.0), Some(0.4), Some(7.0)]),
+            row("flood", 14e6, [Some(1.2), Some(0.7), Some(-2.0)]),
+        ];
+        let want = wanted(&["radio.swr", "power.radiated_fraction", "feed.reactance_ohm"]);
+        let [swr, radiated, reactance] = VariedSummary::of(&want, &rows).try_into().unwrap();
+        let told = |e: &Option<VariedExtreme>| e.as_ref().map(|e| (e.value, e.variant.clone(), e.frequency_hz));
+        assert_eq!(told(&swr.nominal.worst), Some((2.0, "nominal".to_owned(), 7e6)));
+        assert_eq!(told(&swr.over_variants.worst), Some((3.0, "flood".to_owned(), 7e6)));
+        assert_eq!(told(&swr.over_variants.smallest), Some((1.2, "flood".to_owned(), 14e6)));
+        assert_eq!(told(&radiated.over_variants.worst), Some((0.4, "flood".to_owned(), 7e6)));
+        assert_eq!(told(&radiated.nominal.worst), Some((0.5, "nominal".to_owned(), 7e6)));
+        assert_eq!((reactance.worse, reactance.over_variants.worst.is_none()), (None, true));
+        assert_eq!(told(&reactance.nominal.largest), None);
+        assert_eq!(told(&reactance.over_variants.smallest), Some((-2.0, "flood".to_owned(), 14e6)));
+        assert!(VariedSummary::of(&want, &[]).is_empty());
+    }
+
+    #[test]
+    fn worse_is_larger_for_what_hurts_and_smaller_for_what_is_wanted() {
+        let larger = ["radio.swr", "shield.entry_current_a", "shield.end_voltage_v", "power.earth_w", "power.chokes_w"];
+        let parts = ["choke.a.b choke.dissipated_w", "choke.a.b choke.voltage_v", "joint.mast.current_a"];
+        let smaller = ["power.radiated_w", "power.radiated_fraction"];
+        let neither = ["feed.resistance_ohm", "shield.largest_at_m", "power.input_w", "power.unaccounted_w"];
+        for (names, worse) in [
+            (&larger[..], Some(Worse::Larger)),
+            (&parts, Some(Worse::Larger)),
+            (&["discretisation.resistance_ohm"], Some(Worse::Larger)),
+            (&smaller, Some(Worse::Smaller)),
+            (&neither, None),
+        ] {
+            for quantity in wanted(names) {
+                assert_eq!(quantity.worse(), worse, "{}", quantity.name);
+            }
+        }
     }
 
     #[test]

@@ -16,6 +16,7 @@ mod bands;
 mod cautions;
 mod csv_studies;
 mod figures;
+mod lengths_text;
 mod whole;
 mod worst;
 
@@ -107,4 +108,9 @@ pub fn whole_file(
     fill: impl FnOnce(&mut dyn Write) -> Result<(), OutputError>,
 ) -> Result<(), OutputError> {
     whole::write_with(path, |file| fill(file))
+}
+
+/// Removes files that are being written. Only for a process that ends right after: nothing can be written any more.
+pub fn remove_unfinished() {
+    whole::remove_unfinished();
 }

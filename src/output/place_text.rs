@@ -1,7 +1,7 @@
 //! What `place` says: the verdict, the pick with its window, the runner-up, every band with and without, where to clamp a meter.
 
 use super::bands::{self, Group};
-use super::{Units, cautions, figures};
+use super::{Units, cautions, figures, lengths_text};
 use crate::outcome::place::{OverFrequency, OverPlace, PlaceOutcome, PlacePick, PlaceVerdict, WorstCase};
 use comfy_table::{Cell, CellAlignment, ContentArrangement, Table, TableComponent, presets};
 
@@ -21,7 +21,11 @@ pub fn verdict(place: &PlaceOutcome, units: Units) -> String {
         text.push_str(&format!("\nRunner-up: {}\n{}", choice(second, units), details(place, second, units)));
     }
     text.push_str(&clamp(place, units));
-    text.push_str(&warnings(&place.warnings));
+    if let Some(joint) = &place.lengths {
+        text.push_str(&lengths_text::paragraphs(joint, units));
+    }
+    let of_lengths = place.lengths.iter().flat_map(|joint| &joint.warnings);
+    text.push_str(&warnings(&place.warnings.iter().chain(of_lengths).cloned().collect::<Vec<_>>()));
     text.push('\n');
     text.push_str(&cautions::paragraph(&[cautions::CHOKE]));
     text
@@ -238,6 +242,8 @@ mod tests {
             assert!(text.contains(said), "{said} is missing in\n{text}");
         }
         assert!(verdict(&place, Units::Feet).contains("at 18.7 ft"));
+        let text = verdict(&sample_studies::joint(), Units::Metres);
+        assert!(text.contains("Take 11.40 m of coax") && text.contains("the range begins at 9 m"), "{text}");
     }
 
     #[test]

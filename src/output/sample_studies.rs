@@ -2,7 +2,7 @@
 
 use crate::layout::Warning;
 use crate::outcome::cut::*;
-use crate::outcome::joint::LengthByPlaceOutcome;
+use crate::outcome::joint::{LengthPick, LengthsOutcome, LengthsWithoutOutcome, OverLengthAndPlace};
 use crate::outcome::place::*;
 use num_complex::Complex64;
 use std::f64::consts::PI;
@@ -121,6 +121,7 @@ pub(crate) fn place() -> PlaceOutcome {
             ClampOutcome { frequency_hz: 7.1e6, at_m: 3.0, current_a: 0.31, range_a: [0.28, 0.36] },
         ],
         warnings: vec![Warning { about: "coax".into(), message: "lies on the surface".into() }],
+        lengths: None,
     }
 }
 
@@ -236,22 +237,54 @@ pub(crate) fn cut_two() -> CutOutcome {
     }
 }
 
-/// Length of the coax against place of the choke.
-pub(crate) fn joint() -> LengthByPlaceOutcome {
-    let lengths_m: Vec<f64> = (0..=80).map(|i| 9.0 + 0.2 * f64::from(i)).collect();
-    let places_m: Vec<f64> = (0..=250).map(|i| 0.1 * f64::from(i)).collect();
-    let over = |value: &dyn Fn(f64, f64, f64) -> f64| -> Vec<Vec<Vec<Option<f64>>>> {
-        let row = |hz: f64, l: f64| places_m.iter().map(|p| (*p <= l).then(|| value(hz, l, *p))).collect::<Vec<_>>();
-        HERTZ.iter().map(|hz| lengths_m.iter().map(|l| row(*hz, *l)).collect()).collect()
+/// A placement with the length of the coax free too.
+pub(crate) fn joint() -> PlaceOutcome {
+    let ohms = [1000.0, 2000.0, 5000.0];
+    let lengths_m: Vec<f64> = (0..=40).map(|i| 9.0 + 0.4 * f64::from(i)).collect();
+    let places_m: Vec<f64> = (0..=125).map(|i| 0.2 * f64::from(i)).collect();
+    let over = |value: &dyn Fn(f64, f64, f64, f64) -> f64| -> OverLengthAndPlace {
+        let row = |ohm: f64, hz: f64, l: f64| {
+            places_m.iter().map(|p| (*p <= l).then(|| value(ohm, hz, l, *p))).collect::<Vec<_>>()
+        };
+        let plane = |ohm: f64, hz: f64| lengths_m.iter().map(|l| row(ohm, hz, *l)).collect::<Vec<_>>();
+        ohms.iter().map(|ohm| HERTZ.iter().map(|hz| plane(*ohm, *hz)).collect()).collect()
     };
-    LengthByPlaceOutcome {
-        station: place().station,
-        limits: place().limits,
-        choke: "2 kohm".into(),
-        frequencies_hz: HERTZ.to_vec(),
-        entry_current_a: over(&|hz, l, p| entry_current(1, 2000.0, hz, p, l)),
-        swr: over(&|hz, l, p| swr(1, 2000.0, hz, p) + 0.4 * (wavenumber(hz) * l).cos().powi(8)),
+    let current = |ohm: f64, hz: f64, l: f64, p: f64| entry_current(1, ohm, hz, p, l);
+    let ratio = |ohm: f64, hz: f64, l: f64, p: f64| swr(1, ohm, hz, p) + 0.4 * (wavenumber(hz) * l).cos().powi(8);
+    let without = vec![vec![Some(0.2); lengths_m.len()]; HERTZ.len()];
+    let plain = place();
+    let pick = |choke: &str, length_m: f64, at_m: f64| LengthPick {
+        choke: choke.into(),
+        length_m,
+        length_window_m: [length_m - 0.6, length_m + 0.4],
+        at_m,
+        window_m: [at_m - 0.3, at_m + 0.2],
+        worst: plain.picks[0].worst.clone(),
+        why: "within limits on all five bands, wet or dry".into(),
+    };
+    let lengths = LengthsOutcome {
+        moving_end: "the radio's end of the coax".into(),
+        present_length_m: 12.0,
+        chokes: plain.chokes.iter().map(|c| c.name.clone()).collect(),
+        without: LengthsWithoutOutcome {
+            entry_current_a: without.clone(),
+            last_metre_current_a: without.clone(),
+            end_voltage_v: without.clone(),
+            swr: without,
+        },
+        end_voltage_limit_v: vec![140.0; lengths_m.len()],
+        entry_current_a: over(&current),
+        last_metre_current_a: over(&|ohm, hz, l, p| 0.4 * current(ohm, hz, l, p)),
+        end_voltage_v: over(&|ohm, hz, l, p| 800.0 * current(ohm, hz, l, p)),
+        swr: over(&ratio),
+        choke_w: over(&|ohm, hz, _, p| heat(1, ohm, hz, p)),
+        none_needed_at_m: vec![],
+        verdict: PlaceVerdict::Place,
+        why: "with 11.40 m of coax and the choke at 5.70 m: within limits on all five bands, wet or dry".into(),
+        picks: vec![pick("5 kohm", 11.4, 5.7), pick("2 kohm", 15.2, 7.4), pick("5 kohm", 20.2, 9.0)],
+        warnings: vec![Warning { about: "coax".into(), message: "the range begins at 9 m instead of 5 m".into() }],
         lengths_m,
         places_m,
-    }
+    };
+    PlaceOutcome { lengths: Some(lengths), ..plain }
 }

@@ -1,7 +1,7 @@
-//! Varied points as comma-separated rows, as JSON lines, and as a table of the extremes.
+//! Varied points as comma-separated rows, as JSON lines, and as tables: the extremes, and nominal and worst at every point.
 
 use super::OutputError;
-use crate::outcome::vary::{VariedPoint, VariedRow, VaryOutcome};
+use crate::outcome::vary::{VariedEnds, VariedExtreme, VariedPoint, VariedRow, VaryOutcome, Worse};
 use comfy_table::{CellAlignment, Table, presets};
 use serde_json::{Map, Value, json};
 use std::io::Write;
@@ -58,7 +58,11 @@ pub fn json_lines(outcome: &VaryOutcome, out: &mut dyn Write) -> Result<(), Outp
     Ok(())
 }
 
-/// For every quantity its least and greatest value and where they are, then how many points failed and why.
+/// Points a table lists at most; more of them are a matter for a file.
+const LISTED: usize = 40;
+
+/// For every quantity its least and greatest value and where they are, how many points failed and why, and for every quantity each
+/// point as written and at its worst over the variants.
 #[must_use]
 pub fn table(outcome: &VaryOutcome) -> String {
     let mut table = Table::new();
@@ -99,7 +103,64 @@ pub fn table(outcome: &VaryOutcome) -> String {
             first.failed.as_deref().unwrap_or_default()
         )),
     }
+    text.push_str(&each_point(outcome));
     text
+}
+
+/// Nominal and worst of every point, a table a quantity.
+fn each_point(outcome: &VaryOutcome) -> String {
+    let points: Vec<&VariedPoint> = outcome.points.iter().filter(|p| !p.summary.is_empty()).collect();
+    if points.is_empty() {
+        return String::new();
+    }
+    if points.len() > LISTED {
+        return format!(
+            "\nNominal and worst over the variants of each of the {} points: with --json, under \"summary\".\n",
+            points.len()
+        );
+    }
+    let with_variants = points.iter().flat_map(|p| &p.rows).any(|r| r.variant != "nominal");
+    let mut text = String::new();
+    for (n, name) in outcome.want.iter().enumerate() {
+        let worse = points.iter().find_map(|p| p.summary.get(n)?.worse);
+        let (what, over) = match worse {
+            Some(Worse::Larger) => (" (worst is the largest)", "worst over the variants"),
+            Some(Worse::Smaller) => (" (worst is the smallest)", "worst over the variants"),
+            None => ("", "over the variants"),
+        };
+        let mut table = Table::new();
+        table.load_preset(presets::ASCII_MARKDOWN);
+        let mut heads: Vec<&str> = outcome.over.iter().map(String::as_str).chain(["nominal"]).collect();
+        if with_variants {
+            heads.push(over);
+        }
+        table.set_header(heads);
+        for point in &points {
+            let Some(summary) = point.summary.get(n) else { continue };
+            let mut cells = point.values.clone();
+            cells.push(ends(&summary.nominal));
+            if with_variants {
+                cells.push(ends(&summary.over_variants));
+            }
+            table.add_row(cells);
+        }
+        text.push_str(&format!("\n{name}{what}\n{table}\n"));
+    }
+    text
+}
+
+/// The worst value and where it is, or both ends where neither is worse.
+fn ends(ends: &VariedEnds) -> String {
+    let at = |e: &VariedExtreme| {
+        let variant = if e.variant == "nominal" { String::new() } else { format!(", {}", e.variant) };
+        format!("{} at {:.4} MHz{variant}", figure(e.value), e.frequency_hz / 1e6)
+    };
+    match (&ends.worst, &ends.smallest, &ends.largest) {
+        (Some(worst), _, _) => at(worst),
+        (None, Some(smallest), Some(largest)) if smallest == largest => at(smallest),
+        (None, Some(smallest), Some(largest)) => format!("{} to {}", at(smallest), at(largest)),
+        _ => "none".to_owned(),
+    }
 }
 
 fn figure(value: f64) -> String {
@@ -124,6 +185,11 @@ fn edge(row: &VariedRow) -> Option<String> {
 mod tests {
     #![allow(clippy::unwrap_used)]
     use super::*;
+    use crate::outcome::vary::{Quantity, VariedSummary};
+
+    fn want() -> Vec<Quantity> {
+        ["radio.swr", "power.unaccounted_w"].map(|n| Quantity::named(n, &[], &[]).unwrap()).to_vec()
+    }
 
     fn outcome() -> VaryOutcome {
         let row = |variant: &str, swr: f64| VariedRow {
@@ -135,6 +201,7 @@ mod tests {
         };
         let point = |value: &str, rows: Vec<VariedRow>, failed: Option<&str>| VariedPoint {
             values: vec![value.to_owned()],
+            summary: VariedSummary::of(&want(), &rows),
             rows,
             failed: failed.map(str::to_owned),
         };
@@ -178,5 +245,14 @@ mod tests {
         let text = table(&outcome());
         assert!(text.contains("coax.length = 4 m, 7.1000 MHz, flood"), "{text}");
         assert!(text.contains("2 points, 1 failed, the first at coax.length = 40 m"), "{text}");
+        let mut other = outcome();
+        (other.points[0].rows[1].values[0], other.points[0].rows[1].frequency_hz) = (Some(4.25), 7.15e6);
+        other.points[0].summary = VariedSummary::of(&want(), &other.points[0].rows);
+        for said in ["radio.swr (worst is the largest)", "3.5000 at 7.1000 MHz", "4.2500 at 7.1500 MHz, flood"] {
+            let text = table(&other);
+            assert!(text.contains(said), "{said} is missing in {text}");
+        }
+        other.points = std::iter::repeat_n(other.points[0].clone(), LISTED + 1).collect();
+        assert!(table(&other).contains("of each of the 41 points: with --json"), "{}", table(&other));
     }
 }

@@ -2,8 +2,36 @@
 
 use super::OutputError;
 use std::io::Write;
-use std::path::Path;
+use std::path::{Path, PathBuf};
+use std::sync::{Mutex, MutexGuard, PoisonError};
 use tempfile::{Builder, NamedTempFile};
+
+/// Temporary files that are being filled, so that a process about to end can take them with it.
+struct Unfinished(Mutex<Vec<PathBuf>>);
+
+static UNFINISHED: Unfinished = Unfinished(Mutex::new(Vec::new()));
+
+impl Unfinished {
+    fn list(&self) -> MutexGuard<'_, Vec<PathBuf>> {
+        // a panic elsewhere leaves the list itself sound
+        self.0.lock().unwrap_or_else(PoisonError::into_inner)
+    }
+
+    /// Takes away what is being filled and never lets go of the list: no file is begun or put in its place any more.
+    fn remove(&self) {
+        let list = self.list();
+        for path in list.iter() {
+            // gone already, or not ours to remove: there is nothing more to be done about it
+            let _ = std::fs::remove_file(path);
+        }
+        std::mem::forget(list);
+    }
+}
+
+/// Removes files that are being written. Only for a process that ends right after: nothing can be written any more.
+pub(super) fn remove_unfinished() {
+    UNFINISHED.remove();
+}
 
 /// Runs `fill` on a temporary file beside `path`, and puts it in the place of `path` only when everything went well.
 ///
@@ -21,10 +49,17 @@ pub(super) fn write_with(
         _ => Path::new("."),
     };
     let ending = path.extension().map(|e| format!(".{}", e.to_string_lossy())).unwrap_or_default();
+    let mut list = UNFINISHED.list();
     let mut file = Builder::new().prefix(".unfinished-").suffix(&ending).tempfile_in(folder).map_err(failed)?;
-    fill(&mut file)?;
-    file.flush().map_err(failed)?;
-    readable_by_all(file.as_file()).map_err(failed)?;
+    list.push(file.path().to_path_buf());
+    drop(list);
+    let filled = fill(&mut file).and_then(|()| {
+        file.flush().map_err(failed)?;
+        readable_by_all(file.as_file()).map_err(failed)
+    });
+    let mut list = UNFINISHED.list();
+    list.retain(|p| p != file.path());
+    filled?;
     file.persist(path).map_err(|e| failed(e.error))?;
     Ok(())
 }
@@ -67,6 +102,34 @@ mod tests {
         });
         assert!(failure.is_err());
         assert_eq!(std::fs::read(&path).unwrap(), b"first");
+        assert_eq!(std::fs::read_dir(folder.path()).unwrap().count(), 1);
+    }
+
+    #[test]
+    fn a_process_that_ends_takes_its_unfinished_files_along() {
+        let folder = tempfile::tempdir().unwrap();
+        let path = folder.path().join(".unfinished-1.csv");
+        std::fs::write(&path, b"half").unwrap();
+        let unfinished = Unfinished(Mutex::new(vec![path.clone(), folder.path().join("never there")]));
+        unfinished.remove();
+        assert!(!path.exists());
+        assert!(unfinished.0.try_lock().is_err(), "nothing more is begun or finished");
+    }
+
+    #[test]
+    fn what_is_finished_or_failed_is_no_longer_unfinished() {
+        let folder = tempfile::tempdir().unwrap();
+        let ours = |list: &[PathBuf]| list.iter().filter(|p| p.starts_with(folder.path())).count();
+        write_with(&folder.path().join("a.csv"), |_| {
+            assert_eq!(ours(&UNFINISHED.list()), 1);
+            Ok(())
+        })
+        .unwrap();
+        let failed = write_with(&folder.path().join("b.csv"), |_| {
+            Err(OutputError::Nothing { what: "result".into(), needs: "rows".into() })
+        });
+        assert!(failed.is_err());
+        assert_eq!(ours(&UNFINISHED.list()), 0);
         assert_eq!(std::fs::read_dir(folder.path()).unwrap().count(), 1);
     }
 

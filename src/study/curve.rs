@@ -7,6 +7,7 @@
 
 use super::predict::Failure;
 use super::rational::{Curve, CurveError, adaptive_from};
+use super::watch::{Unwatched, Watch};
 use crate::field::Solution;
 use crate::interaction::{Extent, Factored, Interaction, Surroundings};
 use crate::layout::{Coax, Earth, Layout};
@@ -69,6 +70,19 @@ impl<'a> PortCurve<'a> {
     /// # Errors
     /// [`Failure`] where a frequency cannot be solved; [`Failure::Range`] for an empty or reversed range.
     pub fn new(layout: &'a Layout, low_hz: f64, high_hz: f64, options: CurveOptions) -> Result<Self, Failure> {
+        Self::watched(layout, (low_hz, high_hz), options, &Unwatched)
+    }
+
+    /// The same with somebody watching: a step a solve, announced as they turn out to be needed.
+    ///
+    /// # Errors
+    /// As [`PortCurve::new`], and [`Failure::Stopped`] when the watcher says so.
+    pub fn watched(
+        layout: &'a Layout,
+        (low_hz, high_hz): (f64, f64),
+        options: CurveOptions,
+        watch: &dyn Watch,
+    ) -> Result<Self, Failure> {
         if !(low_hz > 0.0 && low_hz < high_hz && high_hz.is_finite()) {
             return Err(Failure::Range { low_hz, high_hz });
         }
@@ -76,9 +90,17 @@ impl<'a> PortCurve<'a> {
         let interaction = Interaction::new(mesh, layout.earth != Earth::None);
         let extent = Extent::of(layout);
         let sampler = |frequencies: &[f64]| {
+            watch.begins(frequencies.len(), 0);
             frequencies
                 .par_iter()
-                .map(|f| sample(layout, &interaction, &extent, *f))
+                .map(|f| {
+                    if watch.stop() {
+                        return Err(Failure::Stopped);
+                    }
+                    let sample = sample(layout, &interaction, &extent, *f);
+                    watch.step_done();
+                    sample
+                })
                 .collect::<Result<Vec<_>, Failure>>()
         };
         let curve = adaptive_from(FIRST_SOLVES, sampler, (low_hz, high_hz), options.tolerance, options.most_solves)
@@ -188,6 +210,19 @@ impl<'a> PortCurve<'a> {
 /// # Errors
 /// [`Failure::NoFrequency`] where the station names no band, else as [`PortCurve`].
 pub fn of_bands(layout: &Layout, points_a_band: usize, options: CurveOptions) -> Result<InterpolatedCurve, Failure> {
+    of_bands_watched(layout, points_a_band, options, &Unwatched)
+}
+
+/// The same with somebody watching.
+///
+/// # Errors
+/// As [`of_bands`], and [`Failure::Stopped`] when the watcher says so.
+pub fn of_bands_watched(
+    layout: &Layout,
+    points_a_band: usize,
+    options: CurveOptions,
+    watch: &dyn Watch,
+) -> Result<InterpolatedCurve, Failure> {
     let bands = bands(layout);
     let (Some(first), Some(last)) = (bands.first(), bands.last()) else { return Err(Failure::NoFrequency) };
     let grid = |b: &CurveBand| spaced(b.from_hz, b.to_hz, points_a_band);
@@ -195,11 +230,11 @@ pub fn of_bands(layout: &Layout, points_a_band: usize, options: CurveOptions) ->
         let highest = bands.iter().map(|b| b.to_hz).fold(last.to_hz, f64::max);
         let mut frequencies: Vec<f64> = bands.iter().flat_map(grid).collect();
         frequencies.sort_by(f64::total_cmp);
-        return PortCurve::new(layout, first.from_hz, highest, options)?.outcome(&frequencies);
+        return PortCurve::watched(layout, (first.from_hz, highest), options, watch)?.outcome(&frequencies);
     }
-    let mut whole = PortCurve::new(layout, first.from_hz, first.to_hz, options)?.outcome(&grid(first))?;
+    let mut whole = PortCurve::watched(layout, (first.from_hz, first.to_hz), options, watch)?.outcome(&grid(first))?;
     for band in &bands[1..] {
-        let more = PortCurve::new(layout, band.from_hz, band.to_hz, options)?.outcome(&grid(band))?;
+        let more = PortCurve::watched(layout, (band.from_hz, band.to_hz), options, watch)?.outcome(&grid(band))?;
         whole.curve.points.extend(more.curve.points);
         whole.shield.extend(more.shield);
         whole.error_estimate = whole.error_estimate.max(more.error_estimate);

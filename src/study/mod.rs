@@ -14,8 +14,13 @@ pub mod rational;
 mod shield;
 pub mod store;
 pub mod vary;
+mod watch;
 
 pub use pattern::pattern;
 pub use place::timing;
-pub use place::{Candidate, DEFAULT_RESISTANCES_OHM, PlaceFailure, PlaceOptions, place};
-pub use predict::{Failure, Options, predict, predict_variants};
+pub use place::{
+    Candidate, DEFAULT_RESISTANCES_OHM, MOST_VALUES, PlaceFailure, PlaceOptions, place, place_over_lengths,
+    place_watched,
+};
+pub use predict::{Failure, Options, predict, predict_variants, predict_variants_watched};
+pub use watch::{Unwatched, Watch};

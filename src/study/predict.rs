@@ -1,6 +1,7 @@
 //! The main job: feed point, shield current and power budget at every frequency of the station.
 
 use super::shield;
+use super::watch::{Unwatched, Watch};
 use crate::field::{FarField, Solution};
 use crate::halfspace::HalfSpaceError;
 use crate::interaction::{Extent, Factored, Interaction, Legendre, PotentialMap, SingularMatrix, Surroundings};
@@ -70,6 +71,9 @@ pub enum Failure {
     /// No power can flow.
     #[error(transparent)]
     Chain(#[from] ChainError),
+    /// Whoever watches said stop.
+    #[error("stopped before the end")]
+    Stopped,
 }
 
 /// Predict a station.
@@ -77,6 +81,11 @@ pub enum Failure {
 /// # Errors
 /// [`Failure`] for the first frequency that cannot be computed.
 pub fn predict(layout: &Layout, options: &Options) -> Result<Prediction, Failure> {
+    predict_watched(layout, options, &Unwatched)
+}
+
+/// The same with somebody watching, who knows how many steps there are: one a frequency.
+fn predict_watched(layout: &Layout, options: &Options, watch: &dyn Watch) -> Result<Prediction, Failure> {
     let points = options.frequencies.as_ref().unwrap_or(&layout.operation.frequencies);
     let highest = points.iter().map(|p| p.frequency_hz).fold(0.0, f64::max);
     if highest <= 0.0 {
@@ -92,8 +101,13 @@ pub fn predict(layout: &Layout, options: &Options) -> Result<Prediction, Failure
     let frequencies = points
         .par_iter()
         .map(|point| {
+            if watch.stop() {
+                return Err(Failure::Stopped);
+            }
             let earth = Surroundings::new(point.frequency_hz, layout.earth.at(point.frequency_hz), &extent)?;
-            At::new(layout, point, Arc::new(earth)).outcome(&fine, &coarse)
+            let outcome = At::new(layout, point, Arc::new(earth)).outcome(&fine, &coarse);
+            watch.step_done();
+            outcome
         })
         .collect::<Result<Vec<_>, _>>()?;
     Ok(Prediction {
@@ -118,9 +132,24 @@ pub fn predict_variants(
     variants: &[(String, Layout)],
     options: &Options,
 ) -> Result<Prediction, Failure> {
-    let mut prediction = predict(nominal, options)?;
+    predict_variants_watched(nominal, variants, options, &Unwatched)
+}
+
+/// The same with somebody watching: a step a frequency and variant.
+///
+/// # Errors
+/// As [`predict_variants`], and [`Failure::Stopped`] when the watcher says so.
+pub fn predict_variants_watched(
+    nominal: &Layout,
+    variants: &[(String, Layout)],
+    options: &Options,
+    watch: &dyn Watch,
+) -> Result<Prediction, Failure> {
+    let own = |layout: &Layout| options.frequencies.as_ref().unwrap_or(&layout.operation.frequencies).len();
+    watch.begins(own(nominal) + variants.iter().map(|v| own(&v.1)).sum::<usize>(), 0);
+    let mut prediction = predict_watched(nominal, options, watch)?;
     for (name, layout) in variants {
-        let varied = predict(layout, options)?;
+        let varied = predict_watched(layout, options, watch)?;
         for mut warning in varied.warnings {
             if !prediction.warnings.contains(&warning) {
                 warning.about = format!("{} (variant {name})", warning.about);

@@ -3,6 +3,7 @@
 
 mod cut;
 mod few;
+mod interrupted;
 mod malformed;
 mod place;
 mod vary;

@@ -69,3 +69,63 @@ fn what_cannot_be_meant_is_refused() {
         assert!(said.contains(reason) && done.get_output().stdout.is_empty(), "{said}");
     }
 }
+
+#[test]
+fn lengths_are_tried_too_and_come_out_as_json_and_pictures() {
+    let folder = tempfile::tempdir().unwrap();
+    let plots = folder.path().join("plots");
+    let more = ["--json", "--step", "20 cm", "--impedance", "2 kohm", "--plots", plots.to_str().unwrap()];
+    let plain = place("levee-straight", &more[..5]).success();
+    let done = place("levee-straight", &[&more[..], &["--lengths", "13 m .. 15 m by 0.5 m"]].concat()).success();
+    let read =
+        |done: &assert_cmd::assert::Assert| -> Value { serde_json::from_slice(&done.get_output().stdout).unwrap() };
+    let (mut out, plain) = (read(&done), read(&plain));
+    let lengths = out.as_object_mut().unwrap().remove("lengths").unwrap();
+    assert_eq!(out, plain, "the answer at the station's own length stays as it is");
+    let (of, places) = (lengths["lengths_m"].as_array().unwrap(), lengths["places_m"].as_array().unwrap());
+    for name in ["entry_current_a", "last_metre_current_a", "end_voltage_v", "swr", "choke_w"] {
+        let over = lengths[name].as_array().unwrap();
+        assert_eq!(over.len(), out["chokes"].as_array().unwrap().len(), "{name}");
+        assert_eq!(over[0].as_array().unwrap().len(), out["frequencies_hz"].as_array().unwrap().len(), "{name}");
+        assert_eq!(over[0][0].as_array().unwrap().len(), of.len(), "{name}");
+        assert_eq!(over[0][0][0].as_array().unwrap().len(), places.len(), "{name}");
+    }
+    let pick = &lengths["picks"][0];
+    for (at, window) in [("length_m", "length_window_m"), ("at_m", "window_m")] {
+        let [at, low, high] = [&pick[at], &pick[window][0], &pick[window][1]].map(|v| v.as_f64().unwrap());
+        assert!(low <= at && at <= high, "{pick}");
+    }
+    assert_eq!(of.first().unwrap(), 14.0, "shorter ones lose the entry");
+    assert!(lengths["warnings"].to_string().contains("the range begins at 14 m instead of 13 m"), "{lengths}");
+    assert!(pick["why"].as_str().unwrap().contains("of coax and the choke at"), "{pick}");
+    for ending in ["svg", "png"] {
+        assert!(plots.join(format!("length-and-place-2-kohm.{ending}")).exists());
+    }
+}
+
+#[test]
+fn a_person_reads_the_pair_of_length_and_place() {
+    let more = ["--step", "50 cm", "--impedance", "2 kohm", "--lengths", "14 m .. 15 m by 0.5 m"];
+    let out = text(&place("levee-straight", &more).success().get_output().stdout);
+    assert!(out.contains("Length of the coax and place of the choke together"), "{out}");
+    assert!(out.contains("of coax with choke \"2 kohm\" at") && !out.contains("NaN"), "{out}");
+}
+
+#[test]
+fn lengths_that_cannot_be_meant_are_refused() {
+    for (range, reason) in [
+        ("14 m .. 12 m by 1 m", "reversed"),
+        ("12 m .. 14 m", "step is missing"),
+        ("12 m .. 14 m by 0 m", "longer than zero"),
+        ("12 .. 14 by 1", "unit"),
+        ("", "no range"),
+        ("40 m .. 50 m by 1 m", "no length from 40 m to 50 m of the coax can be built"),
+        ("1 m .. 15 m by 0.1 mm", "20000 are the most"),
+    ] {
+        let done = place("levee-straight", &["--lengths", range]).code(2);
+        let said = text(&done.get_output().stderr);
+        assert!(said.contains(reason) && done.get_output().stdout.is_empty(), "{range}: {said}");
+    }
+    let done = place("half-wave-alone", &["--lengths", "12 m .. 14 m by 1 m"]).code(2);
+    assert!(text(&done.get_output().stderr).contains("no coax"));
+}

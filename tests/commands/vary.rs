@@ -293,3 +293,36 @@ fn a_latin_hypercube_writes_csv_and_json_lines() {
     }
     assert!(text(&out.stdout).contains("6 points, none failed"), "{}", text(&out.stdout));
 }
+
+#[test]
+fn every_point_has_its_nominal_and_its_worst_over_the_variants() {
+    let folder = Folder::new();
+    let variant = "[[variant]]\nname = \"end folded back\"\nset = { \"wire.west.length\" = 4.4 }\n";
+    std::fs::write(folder.path().join("station.toml"), format!("{DIPOLE}{variant}")).unwrap();
+    let want = ["--want", "radio.swr", "--want", "power.radiated_fraction", "--want", "feed.reactance_ohm"];
+    let arguments = with(&["--over", "wire.east.length = 4.8 m | 5.0 m"], &want);
+    let out = folder.run(&with(&arguments, &["--json"]));
+    assert!(out.status.success(), "{}", text(&out.stderr));
+    let json: serde_json::Value = serde_json::from_slice(&out.stdout).unwrap();
+    for point in json["points"].as_array().unwrap() {
+        let rows = point["rows"].as_array().unwrap();
+        assert_eq!(rows.len(), 4);
+        let [swr, radiated, reactance] = [0, 1, 2].map(|n| &point["summary"][n]);
+        let all = |n: usize| rows.iter().map(move |r| r["values"][n].as_f64().unwrap());
+        assert_eq!((&swr["quantity"], &swr["worse"]), (&"radio.swr".into(), &"larger".into()));
+        assert_eq!(swr["over_variants"]["worst"]["value"], all(0).fold(0.0, f64::max));
+        assert_eq!(radiated["over_variants"]["worst"]["value"], all(1).fold(9.0, f64::min));
+        assert_eq!(reactance["over_variants"]["worst"], serde_json::Value::Null);
+        assert_eq!(reactance["over_variants"]["smallest"]["value"], all(2).fold(f64::MAX, f64::min));
+        let worst = &swr["over_variants"]["worst"];
+        let there = rows.iter().find(|r| r["values"][0] == worst["value"]).unwrap();
+        assert_eq!((&worst["variant"], &worst["frequency_hz"]), (&there["variant"], &there["frequency_hz"]));
+        assert_eq!(swr["nominal"]["worst"]["variant"], "nominal");
+    }
+    let told = text(&folder.run(&arguments).stdout);
+    assert!(told.contains("radio.swr (worst is the largest)") && told.contains("end folded back"), "{told}");
+    let help = text(&folder.command(&["--help"]).output().unwrap().stdout);
+    for format in ["--csv FILE", "--jsonl FILE", "--json,", "\"summary\""] {
+        assert!(help.contains(format), "{format} is not in {help}");
+    }
+}

@@ -10,6 +10,7 @@ mod draw;
 mod earth_limits;
 mod images;
 mod invariance;
+mod joint;
 mod kirchhoff;
 mod layering;
 mod parts;

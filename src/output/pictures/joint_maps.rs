@@ -1,10 +1,11 @@
 //! Maps over two things chosen together: two lengths, or the length of the coax and the place of a choke.
 
 use super::axes::{Frame, Scale, tick_text};
-use super::drawing::{Anchor, Area, Drawing, EM, SMALL, Words};
+use super::drawing::{Anchor, Area, Drawing, EM, SMALL, Spot, Words};
 use super::map::{self, Grid, Levels};
 use crate::outcome::cut::{CutOutcome, OverLength};
-use crate::outcome::joint::LengthByPlaceOutcome;
+use crate::outcome::joint::OverLengthAndPlace;
+use crate::outcome::place::PlaceOutcome;
 use crate::output::OutputError;
 use crate::output::figures::{self, FEET_PER_METRE};
 
@@ -64,30 +65,41 @@ pub(super) fn lengths(cut: &CutOutcome) -> Result<Drawing, OutputError> {
 /// Length of the coax and place of a choke: worst over frequencies and variants.
 ///
 /// # Errors
-/// [`OutputError::Nothing`] with fewer than two lengths or places.
-pub(super) fn length_by_place(joint: &LengthByPlaceOutcome) -> Result<Drawing, OutputError> {
-    if joint.lengths_m.len() < 2 || joint.places_m.len() < 2 {
+/// [`OutputError::Nothing`] where only one length was asked for, or with fewer than two lengths or places;
+/// [`OutputError::Misfit`] for a choke that is not there.
+pub(super) fn length_by_place(place: &PlaceOutcome, choke: usize) -> Result<Drawing, OutputError> {
+    let found = place.lengths.as_ref().filter(|l| l.lengths_m.len() > 1 && l.places_m.len() > 1);
+    let Some(joint) = found else {
         let needs = "two lengths and two places or more".into();
         return Err(OutputError::Nothing { what: "the map of length and place".into(), needs });
-    }
-    let worst = |values: &[Plane]| -> Plane {
+    };
+    let misfit = || OutputError::Misfit {
+        what: "the map of length and place".into(),
+        reason: format!("there is no choke number {}", choke + 1),
+    };
+    let worst = |values: &OverLengthAndPlace| -> Result<Plane, OutputError> {
+        let of_choke = values.get(choke).ok_or_else(misfit)?;
         let at = |l: usize, p: usize| {
-            let all: Option<Vec<f64>> = values.iter().map(|f| *f.get(l)?.get(p)?).collect();
+            let all: Option<Vec<f64>> = of_choke.iter().map(|f| *f.get(l)?.get(p)?).collect();
             all.and_then(|v| v.into_iter().reduce(f64::max))
         };
-        (0..joint.lengths_m.len()).map(|l| (0..joint.places_m.len()).map(|p| at(l, p)).collect()).collect()
+        Ok((0..joint.lengths_m.len()).map(|l| (0..joint.places_m.len()).map(|p| at(l, p)).collect()).collect())
+    };
+    let name = joint.chokes.get(choke).ok_or_else(misfit)?;
+    let picks: Vec<_> = joint.picks.iter().filter(|p| p.choke == *name).collect();
+    let rings = match picks.len() {
+        0 => "",
+        1 => "; ring: its best pair",
+        _ => "; rings: its best pairs",
     };
     Ok(drawing(&Joint {
-        station: &joint.station,
-        below: format!(
-            "Choke \"{}\" along coax of every length; hatched: the place would lie beyond the end",
-            joint.choke
-        ),
+        station: &place.station,
+        below: format!("Choke \"{name}\" on every length of coax; hatched: the place would lie beyond the end{rings}"),
         titles: ["length of the coax".into(), "place of the choke".into()],
         across_m: &joint.lengths_m,
         upright_m: &joint.places_m,
-        picks: Vec::new(),
-        maps: [(worst(&joint.entry_current_a), joint.limits.entry_current_a), (worst(&joint.swr), joint.limits.swr)],
+        picks: picks.iter().map(|p| [p.length_m, p.at_m]).collect(),
+        maps: [(worst(&joint.entry_current_a)?, place.limits.entry_current_a), (worst(&joint.swr)?, place.limits.swr)],
     }))
 }
 
@@ -110,9 +122,10 @@ fn drawing(joint: &Joint) -> Drawing {
         let grid = Grid::new(joint.across_m.to_vec(), joint.upright_m.to_vec(), rows);
         map::shade(&mut drawing, &frame, &grid, &levels);
         let mut taken: Vec<Area> = Vec::new();
-        rings(&mut drawing, joint, frame, &mut taken);
+        let rings = rings(joint, frame, &mut taken);
         map::contours(&mut drawing, &frame, &grid, &levels, (&mut taken, say));
         frame.outline(&mut drawing);
+        rings.iter().for_each(|ring| draw_ring(&mut drawing, ring));
         upright_axes(&mut drawing, frame, &joint.titles[1]);
         let words = Words::centred([EDGES[0], top - if index == 0 { 60.0 } else { 16.0 }], EM, Anchor::Start, title);
         drawing.words(words);
@@ -132,25 +145,55 @@ fn levels(plane: &Plane, limit: f64, ratio: bool) -> Levels {
     if !ratio {
         return Levels::new(values(), Some(limit));
     }
-    let most = values().filter(|v| v.is_finite()).fold(1.0, f64::max);
-    let mut steps: Vec<f64> =
-        [1.5, 2.0, 3.0, 5.0, 10.0].into_iter().filter(|s| *s < most && (*s - limit).abs() > 0.25).collect();
+    let finite = || values().filter(|v| v.is_finite());
+    let (least, most) = (finite().fold(f64::INFINITY, f64::min), finite().fold(1.0, f64::max));
+    let reached = |s: &f64| *s > least && *s < most && (*s - limit).abs() > 0.25;
+    let mut steps: Vec<f64> = [1.5, 2.0, 3.0, 5.0, 10.0].into_iter().filter(reached).collect();
     steps.push(limit);
     steps.sort_by(f64::total_cmp);
     Levels { values: steps, limit: Some(limit) }
 }
 
-/// Rings at the picks, numbered.
-fn rings(drawing: &mut Drawing, joint: &Joint, frame: Frame, taken: &mut Vec<Area>) {
-    for (index, [across, upright]) in joint.picks.iter().enumerate().rev() {
+/// A pick in the map: its spot, whether a ring with the number in it fits there, and where the number stands.
+struct Ring {
+    number: usize,
+    spot: Spot,
+    fits: bool,
+    beside: Spot,
+}
+
+/// Rings at the picks that have room, the best last. At an edge the ring is small and its number stands beside it, inside.
+fn rings(joint: &Joint, frame: Frame, taken: &mut Vec<Area>) -> Vec<Ring> {
+    let around = |[x, y]: Spot| Area::new(x - 11.0, y - 11.0, x + 11.0, y + 11.0);
+    let area = frame.area();
+    let inward = |at: f64, low: f64, high: f64| {
+        if at - low < 11.0 {
+            17.0
+        } else if high - at < 11.0 {
+            -17.0
+        } else {
+            0.0
+        }
+    };
+    let mut out = Vec::new();
+    for (index, [across, upright]) in joint.picks.iter().enumerate() {
         let spot = frame.spot(*across, *upright);
-        let area = Area::new(spot[0] - 11.0, spot[1] - 11.0, spot[0] + 11.0, spot[1] + 11.0);
-        if frame.area().holds(&area) && !taken.iter().any(|t| t.meets(&area)) {
-            drawing.ring(spot, 10.5, 1.6);
-            drawing.words(Words::centred(spot, 12.0, Anchor::Middle, (index + 1).to_string()));
-            taken.push(area);
+        let [x, y] = spot;
+        let beside = [x + inward(x, area.left, area.right), y + inward(y, area.top, area.bottom)];
+        if !taken.iter().any(|t| t.meets(&around(beside))) {
+            taken.push(around(beside));
+            out.push(Ring { number: index + 1, spot, fits: beside == spot, beside });
         }
     }
+    out.reverse();
+    out
+}
+
+fn draw_ring(drawing: &mut Drawing, ring: &Ring) {
+    let (radius, width) = if ring.fits { (10.5, 1.6) } else { (4.0, 2.2) };
+    drawing.ring(ring.spot, radius, width);
+    let number = Words::centred(ring.beside, 12.0, Anchor::Middle, ring.number.to_string());
+    drawing.words(if ring.fits { number } else { number.grounded() });
 }
 
 /// Metres on the left, feet on the right.
@@ -180,7 +223,11 @@ mod tests {
     #[test]
     fn both_maps_are_clear() {
         checks::texts_are_clear(&lengths(&sample_studies::cut_two()).unwrap());
-        checks::texts_are_clear(&length_by_place(&sample_studies::joint()).unwrap());
+        for choke in 0..3 {
+            checks::texts_are_clear(&length_by_place(&sample_studies::joint(), choke).unwrap());
+        }
+        assert!(length_by_place(&sample_studies::joint(), 3).is_err());
+        assert!(length_by_place(&sample_studies::place(), 0).is_err());
         assert!(lengths(&sample_studies::cut()).is_err());
     }
 

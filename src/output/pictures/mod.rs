@@ -31,7 +31,6 @@ use super::OutputError;
 use crate::outcome::Prediction;
 use crate::outcome::curve::CurveOutcome;
 use crate::outcome::cut::CutOutcome;
-use crate::outcome::joint::LengthByPlaceOutcome;
 use crate::outcome::pattern::PatternOutcome;
 use crate::outcome::place::PlaceOutcome;
 use crate::output::{References, Units};
@@ -75,7 +74,7 @@ pub fn write_pattern(pattern: &PatternOutcome, folder: &Path) -> Result<Vec<Path
     write(folder, &name, &pattern::drawing(pattern)?)
 }
 
-/// Draws every picture of a placement study into a folder.
+/// Draws every picture of a placement study into a folder; where the length of the coax was free, the joint maps of length and place too.
 ///
 /// # Errors
 /// [`OutputError`] when the arrays do not fit their axes or the files cannot be written.
@@ -88,6 +87,12 @@ pub fn write_all_place(place: &PlaceOutcome, folder: &Path) -> Result<Vec<PathBu
     let picked = place.picks.first().and_then(|p| place.chokes.iter().position(|c| c.name == p.choke)).unwrap_or(0);
     paths.extend(write(folder, "volts", &place_maps::volts(place, picked)?)?);
     paths.extend(write(folder, "watts", &place_maps::watts(place, picked)?)?);
+    if place.lengths.as_ref().is_some_and(|l| l.lengths_m.len() > 1 && l.places_m.len() > 1) {
+        for (index, choke) in place.chokes.iter().enumerate() {
+            let name = format!("length-and-place-{}", file_name(&choke.name));
+            paths.extend(write(folder, &name, &joint_maps::length_by_place(place, index)?)?);
+        }
+    }
     Ok(paths)
 }
 
@@ -105,14 +110,6 @@ pub fn write_all_cut(cut: &CutOutcome, folder: &Path) -> Result<Vec<PathBuf>, Ou
         paths.extend(write(folder, &name, drawing)?);
     }
     Ok(paths)
-}
-
-/// Draws the joint map of coax length and choke place ("length-and-place").
-///
-/// # Errors
-/// [`OutputError`] when there is nothing to draw or the files cannot be written.
-pub fn write_length_by_place(joint: &LengthByPlaceOutcome, folder: &Path) -> Result<Vec<PathBuf>, OutputError> {
-    write(folder, "length-and-place", &joint_maps::length_by_place(joint)?)
 }
 
 /// A name that every file system takes.
@@ -155,8 +152,9 @@ mod tests {
         let folder = folder.join("cut");
         let mut paths = write_all_cut(&sample_studies::cut(), &folder).unwrap();
         paths.extend(write_all_cut(&sample_studies::cut_two(), &folder).unwrap());
-        paths.extend(write_length_by_place(&sample_studies::joint(), &folder).unwrap());
-        assert_eq!(paths.len(), 6);
+        assert_eq!(paths.len(), 4);
+        paths = write_all_place(&sample_studies::joint(), &folder.join("joint")).unwrap();
+        assert_eq!(paths.len(), 12 + 6);
     }
 
     #[test]

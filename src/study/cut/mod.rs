@@ -6,6 +6,7 @@
 //! solution, `radiation` the power into the far field, `judge` windows and picks, `avoid` resonances to stay away from, `trim` how the match moves with length.
 
 mod avoid;
+mod coax;
 mod judge;
 mod lengths;
 mod moving;
@@ -15,13 +16,14 @@ mod reading;
 mod scan;
 mod trim;
 
-use super::Failure;
+use super::{Failure, Unwatched, Watch};
 use crate::layout::Warning;
 use crate::mesh::Density;
 use crate::network::ChainError;
 use crate::outcome::cut::{CutOutcome, OverLength};
 use crate::outcome::place::LimitsOutcome;
 use crate::station::{Catalogue, Document, Refused, Station};
+pub(super) use coax::CoaxLengths;
 use lengths::Axis;
 use reading::Reading;
 use scan::{Grid, Scan};
@@ -101,11 +103,23 @@ pub fn variants_of(document: &Document, catalogue: &dyn Catalogue) -> Result<Vec
 /// # Errors
 /// [`CutFailure`] when the question cannot be meant or a solution fails.
 pub fn cut(stations: &[(String, Station)], question: &Question) -> Result<CutOutcome, CutFailure> {
+    cut_watched(stations, question, &Unwatched)
+}
+
+/// The same with somebody watching: a step a length, frequency and variant.
+///
+/// # Errors
+/// As [`cut`], and [`Failure::Stopped`] when the watcher says so.
+pub fn cut_watched(
+    stations: &[(String, Station)],
+    question: &Question,
+    watch: &dyn Watch,
+) -> Result<CutOutcome, CutFailure> {
     let (mut first, second) = axes(stations, question)?;
     let mut warnings = first.warnings.clone();
     warnings.extend(second.iter().flat_map(|s| s.warnings.clone()));
     let stock = lengths::stock(stations, &mut first, &question.stock, &mut warnings);
-    let scan = Scan::new(stations, &first, second.as_ref(), question)?;
+    let scan = Scan::new(stations, &first, second.as_ref(), question, watch)?;
     let grid = scan.grid(&first.lengths_m, second.as_ref().map(|s| s.lengths_m.as_slice()))?;
     let judged = judge::judge(&scan, &grid, &first, second.as_ref());
     let chosen = judged.picks.first().map_or((first.present_m, None), |p| (p.length_m, p.second_length_m));

@@ -13,7 +13,7 @@ use crate::mesh::{Anchor, Density, Mesh};
 use crate::network;
 use crate::ports::PortModel;
 use crate::station::{Refused, Station};
-use crate::study::Failure;
+use crate::study::{Failure, Watch};
 use num_complex::Complex64;
 use rayon::prelude::*;
 
@@ -35,39 +35,48 @@ impl Grid {
 }
 
 /// One variant with its earth at every frequency.
-pub(super) struct Variant {
+pub(super) struct Variant<'a> {
     pub(super) name: String,
     pub(super) station: Station,
-    pub(super) earth: Vec<At>,
+    pub(super) earth: Vec<At<'a>>,
 }
 
 /// One variant at one frequency.
-pub(super) struct At {
+pub(super) struct At<'a> {
     pub(super) earth: Surroundings,
     pub(super) sphere: Sphere,
+    watch: &'a dyn Watch,
 }
 
-impl At {
-    fn new(frequency_hz: f64, layout: &Layout, extent: &Extent) -> Result<Self, CutFailure> {
+impl<'a> At<'a> {
+    fn new(frequency_hz: f64, layout: &Layout, extent: &Extent, watch: &'a dyn Watch) -> Result<Self, CutFailure> {
+        go_on(watch)?;
         let at = layout.earth.at(frequency_hz);
         let earth = Surroundings::new(frequency_hz, at, extent).map_err(Failure::Soil)?;
-        Ok(Self { earth, sphere: Sphere::new(frequency_hz, at, extent) })
+        let sphere = Sphere::new(frequency_hz, at, extent);
+        watch.step_done();
+        Ok(Self { earth, sphere, watch })
     }
 }
 
+fn go_on(watch: &dyn Watch) -> Result<(), Failure> {
+    if watch.stop() { Err(Failure::Stopped) } else { Ok(()) }
+}
+
 /// Everything all lengths share.
-pub(super) struct Scan {
+pub(super) struct Scan<'a> {
     pub(super) frequencies_hz: Vec<f64>,
-    pub(super) list: Vec<Variant>,
+    pub(super) list: Vec<Variant<'a>>,
     pub(super) targets: Vec<Target>,
     present: Layout,
     extents: Vec<Extent>,
     density: Density,
     highest_hz: f64,
     method: Method,
+    watch: &'a dyn Watch,
 }
 
-impl Scan {
+impl<'a> Scan<'a> {
     /// Prepare: the space all lengths take up, and the earth once a frequency and variant.
     ///
     /// # Errors
@@ -77,6 +86,7 @@ impl Scan {
         first: &Axis,
         second: Option<&Axis>,
         question: &Question,
+        watch: &'a dyn Watch,
     ) -> Result<Self, CutFailure> {
         let present = Layout::place(&stations[0].1).map_err(|faults| refused(&stations[0].1, faults))?;
         let frequencies_hz: Vec<f64> = present.operation.frequencies.iter().map(|f| f.frequency_hz).collect();
@@ -96,21 +106,23 @@ impl Scan {
                 }
             }
         }
+        watch.begins(stations.len() * frequencies_hz.len(), 0);
         let list = stations
             .par_iter()
             .zip(&extents)
             .map(|((name, station), extent)| {
                 let layout = Layout::place(station).map_err(|faults| refused(station, faults))?;
-                let earth = frequencies_hz
-                    .par_iter()
-                    .map(|&f| At::new(f, &layout, extent))
-                    .collect::<Result<Vec<_>, CutFailure>>()?;
+                let earth = frequencies_hz.par_iter().map(|&f| At::new(f, &layout, extent, watch)).collect::<Result<
+                    Vec<_>,
+                    CutFailure,
+                >>(
+                )?;
                 Ok(Variant { name: name.clone(), station: station.clone(), earth })
             })
             .collect::<Result<Vec<_>, CutFailure>>()?;
         let targets = std::iter::once(first).chain(second).map(|a| a.target.clone()).collect();
         let (density, method) = (question.density, question.method);
-        Ok(Self { frequencies_hz, list, targets, present, extents, density, highest_hz, method })
+        Ok(Self { frequencies_hz, list, targets, present, extents, density, highest_hz, method, watch })
     }
 
     /// The station as written, placed.
@@ -131,6 +143,7 @@ impl Scan {
             None => firsts.iter().map(|&l| vec![l]).collect(),
             Some(seconds) => firsts.iter().flat_map(|&l| seconds.iter().map(move |&s| vec![l, s])).collect(),
         };
+        self.watch.begins(self.list.len() * self.frequencies_hz.len() * combinations.len(), 0);
         let mut readings = Vec::new();
         for variant in &self.list {
             let by_length = match self.method {
@@ -185,9 +198,10 @@ impl Scan {
     /// [`CutFailure`] of the first that cannot be solved.
     pub(super) fn feeds(&self, combinations: &[Vec<f64>], at_hz: &[f64]) -> Result<Vec<Vec<Complex64>>, CutFailure> {
         let nominal = &self.list[0];
+        self.watch.begins(at_hz.len(), 0);
         let earths = at_hz
             .par_iter()
-            .map(|&f| At::new(f, &self.present, &self.extents[0]))
+            .map(|&f| At::new(f, &self.present, &self.extents[0], self.watch))
             .collect::<Result<Vec<_>, CutFailure>>()?;
         combinations
             .par_iter()
@@ -229,13 +243,14 @@ pub(super) type Lines<'a> = (&'a Radiation, &'a [Option<usize>]);
 /// From the port model, and potentials as rows over the unknowns, to a reading.
 ///
 /// # Errors
-/// [`CutFailure::Solving`] when no power can flow.
+/// [`CutFailure::Solving`] when no power can flow, and when whoever watches said stop.
 pub(super) fn finish(
     layout: &Layout,
     mesh: &Mesh,
     at: &At,
     (model, spots, rows, radiation): (&PortModel, Option<Spots>, &[Vec<Complex64>], Option<Lines>),
 ) -> Result<Reading, CutFailure> {
+    go_on(at.watch)?;
     let earth = &at.earth;
     let parts = parts(layout, earth);
     let port_currents = model.loaded_currents(&parts);
@@ -246,6 +261,7 @@ pub(super) fn finish(
         .and_then(|(r, twins)| r.radiated_w(layout, (mesh, twins), &currents))
         .unwrap_or_else(|| radiation::direct(mesh, &currents, &at.sphere));
     let feed_a = port_currents[0];
+    at.watch.step_done();
     Ok(Solved { layout, mesh, earth, feed_a, currents, spots, potentials_v, radiated_w }.reading()?)
 }
 

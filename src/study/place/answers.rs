@@ -129,6 +129,7 @@ pub(super) fn arrays(solved: &[Vec<Solved>], chokes: usize) -> PlaceOutcome {
         picks: Vec::new(),
         clamp: Vec::new(),
         warnings: Vec::new(),
+        lengths: None,
     }
 }
 

@@ -3,12 +3,15 @@
 //! Takes the station and its variants as layouts; gives a [`PlaceOutcome`]. A choke never refills or refactors anything: the mesh carries
 //! ports along the coax (`line`), one solve gives what each of them excites (`model`), values between them are interpolated,
 //! and a choke of any impedance at any place is a quotient of those (`answers`). `verdict` and `clamp` turn the arrays into a choice.
+//! `joint` asks the same of every length of the coax, and `joint_verdict` chooses length and place together.
 
 mod answers;
 mod candidates;
 #[cfg(test)]
 mod checks;
 mod clamp;
+mod joint;
+mod joint_verdict;
 mod line;
 mod model;
 pub mod timing;
@@ -16,14 +19,17 @@ mod verdict;
 mod words;
 
 use super::predict::Failure;
+use super::watch::{Unwatched, Watch};
 use crate::interaction::{Extent, Interaction, Surroundings};
 use crate::layout::{Earth, Layout, PartKind, Warning};
 use crate::mesh::{Density, Mesh};
 use crate::network::{self, Chain};
 use crate::outcome::place::{LimitsOutcome, PlaceOutcome};
 use crate::quantity::{SPEED_OF_LIGHT_M_PER_S, metres};
+use crate::station::Refused;
 use answers::Answer;
 pub use candidates::{Candidate, DEFAULT_RESISTANCES_OHM};
+pub use joint::{MOST_VALUES, place_over_lengths};
 use line::{Line, Seat};
 use model::{Model, Readings};
 use num_complex::Complex64;
@@ -85,17 +91,15 @@ pub enum PlaceFailure {
         /// Of a gap, m.
         gap_m: f64,
     },
+    /// The lengths asked for.
+    #[error("{0}")]
+    Lengths(String),
+    /// The station cannot be meant.
+    #[error(transparent)]
+    Refused(#[from] Refused),
     /// The solver failed.
     #[error(transparent)]
     Study(#[from] Failure),
-}
-
-impl PlaceFailure {
-    /// The question or the station is wrong, not the machine or the numbers.
-    #[must_use]
-    pub fn is_usage(&self) -> bool {
-        !matches!(self, PlaceFailure::Study(f) if !matches!(f, Failure::NoFrequency))
-    }
 }
 
 /// One variant, ready to be solved.
@@ -128,20 +132,40 @@ pub fn place(
     variants: &[(String, Layout)],
     options: &PlaceOptions,
 ) -> Result<PlaceOutcome, PlaceFailure> {
-    let highest_hz = nominal.operation.frequencies.iter().map(|p| p.frequency_hz).fold(0.0, f64::max);
-    if highest_hz <= 0.0 {
-        return Err(Failure::NoFrequency.into());
-    }
+    place_watched(nominal, variants, options, &Unwatched)
+}
+
+/// The same with somebody watching: a step a frequency and soil.
+///
+/// # Errors
+/// As [`place`], and [`Failure::Stopped`] when the watcher says so.
+pub fn place_watched(
+    nominal: &Layout,
+    variants: &[(String, Layout)],
+    options: &PlaceOptions,
+    watch: &dyn Watch,
+) -> Result<PlaceOutcome, PlaceFailure> {
+    let highest_hz = highest_hz(nominal)?;
     let candidates = candidates::of(nominal, options)?;
     let mut warnings = nominal.warnings.clone();
     let (places_m, prepared) = prepare(nominal, variants, options, highest_hz, &mut warnings)?;
-    let solved = solve(&prepared, nominal, &candidates)?;
+    let soils = Soils::of(prepared.iter().map(|p| &p.layout));
+    let extents: Vec<Extent> = prepared.iter().map(|p| Extent::of(&p.layout)).collect();
+    let earth =
+        |f: usize, soil: usize| soils.surroundings(nominal.operation.frequencies[f].frequency_hz, soil, &extents);
+    watch.begins(nominal.operation.frequencies.len() * soils.count(), 0);
+    let solved = solve(&prepared, nominal, &candidates, (&soils, &earth), watch)?;
     let mut outcome = outcome(nominal, &prepared, &candidates, places_m, &solved)?;
     outcome.warnings = warnings;
     outcome.warnings.extend(protective_warnings(nominal));
     verdict::decide(&mut outcome);
     outcome.clamp = clamp::places(&outcome, &prepared, &solved);
     Ok(outcome)
+}
+
+fn highest_hz(nominal: &Layout) -> Result<f64, Failure> {
+    let highest_hz = nominal.operation.frequencies.iter().map(|p| p.frequency_hz).fold(0.0, f64::max);
+    if highest_hz > 0.0 { Ok(highest_hz) } else { Err(Failure::NoFrequency) }
 }
 
 /// The layout without the chokes on its coax that are to be placed.
@@ -160,17 +184,40 @@ fn prepare(
     highest_hz: f64,
     warnings: &mut Vec<Warning>,
 ) -> Result<(Vec<f64>, Vec<Prepared>), PlaceFailure> {
+    let stations = lined(nominal, variants, options, highest_hz)?;
+    let places_m = places(&stations, options.step_m, warnings)?;
+    let prepared = ready(stations, &places_m, options.density, highest_hz);
+    Ok((places_m, prepared))
+}
+
+/// One variant without the chokes that are to be placed, and its coax.
+struct Lined {
+    name: String,
+    layout: Layout,
+    line: Line,
+}
+
+/// The station as written and its variants.
+fn lined(
+    nominal: &Layout,
+    variants: &[(String, Layout)],
+    options: &PlaceOptions,
+    highest_hz: f64,
+) -> Result<Vec<Lined>, PlaceFailure> {
     let all = std::iter::once(("nominal".to_string(), nominal)).chain(variants.iter().map(|(n, l)| (n.clone(), l)));
-    let stations: Vec<(String, Layout, Line)> = all
-        .map(|(name, layout)| {
-            let layout = without_chokes(layout, &options.keep);
-            let about = if name == "nominal" { "the station".to_string() } else { format!("variant \"{name}\"") };
-            let line = Line::of(&layout, SPEED_OF_LIGHT_M_PER_S / highest_hz).ok_or(PlaceFailure::NoCoax { about })?;
-            Ok((name, layout, line))
-        })
-        .collect::<Result<_, PlaceFailure>>()?;
-    let own = &stations[0].2;
-    let end_m = stations.iter().map(|s| s.2.length_m).fold(own.length_m, f64::min);
+    all.map(|(name, layout)| {
+        let layout = without_chokes(layout, &options.keep);
+        let about = if name == "nominal" { "the station".to_string() } else { format!("variant \"{name}\"") };
+        let line = Line::of(&layout, SPEED_OF_LIGHT_M_PER_S / highest_hz).ok_or(PlaceFailure::NoCoax { about })?;
+        Ok(Lined { name, layout, line })
+    })
+    .collect()
+}
+
+/// Places of the station's own coax that every variant has, m.
+fn places(stations: &[Lined], step_m: f64, warnings: &mut Vec<Warning>) -> Result<Vec<f64>, PlaceFailure> {
+    let own = &stations[0].line;
+    let end_m = stations.iter().map(|s| s.line.length_m).fold(own.length_m, f64::min);
     if end_m < own.length_m - 1e-3 {
         warnings.push(Warning {
             about: "coax".to_string(),
@@ -181,17 +228,22 @@ fn prepare(
             ),
         });
     }
-    let in_range = (1e-3..=1.0).contains(&options.step_m) && end_m / options.step_m <= MOST_PLACES as f64;
+    let in_range = (1e-3..=1.0).contains(&step_m) && end_m / step_m <= MOST_PLACES as f64;
     if !in_range {
-        return Err(PlaceFailure::Step { step_m: options.step_m, length_m: end_m });
+        return Err(PlaceFailure::Step { step_m, length_m: end_m });
     }
-    let mut places_m = own.places(options.step_m, end_m);
-    places_m.retain(|p| stations.iter().all(|s| s.2.seat(*p).is_some()));
+    let mut places_m = own.places(step_m, end_m);
+    places_m.retain(|p| stations.iter().all(|s| s.line.seat(*p).is_some()));
     if places_m.is_empty() {
         return Err(PlaceFailure::NoRoom { length_m: own.length_m, gap_m: own.gap_m });
     }
-    let interactions = interactions(&stations, options.density, highest_hz);
-    let prepared = stations.into_iter().zip(interactions).map(|((name, layout, line), interaction)| Prepared {
+    Ok(places_m)
+}
+
+/// Meshes and seats of every variant; every place must have a seat in all of them.
+fn ready(stations: Vec<Lined>, places_m: &[f64], density: Density, highest_hz: f64) -> Vec<Prepared> {
+    let interactions = interactions(&stations, density, highest_hz);
+    let prepared = stations.into_iter().zip(interactions).map(|(Lined { name, layout, line }, interaction)| Prepared {
         name,
         seats: places_m.iter().filter_map(|p| line.seat(*p)).collect(),
         readings: Readings::of(&layout, interaction.mesh(), &line),
@@ -200,23 +252,22 @@ fn prepare(
         line,
         interaction,
     });
-    let prepared = prepared.collect();
-    Ok((places_m, prepared))
+    prepared.collect()
 }
 
 /// One prepared mesh for each variant, shared where only the soil differs.
-fn interactions(stations: &[(String, Layout, Line)], density: Density, highest_hz: f64) -> Vec<Arc<Interaction>> {
+fn interactions(stations: &[Lined], density: Density, highest_hz: f64) -> Vec<Arc<Interaction>> {
     // everything a mesh and its static moments depend on, exactly (a float's Debug form is exact)
     let geometry = |layout: &Layout| {
         let earth = std::mem::discriminant(&layout.earth);
         format!("{earth:?} {:?} {:?} {:?} {:?}", layout.conductors, layout.junctions, layout.feed, layout.parts)
     };
-    let keys: Vec<String> = stations.iter().map(|s| geometry(&s.1)).collect();
+    let keys: Vec<String> = stations.iter().map(|s| geometry(&s.layout)).collect();
     let first: Vec<usize> = keys.iter().map(|k| keys.iter().position(|o| o == k).unwrap_or(0)).collect();
     let made: Vec<Option<Arc<Interaction>>> = (0..stations.len())
         .into_par_iter()
         .map(|n| {
-            let (_, layout, line) = &stations[n];
+            let Lined { layout, line, .. } = &stations[n];
             let make =
                 || Interaction::new(Mesh::new(layout, highest_hz, density, &line.gaps()), layout.earth != Earth::None);
             (first[n] == n).then(|| Arc::new(make()))
@@ -225,33 +276,62 @@ fn interactions(stations: &[(String, Layout, Line)], density: Density, highest_h
     first.iter().filter_map(|n| made[*n].clone()).collect()
 }
 
-/// All models and answers, `[variant][frequency]`. Soil tables are shared by the variants over the same soil.
-fn solve(prepared: &[Prepared], nominal: &Layout, candidates: &[Candidate]) -> Result<Vec<Vec<Solved>>, PlaceFailure> {
-    let mut earths: Vec<(Earth, Vec<usize>)> = Vec::new();
-    for (v, p) in prepared.iter().enumerate() {
-        match earths.iter_mut().find(|e| e.0 == p.layout.earth) {
-            Some(e) => e.1.push(v),
-            None => earths.push((p.layout.earth, vec![v])),
+/// Which variants stand over the same soil: they share its tables.
+struct Soils(Vec<(Earth, Vec<usize>)>);
+
+impl Soils {
+    fn of<'a>(layouts: impl Iterator<Item = &'a Layout>) -> Self {
+        let mut earths: Vec<(Earth, Vec<usize>)> = Vec::new();
+        for (v, layout) in layouts.enumerate() {
+            match earths.iter_mut().find(|e| e.0 == layout.earth) {
+                Some(e) => e.1.push(v),
+                None => earths.push((layout.earth, vec![v])),
+            }
         }
+        Self(earths)
     }
+
+    fn count(&self) -> usize {
+        self.0.len()
+    }
+
+    /// One soil at one frequency, over the space that its variants take up.
+    fn surroundings(&self, frequency_hz: f64, soil: usize, extents: &[Extent]) -> Result<Arc<Surroundings>, Failure> {
+        let (earth, members) = &self.0[soil];
+        let extent = members[1..].iter().fold(extents[members[0]], |all, v| all.union(extents[*v]));
+        Ok(Arc::new(Surroundings::new(frequency_hz, earth.at(frequency_hz), &extent)?))
+    }
+}
+
+/// The surroundings of a frequency and soil, both by index.
+type EarthOf<'a> = &'a (dyn Fn(usize, usize) -> Result<Arc<Surroundings>, Failure> + Sync);
+
+/// All models and answers, `[variant][frequency]`.
+fn solve(
+    prepared: &[Prepared],
+    nominal: &Layout,
+    candidates: &[Candidate],
+    (soils, earth_at): (&Soils, EarthOf),
+    watch: &dyn Watch,
+) -> Result<Vec<Vec<Solved>>, PlaceFailure> {
     let frequencies = &nominal.operation.frequencies;
     let power_w = nominal.operation.power_w;
     // the highest frequencies over soil take longest: they start first
     let jobs: Vec<(usize, usize)> =
-        (0..frequencies.len()).rev().flat_map(|f| (0..earths.len()).map(move |e| (f, e))).collect();
+        (0..frequencies.len()).rev().flat_map(|f| (0..soils.count()).map(move |e| (f, e))).collect();
     let done: Vec<Vec<(usize, usize, Solved)>> = jobs
         .par_iter()
         .map(|&(f, e)| {
-            let frequency_hz = frequencies[f].frequency_hz;
-            let (earth, members) = &earths[e];
-            let extents = members.iter().map(|&v| Extent::of(&prepared[v].layout));
-            let Some(extent) = extents.reduce(Extent::union) else { return Ok(Vec::new()) };
-            let surroundings =
-                Surroundings::new(frequency_hz, earth.at(frequency_hz), &extent).map_err(Failure::from)?;
-            members
-                .iter()
+            if watch.stop() {
+                return Err(Failure::Stopped.into());
+            }
+            let surroundings = earth_at(f, e)?;
+            let members = soils.0[e].1.iter();
+            let solved = members
                 .map(|&v| Ok((v, f, solve_one(&prepared[v], &surroundings, candidates, power_w)?)))
-                .collect::<Result<Vec<_>, PlaceFailure>>()
+                .collect::<Result<Vec<_>, PlaceFailure>>();
+            watch.step_done();
+            solved
         })
         .collect::<Result<_, PlaceFailure>>()?;
     let mut sorted: Vec<(usize, usize, Solved)> = done.into_iter().flatten().collect();
@@ -286,22 +366,27 @@ fn outcome(
     solved: &[Vec<Solved>],
 ) -> Result<PlaceOutcome, PlaceFailure> {
     let coax = nominal.coax.as_ref().ok_or(PlaceFailure::NoCoax { about: "the station".to_string() })?;
-    let frequencies = &nominal.operation.frequencies;
     let mut outcome = answers::arrays(solved, candidates.len());
-    outcome.braidwise = env!("CARGO_PKG_VERSION").to_string();
-    outcome.station.clone_from(&nominal.title);
-    outcome.power_w = nominal.operation.power_w;
-    outcome.limits = LimitsOutcome { entry_current_a: nominal.limits.entry_current_a, swr: nominal.limits.swr };
+    describe(&mut outcome, nominal, prepared.iter().map(|p| p.name.clone()).collect(), candidates);
     outcome.entry_at_m = coax.entry_m;
     outcome.coax_length_m = coax.length_m;
     outcome.joins_m.clone_from(&prepared[0].line.joins_m);
     outcome.reachable_m = coax.reachable_m.iter().map(|&(a, b)| [a, b]).collect();
-    outcome.variants = prepared.iter().map(|p| p.name.clone()).collect();
+    outcome.places_m = places_m;
+    Ok(outcome)
+}
+
+/// What was asked of which station.
+fn describe(outcome: &mut PlaceOutcome, nominal: &Layout, variants: Vec<String>, candidates: &[Candidate]) {
+    let frequencies = &nominal.operation.frequencies;
+    outcome.braidwise = env!("CARGO_PKG_VERSION").to_string();
+    outcome.station.clone_from(&nominal.title);
+    outcome.power_w = nominal.operation.power_w;
+    outcome.limits = LimitsOutcome { entry_current_a: nominal.limits.entry_current_a, swr: nominal.limits.swr };
+    outcome.variants = variants;
     outcome.chokes = candidates.iter().map(|c| c.outcome(frequencies)).collect();
     outcome.frequencies_hz = frequencies.iter().map(|f| f.frequency_hz).collect();
     outcome.bands = frequencies.iter().map(|f| f.band.clone()).collect();
-    outcome.places_m = places_m;
-    Ok(outcome)
 }
 
 /// A choke goes around a safety conductor's join, never in place of it.

@@ -10,6 +10,7 @@
 
 use super::words;
 use crate::outcome::place::{OverFrequency, OverPlace, PlaceOutcome, PlacePick, PlaceVerdict, WorstCase};
+use std::cmp::Ordering;
 
 /// A hand may set a choke this far beside the mark, m.
 const SLACK_M: f64 = 0.05;
@@ -18,15 +19,16 @@ const LEAST_VOLTAGE_V: f64 = 3.0;
 /// A choke may raise the worst voltage at the radio by this factor.
 const VOLTAGE_SLACK: f64 = 1.05;
 /// Heat in the choke worth naming, as a share of the power.
-const LARGE_HEAT: f64 = 0.05;
-/// What is not within limits may get worse by this much inside a window.
+pub(super) const LARGE_HEAT: f64 = 0.05;
+/// With no place within the limits, the worst case may get worse by this factor inside the window of the least bad.
 const WINDOW_WORSE: f64 = 1.1;
 
-const QUANTITIES: [&str; 4] = ["entry_current_a", "last_metre_current_a", "swr", "end_voltage_v"];
+/// What is judged, by the names of the arrays.
+pub(super) const QUANTITIES: [&str; 4] = ["entry_current_a", "last_metre_current_a", "swr", "end_voltage_v"];
 
 /// One value against its limit.
 #[derive(Debug, Clone, Copy)]
-struct Case {
+pub(super) struct Case {
     variant: usize,
     frequency: usize,
     quantity: usize,
@@ -39,7 +41,7 @@ impl Case {
         self.value / self.limit
     }
 
-    fn outcome(&self, of: &PlaceOutcome) -> WorstCase {
+    pub(super) fn outcome(&self, of: &PlaceOutcome) -> WorstCase {
         WorstCase {
             frequency_hz: of.frequencies_hz[self.frequency],
             variant: of.variants[self.variant].clone(),
@@ -52,39 +54,45 @@ impl Case {
 
 /// How a place stands.
 #[derive(Debug, Clone, Copy)]
-struct Judged {
+pub(super) struct Judged {
     /// Cases beyond a limit.
-    beyond: usize,
-    /// Their logarithms summed; with none, that of the worst case, which is negative. To either the largest share of the power
-    /// that the choke turns into heat is added: of two places that keep the limits alike the cooler one is better.
-    excess: f64,
-    worst: Case,
+    pub(super) beyond: usize,
+    /// Largest share of the power that the choke turns into heat.
+    pub(super) heat: f64,
+    pub(super) worst: Case,
 }
 
 impl Judged {
     fn of(cases: impl Iterator<Item = Case>) -> Option<Self> {
         let mut out: Option<Self> = None;
-        let mut total = 0.0;
-        let mut beyond = 0;
         for case in cases {
-            if case.ratio() > 1.0 {
-                beyond += 1;
-                total += case.ratio().ln();
-            }
-            if out.is_none_or(|o| case.ratio() > o.worst.ratio()) {
-                out = Some(Self { beyond: 0, excess: 0.0, worst: case });
-            }
+            let beyond = out.map_or(0, |o| o.beyond) + usize::from(case.ratio() > 1.0);
+            let worst = out.map(|o| o.worst).filter(|w| w.ratio() >= case.ratio()).unwrap_or(case);
+            out = Some(Self { beyond, heat: 0.0, worst });
         }
-        out.map(|o| Self { beyond, excess: if beyond > 0 { total } else { o.worst.ratio().ln() }, worst: o.worst })
+        out
     }
 
-    fn better(&self, other: &Self) -> std::cmp::Ordering {
-        self.beyond.cmp(&other.beyond).then(self.excess.total_cmp(&other.excess))
+    /// What keeps its limits comes first. Among what does not, the one whose worst case is the least of its limit beyond it, however many
+    /// cases are; among what does, the one furthest from its limits, and of two alike the cooler.
+    pub(super) fn better(&self, other: &Self) -> Ordering {
+        let rank = |j: &Self| j.worst.ratio().ln() + if j.keeps() { j.heat } else { 0.0 };
+        other.keeps().cmp(&self.keeps()).then(rank(self).total_cmp(&rank(other)))
+    }
+
+    /// All limits are kept.
+    pub(super) fn keeps(&self) -> bool {
+        self.beyond == 0
+    }
+
+    /// Whether another place is as good as far as a window goes.
+    pub(super) fn window_takes(&self, other: &Self) -> bool {
+        if self.keeps() { other.keeps() } else { other.worst.ratio() <= WINDOW_WORSE * self.worst.ratio() }
     }
 }
 
 /// Limits in the order of [`QUANTITIES`].
-fn limits(outcome: &PlaceOutcome) -> [f64; 4] {
+pub(super) fn limits(outcome: &PlaceOutcome) -> [f64; 4] {
     let highest = outcome.without.end_voltage_v.iter().flatten().flatten().fold(0.0_f64, |m, v| m.max(*v));
     let volts = (VOLTAGE_SLACK * highest).max(LEAST_VOLTAGE_V);
     [outcome.limits.entry_current_a, outcome.limits.entry_current_a, outcome.limits.swr, volts]
@@ -103,7 +111,8 @@ fn cases<'a>(
     })
 }
 
-fn judge_without(outcome: &PlaceOutcome, limits: [f64; 4]) -> Option<Judged> {
+/// How the station stands without a choke.
+pub(super) fn judge_without(outcome: &PlaceOutcome, limits: [f64; 4]) -> Option<Judged> {
     let w = &outcome.without;
     let plain = |of: &OverFrequency<f64>, v: usize, f: usize| Some(of[v][f]);
     Judged::of(cases(outcome, limits, |v, f, q| match q {
@@ -123,25 +132,42 @@ fn judge(outcome: &PlaceOutcome, limits: [f64; 4], choke: usize, place: usize) -
         2 => plain(&outcome.swr, v, f),
         _ => outcome.end_voltage_v[v][choke][f][place],
     }));
-    judged.map(|j| Judged { excess: j.excess + heat, ..j })
+    judged.map(|j| Judged { heat, ..j })
+}
+
+/// How every place stands, `[choke][place]`.
+pub(super) fn judge_all(outcome: &PlaceOutcome, limits: [f64; 4]) -> Vec<Vec<Judged>> {
+    (0..outcome.chokes.len())
+        .map(|c| (0..outcome.places_m.len()).filter_map(|p| judge(outcome, limits, c, p)).collect())
+        .collect()
+}
+
+/// Of the places within a hand's breadth of one the worst.
+pub(super) fn worst_beside(places_m: &[f64], judged: &[Judged], place: usize) -> usize {
+    let near = |q: &usize| (places_m[*q] - places_m[place]).abs() <= SLACK_M + 1e-9;
+    let low = (0..=place).rev().take_while(near).last().unwrap_or(place);
+    let high = (place..places_m.len()).take_while(near).last().unwrap_or(place);
+    (low..=high).max_by(|a, b| judged[*a].better(&judged[*b])).unwrap_or(place)
 }
 
 /// Fill in verdict, reason and picks.
 pub(super) fn decide(outcome: &mut PlaceOutcome) {
     let limits = limits(outcome);
     let offered = offered(outcome);
-    let judged: Vec<Vec<Judged>> = (0..outcome.chokes.len())
-        .map(|c| (0..outcome.places_m.len()).filter_map(|p| judge(outcome, limits, c, p)).collect())
-        .collect();
+    let judged = judge_all(outcome, limits);
     let mut found: Vec<(Judged, PlacePick)> =
         (0..outcome.chokes.len()).filter_map(|c| pick(outcome, c, &judged[c], &offered)).collect();
     let width = |p: &PlacePick| p.window_m[1] - p.window_m[0];
     found.sort_by(|a, b| a.0.better(&b.0).then(width(&b.1).total_cmp(&width(&a.1))));
     let without = judge_without(outcome, limits);
-    let (verdict, why) = match (without.filter(|w| w.beyond == 0), found.first()) {
+    let (verdict, why) = match (without.filter(Judged::keeps), found.first()) {
         (Some(worst), _) => (PlaceVerdict::NoneNeeded, none_needed(outcome, &worst)),
-        (None, Some((best, pick))) if best.beyond == 0 => (PlaceVerdict::Place, pick.why.clone()),
-        (None, Some(_)) => (PlaceVerdict::NoPlace, no_place(outcome, &judged, &offered)),
+        (None, Some((best, pick))) if best.keeps() => (PlaceVerdict::Place, pick.why.clone()),
+        (None, Some((best, _))) => {
+            let worse = without.is_some_and(|w| w.better(best) == Ordering::Less);
+            let note = if worse { "; the station without a choke is less far beyond its limits" } else { "" };
+            (PlaceVerdict::NoPlace, no_place(outcome, &judged, &offered) + note)
+        }
         (None, None) => {
             (PlaceVerdict::NoPlace, "no place of the coax is within the stretches that can be reached".to_string())
         }
@@ -152,7 +178,7 @@ pub(super) fn decide(outcome: &mut PlaceOutcome) {
 }
 
 /// Which places a hand can reach.
-fn offered(outcome: &PlaceOutcome) -> Vec<bool> {
+pub(super) fn offered(outcome: &PlaceOutcome) -> Vec<bool> {
     let within = |x: f64| outcome.reachable_m.iter().any(|r| x >= r[0] - 1e-9 && x <= r[1] + 1e-9);
     outcome.places_m.iter().map(|x| outcome.reachable_m.is_empty() || within(*x)).collect()
 }
@@ -160,20 +186,11 @@ fn offered(outcome: &PlaceOutcome) -> Vec<bool> {
 /// The best place of a choke that also holds a hand's breadth to either side, with its window.
 fn pick(outcome: &PlaceOutcome, choke: usize, judged: &[Judged], offered: &[bool]) -> Option<(Judged, PlacePick)> {
     let places = &outcome.places_m;
-    let beside = |p: usize| {
-        let near = |q: usize| (places[q] - places[p]).abs() <= SLACK_M + 1e-9;
-        let low = (0..=p).rev().take_while(|q| near(*q)).last().unwrap_or(p);
-        let high = (p..places.len()).take_while(|q| near(*q)).last().unwrap_or(p);
-        judged[low..=high].iter().max_by(|a, b| a.better(b)).copied().unwrap_or(judged[p])
-    };
-    let robust: Vec<Option<Judged>> = (0..places.len()).map(|p| offered[p].then(|| beside(p))).collect();
+    let robust: Vec<Option<Judged>> =
+        (0..places.len()).map(|p| offered[p].then(|| judged[worst_beside(places, judged, p)])).collect();
     let best = robust.iter().enumerate().filter_map(|(p, r)| r.map(|r| (p, r))).min_by(|a, b| a.1.better(&b.1))?.0;
     let here = judged[best];
-    let holds = |q: usize| {
-        let worse = if here.beyond == 0 { 0.0 } else { WINDOW_WORSE.ln() * here.beyond as f64 };
-        let near = here.beyond == 0 || judged[q].excess <= here.excess + worse;
-        offered[q] && judged[q].beyond <= here.beyond && near
-    };
+    let holds = |q: usize| offered[q] && here.window_takes(&judged[q]);
     let low = (0..=best).rev().take_while(|q| holds(*q)).last().unwrap_or(best);
     let high = (best..places.len()).take_while(|q| holds(*q)).last().unwrap_or(best);
     let mut pick = PlacePick {
@@ -190,7 +207,7 @@ fn pick(outcome: &PlaceOutcome, choke: usize, judged: &[Judged], offered: &[bool
 fn why(outcome: &PlaceOutcome, choke: usize, place: usize, here: &Judged, pick: &PlacePick) -> String {
     let at = words::window(pick.window_m);
     let count = outcome.variants.len() * outcome.frequencies_hz.len() * QUANTITIES.len();
-    let mut text = if here.beyond == 0 {
+    let mut text = if here.keeps() {
         format!("at {at}: within limits on {}{}", words::bands(outcome), words::variants(outcome))
     } else {
         format!("at {at}: {} of {count} values beyond a limit; {}", here.beyond, words::case(&pick.worst))
@@ -264,4 +281,62 @@ fn worst_of(outcome: &PlaceOutcome, limits: [f64; 4], choke: usize, place: usize
     };
     cases(outcome, limits, |v, f, q| if q == quantity { value(v, f) } else { None })
         .max_by(|a, b| a.ratio().total_cmp(&b.ratio()))
+}
+
+#[cfg(test)]
+mod tests {
+    #![allow(clippy::unwrap_used)]
+    use super::*;
+    use crate::outcome::place::CandidateOutcome;
+    use num_complex::Complex64;
+
+    /// One choke at places a metre apart on three frequencies; the entry current is given, everything else is quiet.
+    fn outcome(entry_a: [[f64; 4]; 3]) -> PlaceOutcome {
+        let mut out = super::super::answers::arrays(&[], 0);
+        let same = |value: f64| vec![vec![vec![vec![value; 4]; 3]]];
+        let volts = vec![vec![vec![vec![Some(1.0); 4]; 3]]];
+        out.power_w = 100.0;
+        out.limits.entry_current_a = 0.02;
+        out.limits.swr = 2.0;
+        out.variants = vec!["nominal".to_string()];
+        out.chokes =
+            vec![CandidateOutcome { name: "2 kohm".to_string(), impedance_ohm: vec![Complex64::from(2e3); 3] }];
+        out.frequencies_hz = vec![7e6, 14e6, 21e6];
+        out.places_m = vec![1.0, 2.0, 3.0, 4.0];
+        out.entry_current_a = vec![vec![entry_a.map(|f| f.to_vec()).to_vec()]];
+        out.last_metre_current_a = same(0.001);
+        out.swr = same(1.5);
+        out.choke_w = same(0.1);
+        (out.entry_voltage_v, out.end_voltage_v) = (volts.clone(), volts);
+        out.without.entry_current_a = vec![vec![0.3; 3]];
+        out.without.last_metre_current_a = vec![vec![0.001; 3]];
+        out.without.swr = vec![vec![1.5; 3]];
+        out.without.end_voltage_v = vec![vec![Some(1.0); 3]];
+        decide(&mut out);
+        out
+    }
+
+    #[test]
+    fn one_huge_excess_is_worse_than_several_small_ones() {
+        let out = outcome([[0.010, 0.022, 0.10, 0.2], [0.010, 0.023, 0.10, 0.2], [0.140, 0.024, 0.10, 0.2]]);
+        let pick = &out.picks[0];
+        assert_eq!(out.verdict, PlaceVerdict::NoPlace);
+        assert_eq!((pick.at_m, pick.worst.value, pick.worst.frequency_hz), (2.0, 0.024, 21e6));
+        assert!(pick.why.contains("3 of 12 values beyond a limit"), "{}", pick.why);
+        assert!(out.why.contains("the current into the shack is at best 24 mA (limit 20 mA) at 21 MHz"), "{}", out.why);
+        assert!(!out.why.contains("without a choke"), "{}", out.why);
+    }
+
+    #[test]
+    fn a_place_within_the_limits_comes_before_any_beyond_and_nothing_beyond_is_in_its_window() {
+        let out = outcome([[0.0199; 4], [0.0199, 0.0199, 0.0201, 0.0199], [0.0199; 4]]);
+        assert_eq!(out.verdict, PlaceVerdict::Place);
+        assert_eq!((out.picks[0].at_m, out.picks[0].window_m), (1.0, [1.0, 2.0]));
+    }
+
+    #[test]
+    fn where_every_choke_makes_it_worse_that_is_said() {
+        let out = outcome([[0.5; 4]; 3]);
+        assert!(out.why.ends_with("the station without a choke is less far beyond its limits"), "{}", out.why);
+    }
 }

@@ -13,7 +13,8 @@ pub use axis::{Axis, AxisError, MOST_POINTS, Values};
 pub use sample::{SampleError, Sampling};
 
 use super::store::{Finished, Store, StoreError};
-use crate::outcome::vary::{Quantity, VariedPoint};
+use super::watch::Watch;
+use crate::outcome::vary::{Quantity, VariedPoint, VariedSummary};
 use crate::station::{Catalogue, Document, Refused};
 use serde_json::Value;
 use solve::{Job, Work};
@@ -28,16 +29,6 @@ pub struct Plan {
     pub sampling: Sampling,
     /// The columns.
     pub want: Vec<Quantity>,
-}
-
-/// Who watches a long run: told of every point that is done, asked whether to stop. Called from any thread.
-pub trait Watch: Sync {
-    /// The work begins: points asked for, and how many of them are in the store.
-    fn begins(&self, points: usize, there: usize);
-    /// One more point is in the store.
-    fn point_done(&self);
-    /// True to stop after the points at work.
-    fn stop(&self) -> bool;
 }
 
 /// How a run ended.
@@ -140,7 +131,7 @@ pub fn vary(
         let put = |job: &Job, finished: &Finished| {
             store.put(&plan.key(&points[job.point]), finished)?;
             computed.fetch_add(1, Ordering::Relaxed);
-            watch.point_done();
+            watch.step_done();
             Ok(())
         };
         Work { document, catalogue, plan, points: &points }.run(missing, watch, &put)?;
@@ -158,7 +149,8 @@ pub fn collect(plan: &Plan, store: &Store) -> Result<Vec<VariedPoint>, VaryError
     let mut out = Vec::new();
     for values in plan.points()? {
         if let Some(Finished { rows, failed, .. }) = store.get(&plan.key(&values), &want)? {
-            out.push(VariedPoint { values, rows, failed });
+            let summary = VariedSummary::of(&plan.want, &rows);
+            out.push(VariedPoint { values, rows, failed, summary });
         }
     }
     Ok(out)

@@ -1,6 +1,6 @@
 //! Points predicted together: one soil table a frequency and soil, one port model where only parts outside the matrix differ.
 
-use super::{Plan, Watch};
+use super::Plan;
 use crate::interaction::{Extent, Interaction, Surroundings};
 use crate::layout::{EarthAt, Layout};
 use crate::mesh::{Density, Mesh};
@@ -9,6 +9,7 @@ use crate::ports::PortModel;
 use crate::station::{Catalogue, Document, Refused};
 use crate::study::predict::{At, Ported, SECOND_MESH};
 use crate::study::store::{Finished, StoreError};
+use crate::study::watch::Watch;
 use rayon::prelude::*;
 use std::collections::{HashMap, HashSet};
 use std::hash::{DefaultHasher, Hash, Hasher};
