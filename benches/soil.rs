@@ -10,7 +10,9 @@ use braidwise::station::{Document, Embedded};
 use std::time::Instant;
 
 fn main() -> Result<(), Box<dyn std::error::Error>> {
-    println!("station                  unknowns  tables ms  solve ms  perfect ms  fill soil/perfect  solve soil/perfect, tables included");
+    println!(
+        "station                  unknowns  tables ms  solve ms  perfect ms  fill soil/perfect  solve soil/perfect, tables included"
+    );
     for (name, densities) in [
         ("gauge-hut", [0.6, 2.1, 8.0]),
         ("gauge-hut-rod", [0.4, 1.4, 5.5]),
