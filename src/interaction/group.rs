@@ -9,7 +9,7 @@ use super::fill::region_of;
 use super::lagrange::stretch_weights;
 use super::line::{Line, clearance};
 use super::quadrature::gauss;
-use super::rest::Kernels;
+use super::rest::{Kernels, phase};
 use super::surroundings::SoilRest;
 use crate::halfspace::Region;
 use crate::mesh::Element;
@@ -26,9 +26,6 @@ const AIR_RADIANS: f64 = 1.3;
 const SOIL_RADIANS: f64 = 2.0;
 /// Groups are not made shorter than this, in radians of the wave in the air.
 const SHORTEST_RADIANS: f64 = 0.25;
-/// Beyond this many radians in the soil only the wave in the air is left.
-const SPENT_RADIANS: f64 = 8.0;
-
 /// A straight run of elements.
 #[derive(Debug, Clone)]
 pub(super) struct Group {
@@ -86,7 +83,7 @@ impl Groups {
             for j in i..count {
                 let region = region_of(&list[i].line, &list[j].line);
                 let other = if region == Region::Across { &lines[j].0 } else { &lines[j].1 };
-                nodes[i * count + j] = far_nodes((&list[i], &list[j]), clearance(&lines[i].0, other), (k0, k1));
+                nodes[i * count + j] = far_nodes((&list[i], &list[j]), clearance(&lines[i].0, other), soil);
             }
         }
         Self { list, of, nodes }
@@ -180,9 +177,8 @@ fn cut_run(run: &[Element], first: usize, longest_m: f64, list: &mut Vec<Group>)
 
 /// Nodes on each group of a pair this far apart; `None` where the rest is not smooth enough, or where few elements make it
 /// not worth while.
-fn far_nodes((one, two): (&Group, &Group), gap_m: f64, (k0, k1): (f64, f64)) -> Option<(u8, u8)> {
-    let k = if gap_m * k1 > SPENT_RADIANS { k0 } else { k1 };
-    let (n, m) = (nodes_for(one.line.length_m, gap_m, k)?, nodes_for(two.line.length_m, gap_m, k)?);
+fn far_nodes((one, two): (&Group, &Group), gap_m: f64, soil: &SoilRest) -> Option<(u8, u8)> {
+    let (n, m) = (nodes_for(&one.line, gap_m, soil)?, nodes_for(&two.line, gap_m, soil)?);
     // an element by itself takes two to four points
     let by_elements = 9 * one.members.len() * two.members.len();
     (n * m < by_elements).then_some((n as u8, m as u8))
@@ -190,19 +186,98 @@ fn far_nodes((one, two): (&Group, &Group), gap_m: f64, (k0, k1): (f64, f64)) -> 
 
 /// Fewest nodes that interpolate the rest along a line.
 ///
-/// With the nearest singularity at x = 1 + 2 gap/length the error falls as (x + √(x² − 1))^{−n} (Bernstein), and that of a wave as
-/// 2 (kl/4)^n/n!.
-fn nodes_for(length_m: f64, gap_m: f64, k: f64) -> Option<usize> {
-    let x = 1.0 + 2.0 * gap_m / length_m;
+/// With the nearest singularity at x = 1 + 2 gap/length the error falls as (x + √(x² − 1))^{−n} (Bernstein), and that of a wave of
+/// phase φ along the line as 2 (φ/4)^n/n!.
+fn nodes_for(line: &Element, gap_m: f64, soil: &SoilRest) -> Option<usize> {
+    let x = 1.0 + 2.0 * gap_m / line.length_m;
     let rate = x + (x * x - 1.0).sqrt();
-    let mut wave = 2.0;
-    let mut near = 1.0;
+    let quarter = 0.25 * phase(line, gap_m, soil);
+    let (mut wave, mut near) = (2.0, 1.0);
     for n in 1..=NODES {
         near /= rate;
-        wave *= 0.25 * k * length_m / n as f64;
+        wave *= quarter / n as f64;
         if n >= FEWEST && near < ERROR && wave < ERROR {
             return Some(n);
         }
     }
     None
+}
+
+#[cfg(test)]
+mod tests {
+    #![allow(clippy::unwrap_used)]
+    use super::*;
+    use crate::interaction::{Extent, Surroundings};
+    use crate::layout::{EarthAt, Layout};
+    use crate::mesh::{Density, Mesh};
+    use crate::station::{Document, Embedded};
+    use num_complex::Complex64;
+
+    fn mesh(model: &str) -> (Layout, Mesh) {
+        let station = Document::parse(model, "model").unwrap().station(&Embedded).unwrap();
+        let layout = Layout::place(&station).unwrap();
+        let mesh = Mesh::new(&layout, 28e6, Density { factor: 1.5 }, &[]);
+        (layout, mesh)
+    }
+
+    /// Means of the kernels over two elements, P_0 on both, by a rule finer than any.
+    fn brute(e: &Element, f: &Element, soil: &SoilRest) -> [Complex64; 2] {
+        let (kernels, rule) = (Kernels::of(e, f, region_of(e, f)), gauss(12));
+        let mut out = [Complex64::ZERO; 2];
+        for (x, w) in rule.nodes.iter().zip(&rule.weights) {
+            for (y, v) in rule.nodes.iter().zip(&rule.weights) {
+                let (current, potential) = kernels.at::<false>(soil, e.at(*x), f.at(*y));
+                out[0] += current * (0.25 * w * v);
+                out[1] += potential * (0.25 * w * v);
+            }
+        }
+        out
+    }
+
+    #[test]
+    fn groups_see_each_other_as_their_elements_do() {
+        let models = [
+            include_str!("../../models/gauge-hut-rod.toml"),
+            include_str!("../../models/reservoir-radials-buried.toml"),
+            include_str!("../../models/quarry-on-rock.toml"),
+        ];
+        let soils = [(13.0, 5e-3), (3.0, 1e-4), (81.0, 5.0)];
+        let (mut worst, mut pairs, mut coarse) = (0.0f64, 0, 0.0f64);
+        for (model, hz) in models.iter().flat_map(|m| [1.8e6, 7.1e6, 28e6].map(|hz| (m, hz))) {
+            let (layout, mesh) = mesh(model);
+            for (permittivity, conductivity_s_per_m) in soils {
+                let earth = EarthAt::Soil { permittivity, conductivity_s_per_m };
+                let surroundings = Surroundings::new(hz, earth, &Extent::of(&layout)).unwrap();
+                let soil = surroundings.soil().unwrap();
+                let groups = Groups::of(&mesh.elements, mesh.elements.len(), soil);
+                for (one, two, nodes) in groups.far().step_by(7) {
+                    let pair = groups.pair::<false>((one, two), nodes, soil);
+                    let (i, j) = (groups.list[one].members.start, groups.list[two].members.end - 1);
+                    let (e, f) = (&mesh.elements[i], &mesh.elements[j]);
+                    let (left, right) = (groups.weights(e, one, nodes.0), groups.weights(f, two, nodes.1));
+                    let mean = |kernel: &[[[f64; NODES]; NODES]; 2]| -> Complex64 {
+                        let terms = (0..NODES).flat_map(|p| (0..NODES).map(move |q| (p, q)));
+                        let term = |(p, q): (usize, usize)| {
+                            Complex64::new(kernel[0][p][q], kernel[1][p][q]) * (left[0][p] * right[0][q])
+                        };
+                        terms.map(term).sum()
+                    };
+                    let wanted = brute(e, f, soil);
+                    let got = [mean(&pair.current), mean(&pair.potential)];
+                    let across = region_of(e, f) == Region::Across;
+                    let other = if across { Line::of(f) } else { Line::mirrored(f) };
+                    let far_m = clearance(&Line::of(e), &other);
+                    for (a, b) in got.iter().zip(wanted) {
+                        worst = worst.max((a - b).norm() * far_m);
+                        coarse = coarse.max((pair.potential[0][0][0] - b.re).abs() * far_m);
+                    }
+                    pairs += 1;
+                }
+            }
+        }
+        assert!(pairs > 500, "{pairs} pairs");
+        // times the distance: twice the tables' own tolerance
+        assert!(worst < 2e-5, "{worst:e}");
+        assert!(coarse > 1e-2, "one node must not do: {coarse:e}");
+    }
 }

@@ -91,9 +91,7 @@ fn moments(points: usize, xi: f64, weight: f64) -> [f64; SIDE] {
 /// points more on every element the feed of the gauge hut moved by less than 10⁻⁵ at 3.5, 14 and 28 MHz.
 pub(super) fn points(e: &Element, gap: f64, soil: &SoilRest, crossed: bool) -> usize {
     let ratio = gap / e.length_m;
-    let k = soil.wavenumber().norm();
-    // beyond a few skin depths only the wave in the air is left
-    let turns = if gap * k < 8.0 { k * e.length_m } else { (k * e.length_m).min(1.0) };
+    let turns = phase(e, gap, soil);
     if ratio > 6.0 && turns < 0.2 {
         return FEWEST;
     }
@@ -104,4 +102,16 @@ pub(super) fn points(e: &Element, gap: f64, soil: &SoilRest, crossed: bool) -> u
     };
     let crossing = if crossed { 4 * close } else { 0 };
     (e.degree + close + crossing + (1.5 * turns).ceil() as usize).clamp(FEWEST, MOST)
+}
+
+/// Nepers after which the wave along the soil is spent, and only the one in the air is left.
+const SPENT: f64 = 10.0;
+
+/// Radians by which the rest turns (or falls) along a line at a distance: at the soil's wavenumber down into it, and along the surface
+/// too as far as that wave reaches.
+pub(super) fn phase(e: &Element, gap_m: f64, soil: &SoilRest) -> f64 {
+    let k1 = soil.wavenumber();
+    let along = if -k1.im * gap_m > SPENT { soil.air_wavenumber() } else { k1.norm() };
+    let (level, upright) = ((1.0 - e.tangent.z * e.tangent.z).max(0.0).sqrt(), e.tangent.z.abs());
+    e.length_m * if e.below { (along * level).hypot(k1.norm() * upright) } else { along }
 }
