@@ -16,7 +16,7 @@ use super::rest::{Kernels, points as rest_points};
 use super::surroundings::{Family, SoilRest, Surroundings};
 use crate::halfspace::Region;
 use crate::mesh::{Element, MAX_DEGREE, Mesh};
-use crate::processor::{Vectorised, widest};
+use crate::processor::{Vectorised, mul_add, widest};
 use faer::linalg::matmul::matmul;
 use faer::{Accum, Mat, Par};
 use num_complex::Complex64;
@@ -182,29 +182,20 @@ impl Added {
     /// - `run`: below [`Added::runs`]
     #[must_use]
     pub fn seen(&self, mesh: &Mesh, run: usize, earth: &Surroundings, spots: &[Spot]) -> Seen {
-        let run = &self.runs[run];
-        let mut seen: Matrix = Mat::zeros(self.leading, 2 * NODES);
-        let mut probes: Vec<(usize, [Complex64; NODES])> = Vec::new();
-        for &k in &self.far_ids {
-            let e = &mesh.elements[k];
-            let sight = Sight { element: e, run, earth, with_image: self.with_image };
-            let (current, potential) = widest(sight);
-            for &(u, factors) in &self.maps[k] {
-                let charge = slope(&factors);
-                for q in 0..NODES {
-                    let a: Complex64 = (0..=MAX_DEGREE).map(|n| current[n][q] * factors[n]).sum();
-                    let p: Complex64 = (0..=MAX_DEGREE).map(|n| potential[n][q] * charge[n]).sum();
-                    seen[(u, q)] += a * e.length_m;
-                    seen[(u, NODES + q)] += p;
-                }
-            }
-            for (n, spot) in spots.iter().enumerate().filter(|(_, s)| s.element == k) {
-                let w = value_weights(spot.xi);
-                let at = |q: usize| (0..=MAX_DEGREE).map(|a| potential[a][q] * w[a]).sum::<Complex64>();
-                probes.push((n, std::array::from_fn(at)));
-            }
-        }
-        Seen { matrix: seen, probes }
+        let mut rows = vec![SeenRow::default(); self.leading];
+        let mut probes = Vec::new();
+        let families = earth.families();
+        widest(Look {
+            added: self,
+            elements: &mesh.elements,
+            run: &self.runs[run],
+            earth: (earth, &families),
+            spots,
+            rows: &mut rows,
+            probes: &mut probes,
+        });
+        let matrix = Mat::from_fn(self.leading, 2 * NODES, |u, q| rows[u].at(q));
+        Seen { matrix, probes }
     }
 
     /// Number of straight runs.
@@ -289,39 +280,104 @@ impl Added {
     }
 }
 
-/// Means over an element of P_a times the kernels, vector potential (its component along the run) and scalar potential.
-type NodeKernels = ([[Complex64; NODES]; SIDE], [[Complex64; NODES]; SIDE]);
+/// Real and imaginary parts at the nodes of a run.
+type AtNodes = [[f64; NODES]; 2];
 
-/// [`NodeKernels`] of an element at the nodes of a run, as work for the processor.
+/// Means over an element of P_a times the kernels: vector potential (its component along the run), and scalar potential.
+#[derive(Default)]
+struct NodeKernels {
+    current: [AtNodes; SIDE],
+    potential: [AtNodes; SIDE],
+}
+
+/// How a leading unknown is seen at the nodes of a run.
+#[derive(Debug, Clone, Default)]
+struct SeenRow {
+    current: AtNodes,
+    potential: AtNodes,
+}
+
+impl SeenRow {
+    /// The nodes for the current, then those for the potential.
+    fn at(&self, q: usize) -> Complex64 {
+        let (values, q) = if q < NODES { (&self.current, q) } else { (&self.potential, q - NODES) };
+        Complex64::new(values[0][q], values[1][q])
+    }
+}
+
+/// [`Added::seen`] as work for the processor.
+struct Look<'a> {
+    added: &'a Added,
+    elements: &'a [Element],
+    run: &'a Run,
+    earth: (&'a Surroundings, &'a [Family]),
+    spots: &'a [Spot],
+    rows: &'a mut [SeenRow],
+    probes: &'a mut Vec<(usize, [Complex64; NODES])>,
+}
+
+impl Vectorised for Look<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn run<const FMA: bool>(self) {
+        for &k in &self.added.far_ids {
+            let element = &self.elements[k];
+            let sight = Sight { element, run: self.run, earth: self.earth, with_image: self.added.with_image };
+            let mut kernels = NodeKernels::default();
+            sight.add_all::<FMA>(&mut kernels);
+            for (u, factors) in &self.added.maps[k] {
+                let charge = slope(factors);
+                let row = &mut self.rows[*u];
+                for n in 0..SIDE {
+                    add_scaled::<FMA>(element.length_m * factors[n], &kernels.current[n], &mut row.current);
+                    add_scaled::<FMA>(charge[n], &kernels.potential[n], &mut row.potential);
+                }
+            }
+            for (n, spot) in self.spots.iter().enumerate().filter(|(_, s)| s.element == k) {
+                let mut value = AtNodes::default();
+                for (w, potential) in value_weights(spot.xi).iter().zip(&kernels.potential) {
+                    add_scaled::<FMA>(*w, potential, &mut value);
+                }
+                self.probes.push((n, std::array::from_fn(|q| Complex64::new(value[0][q], value[1][q]))));
+            }
+        }
+    }
+}
+
+#[inline(always)]
+fn add_scaled<const FMA: bool>(factor: f64, from: &AtNodes, to: &mut AtNodes) {
+    for part in 0..2 {
+        for q in 0..NODES {
+            to[part][q] = mul_add::<FMA>(factor, from[part][q], to[part][q]);
+        }
+    }
+}
+
+/// An element as it is seen from the nodes of a run.
 struct Sight<'a> {
     element: &'a Element,
     run: &'a Run,
-    earth: &'a Surroundings,
+    earth: (&'a Surroundings, &'a [Family]),
     with_image: bool,
-}
-
-impl Vectorised for Sight<'_> {
-    type Output = NodeKernels;
-
-    #[inline(always)]
-    fn run<const FMA: bool>(self) -> NodeKernels {
-        let mut out = ([[Complex64::ZERO; NODES]; SIDE], [[Complex64::ZERO; NODES]; SIDE]);
-        for family in self.earth.families() {
-            let is_here = region_of(self.element, &self.run.line) == family.region;
-            if is_here && (self.with_image || !family.mirrored) {
-                self.add_family::<FMA>(&family, &mut out);
-            }
-        }
-        if let Some(soil) = self.earth.soil() {
-            self.add_rest::<FMA>(soil, &mut out);
-        }
-        out
-    }
 }
 
 impl Sight<'_> {
     #[inline(always)]
-    fn add_family<const FMA: bool>(&self, family: &Family, (current, potential): &mut NodeKernels) {
+    fn add_all<const FMA: bool>(&self, out: &mut NodeKernels) {
+        for family in self.earth.1 {
+            let is_here = region_of(self.element, &self.run.line) == family.region;
+            if is_here && (self.with_image || !family.mirrored) {
+                self.add_family::<FMA>(family, out);
+            }
+        }
+        if let Some(soil) = self.earth.0.soil() {
+            self.add_rest::<FMA>(soil, out);
+        }
+    }
+
+    #[inline(always)]
+    fn add_family<const FMA: bool>(&self, family: &Family, out: &mut NodeKernels) {
         let (e, run) = (self.element, &self.run.line);
         let line = if family.mirrored { Line::mirrored(run) } else { Line::of(run) };
         let one = Line::of(e);
@@ -344,16 +400,13 @@ impl Sight<'_> {
         let k = (family.k.re, -family.k.im);
         let sums: LineMoments = line_moments::<FMA>((&at[..count], &left[..count]), &places, offset_m2, k);
         for a in 0..SIDE {
-            for q in 0..NODES {
-                let g = Complex64::new(sums[a][0][q], sums[a][1][q]);
-                current[a][q] += along * g;
-                potential[a][q] += w.potential * g;
-            }
+            add_turned::<FMA>(along, &sums[a], &mut out.current[a]);
+            add_turned::<FMA>(w.potential, &sums[a], &mut out.potential[a]);
         }
     }
 
     #[inline(always)]
-    fn add_rest<const FMA: bool>(&self, soil: &SoilRest, (current, potential): &mut NodeKernels) {
+    fn add_rest<const FMA: bool>(&self, soil: &SoilRest, out: &mut NodeKernels) {
         let (e, run) = (self.element, &self.run.line);
         let region = region_of(e, run);
         let kernels = Kernels::of(e, run, region);
@@ -366,11 +419,23 @@ impl Sight<'_> {
             for q in 0..NODES {
                 let (c, p) = kernels.at::<FMA>(soil, here, run.at(rule.nodes[q]));
                 for a in 0..SIDE {
-                    current[a][q] += c * left[a];
-                    potential[a][q] += p * left[a];
+                    out.current[a][0][q] += c.re * left[a];
+                    out.current[a][1][q] += c.im * left[a];
+                    out.potential[a][0][q] += p.re * left[a];
+                    out.potential[a][1][q] += p.im * left[a];
                 }
             }
         }
+    }
+}
+
+/// Add a complex multiple.
+#[inline(always)]
+fn add_turned<const FMA: bool>(factor: Complex64, from: &AtNodes, to: &mut AtNodes) {
+    for q in 0..NODES {
+        let (re, im) = (from[0][q], from[1][q]);
+        to[0][q] = mul_add::<FMA>(factor.re, re, mul_add::<FMA>(-factor.im, im, to[0][q]));
+        to[1][q] = mul_add::<FMA>(factor.re, im, mul_add::<FMA>(factor.im, re, to[1][q]));
     }
 }
 
