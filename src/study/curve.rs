@@ -61,8 +61,9 @@ struct Values {
 }
 
 const OBSERVED: usize = 4;
-/// Solves a curve starts from: measured on the models from 3 to 30 MHz, one more than the interpolation's own default saves a pair.
-const FIRST_SOLVES: usize = 9;
+/// Solves a curve starts from: of 8 to 14, measured on all models from 3 to 30 MHz, this took the README's station 23 and came second
+/// in all (596 solves on 22 models; the others 590 to 606).
+const FIRST_SOLVES: usize = 11;
 
 impl<'a> PortCurve<'a> {
     /// Solves at as many frequencies as the tolerance needs, two or more at a time on the cores there are.

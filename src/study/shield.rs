@@ -14,7 +14,8 @@ pub(super) fn outcome(layout: &Layout, conductors: &[ConductorOutcome]) -> Optio
     let largest = points.iter().max_by(|a, b| a.current_a.norm().total_cmp(&b.current_a.norm()))?;
     let highest =
         points.iter().filter_map(|p| p.voltage_v.map(|v| (v, p.distance_m))).max_by(|a, b| a.0.total_cmp(&b.0));
-    let near_end = points.iter().filter(|p| p.distance_m >= last.distance_m - 1.0);
+    let from_m = last.distance_m - 1.0;
+    let near_end = points.iter().filter(|p| p.distance_m >= from_m).map(|p| p.current_a.norm());
     Some(ShieldOutcome {
         entry_at_m: coax.entry_m,
         entry_current_a: entry.0,
@@ -22,12 +23,21 @@ pub(super) fn outcome(layout: &Layout, conductors: &[ConductorOutcome]) -> Optio
         end,
         end_current_a: if end == ShieldEnd::Open { 0.0 } else { last.current_a.norm() },
         end_voltage_v: last.voltage_v,
-        last_metre_current_a: near_end.map(|p| p.current_a.norm()).fold(0.0, f64::max),
+        last_metre_current_a: near_end.fold(current_at(points, from_m), f64::max),
         largest_current_a: largest.current_a.norm(),
         largest_at_m: largest.distance_m,
         largest_voltage_v: highest.map(|h| h.0),
         largest_voltage_at_m: highest.map(|h| h.1),
     })
+}
+
+/// Magnitude of the current at a distance between two points, A; 0 before the first.
+fn current_at(points: &[PointOutcome], at_m: f64) -> f64 {
+    let beyond = points.iter().position(|p| p.distance_m >= at_m).unwrap_or(0);
+    let Some(before) = beyond.checked_sub(1) else { return 0.0 };
+    let (p, q) = (&points[before], &points[beyond]);
+    let share = (at_m - p.distance_m) / (q.distance_m - p.distance_m).max(f64::MIN_POSITIVE);
+    (p.current_a + (q.current_a - p.current_a) * share).norm()
 }
 
 /// Current and voltage going on into the shack: the radio side of everything joined at the entry.

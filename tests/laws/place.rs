@@ -78,7 +78,7 @@ fn station(draw: &mut Draw, number: usize) -> String {
 
 fn choke(name: &str, at_m: f64, ohm: Complex64) -> String {
     format!(
-        "[[choke]]\nname = \"{name}\"\nat = {at_m}\nimpedance = {{ resistance = \"{} ohm\", reactance = \"{} ohm\" }}\n",
+        "[[choke]]\nname = \"{name}\"\nat = \"{at_m} m\"\nimpedance = {{ resistance = \"{} ohm\", reactance = \"{} ohm\" }}\n",
         ohm.re, ohm.im
     )
 }
@@ -163,6 +163,28 @@ fn a_place_equals_the_prediction_with_the_choke_in_the_file() {
             for beside in [at, at + 1] {
                 compare(&out, &format!("{text}{}", choke("new", out.places_m[beside], impedances[1])), 1, beside);
             }
+        }
+    }
+}
+
+#[test]
+fn places_beside_a_bend_at_ground_level_and_beside_the_feed_are_as_exact_as_any() {
+    for (name, megahertz, places_m) in [
+        ("sand-spit-random-wire", 24.9, &[1.26, 1.27, 1.28, 1.3, 1.33][..]),
+        ("weir-gallery-40-bonded", 7.1, &[0.01, 0.02, 0.05, 2.15, 2.17][..]),
+    ] {
+        let file = model(name);
+        let line = |l: &str| match l {
+            l if l.starts_with("bands") => format!("frequencies = [\"{megahertz} MHz\"]"),
+            l => l.to_string(),
+        };
+        let text = file.lines().map(line).collect::<Vec<_>>().join("\n");
+        let ohm = Complex64::new(5000.0, 0.0);
+        let options = PlaceOptions { candidates: vec![candidate(ohm)], ..PlaceOptions::default() };
+        let out = place(&layout(&text), &[], &options).unwrap();
+        for at_m in places_m {
+            let place = out.places_m.iter().position(|p| (p - at_m).abs() < 1e-9).unwrap();
+            compare(&out, &format!("{text}\n{}", choke("new", *at_m, ohm)), 0, place);
         }
     }
 }
