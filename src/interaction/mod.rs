@@ -1,6 +1,6 @@
 //! The moment-method matrix at one frequency over one earth, and its factorisation.
 //!
-//! Takes a [`Mesh`] and a frequency; gives a [`Factored`] matrix. Mixed-potential electric-field integral equation, Galerkin,
+//! Takes a [`crate::mesh::Mesh`] and a frequency; gives a [`Factored`] matrix. Mixed-potential electric-field integral equation, Galerkin,
 //! e^{+jωt}: for currents f, g on the conductors
 //! Z = jωμ0/4π ∬ f·K·g + 1/(jωε0 4π) ∬ f′ K_Φ g′ + ∫ z_i f g (metal) + 1/(jωε0 4π) ∬ (1/ε_jacket − 1/ε_medium) f′ (K_aa − K_ab) g′ (jacket).
 //!

@@ -10,6 +10,9 @@ use crate::outcome::cut::LengthToAvoid;
 /// A peak stands out by this factor over the lowest value between it and the next higher one (or the end of the range).
 const PROMINENCE: f64 = 1.2;
 
+/// Voltage at the radio below which no peak matters, V: the source voltage of IEC 61000-4-6 test level 2 (from memory).
+const LEAST_VOLTAGE_V: f64 = 3.0;
+
 /// A quantity that can peak, with the limit above which a peak matters.
 struct Watched {
     name: &'static str,
@@ -17,12 +20,14 @@ struct Watched {
     limit: f64,
 }
 
-/// All peaks beyond their limits, along the first length; with two lengths, those no choice of the second can mend.
-pub(super) fn resonances(scan: &Scan, grid: &Grid, first: &Axis) -> Vec<LengthToAvoid> {
+/// All peaks beyond their limits, along the first length, outside the window that is recommended; with two lengths, those no choice of
+/// the second can mend.
+pub(super) fn resonances(scan: &Scan, grid: &Grid, first: &Axis, window_m: Option<[f64; 2]>) -> Vec<LengthToAvoid> {
+    let outside = |x: f64| window_m.is_none_or(|w| x < w[0] - 1e-9 || x > w[1] + 1e-9);
     let limits = scan.nominal().limits;
     let watched = [
         Watched { name: "entry_current_a", read: |r| r.entry_current_a, limit: limits.entry_current_a },
-        Watched { name: "end_voltage_v", read: |r| r.end_voltage_v.unwrap_or(0.0), limit: 0.0 },
+        Watched { name: "end_voltage_v", read: |r| r.end_voltage_v.unwrap_or(0.0), limit: LEAST_VOLTAGE_V },
         Watched { name: "swr", read: |r| r.swr, limit: limits.swr },
     ];
     let mut out = Vec::new();
@@ -32,7 +37,7 @@ pub(super) fn resonances(scan: &Scan, grid: &Grid, first: &Axis) -> Vec<LengthTo
                 let least =
                     |l: usize| (0..grid.seconds).map(|s| (w.read)(grid.at(v, f, l, s))).fold(f64::INFINITY, f64::min);
                 let curve: Vec<f64> = (0..grid.lengths).map(least).collect();
-                out.extend(peaks(&first.lengths_m, &curve).into_iter().filter(|p| p.1 > w.limit).map(
+                out.extend(peaks(&first.lengths_m, &curve).into_iter().filter(|p| p.1 > w.limit && outside(p.0)).map(
                     |(length_m, value)| LengthToAvoid {
                         frequency_hz,
                         variant: variant.clone(),

@@ -23,13 +23,48 @@ pub(super) struct Judged {
     pub(super) picks: Vec<CutPick>,
 }
 
-/// Which limits can be kept by a length at all.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+/// What lengths are compared by.
+#[derive(Debug, Clone, Copy)]
 enum Judging {
-    /// Both.
-    All,
-    /// No length keeps the current, so lengths are judged by the match.
-    MatchAlone,
+    /// The limits: some length keeps them.
+    Limits,
+    /// What a length reaches at best where that is above the limit, in the order of [`limited`]: none keeps them all, and what none can
+    /// keep must not choose alone.
+    Reachable([f64; 3]),
+}
+
+impl Judging {
+    /// By the limits if any of these combinations keeps them.
+    fn of(scan: &Scan, grid: &Grid) -> Self {
+        let pairs = || (0..grid.lengths).flat_map(|l| (0..grid.seconds).map(move |s| (l, s)));
+        let ratios: Vec<[f64; 3]> = pairs().map(|pair| ratios(scan, grid, pair)).collect();
+        if ratios.iter().any(|r| r.iter().all(|x| *x <= 1.0)) {
+            return Self::Limits;
+        }
+        Self::Reachable(std::array::from_fn(|q| ratios.iter().map(|r| r[q]).fold(f64::INFINITY, f64::min).max(1.0)))
+    }
+
+    /// How far a combination is from what it is judged by: the largest ratio against the limits, or the 4-norm of all against what
+    /// can be reached, so that the furthest leads and the others decide between likes.
+    fn score(self, ratios: [f64; 3]) -> f64 {
+        match self {
+            Self::Limits => ratios.into_iter().fold(0.0, f64::max),
+            Self::Reachable(best) => ratios.iter().zip(best).map(|(r, b)| (r / b).powi(4)).sum::<f64>().powf(0.25),
+        }
+    }
+}
+
+/// The worst of every limited quantity over its limit, for one combination of lengths.
+fn ratios(scan: &Scan, grid: &Grid, (l, s): (usize, usize)) -> [f64; 3] {
+    let mut out = [0.0; 3];
+    for v in 0..grid.variants {
+        for f in 0..grid.frequencies {
+            for (worst, (_, value, limit)) in out.iter_mut().zip(limited(scan, grid.at(v, f, l, s))) {
+                *worst = f64::max(*worst, value / limit);
+            }
+        }
+    }
+    out
 }
 
 /// The quantities with limits at one reading: name, value, limit.
@@ -43,12 +78,11 @@ fn limited(scan: &Scan, r: &Reading) -> [(&'static str, f64, f64); 3] {
 }
 
 /// The worst case of one combination of lengths: largest value over its limit.
-fn worst(scan: &Scan, grid: &Grid, (l, s): (usize, usize), judging: Judging) -> (f64, WorstCase) {
+fn worst(scan: &Scan, grid: &Grid, (l, s): (usize, usize)) -> (f64, WorstCase) {
     let mut out: Option<(f64, WorstCase)> = None;
     for (v, variant) in scan.list.iter().enumerate() {
         for (f, &frequency_hz) in scan.frequencies_hz.iter().enumerate() {
-            let count = if judging == Judging::All { 3 } else { 1 };
-            for (quantity, value, limit) in limited(scan, grid.at(v, f, l, s)).into_iter().take(count) {
+            for (quantity, value, limit) in limited(scan, grid.at(v, f, l, s)) {
                 let ratio = value / limit;
                 if out.as_ref().is_none_or(|o| ratio > o.0) {
                     let variant = variant.name.clone();
@@ -79,7 +113,7 @@ struct Scores {
 impl Scores {
     fn of(scan: &Scan, grid: &Grid, judging: Judging) -> Self {
         let best = |l: usize| {
-            let all = (0..grid.seconds).map(|s| (worst(scan, grid, (l, s), judging).0, s));
+            let all = (0..grid.seconds).map(|s| (judging.score(ratios(scan, grid, (l, s))), s));
             all.min_by(|a, b| a.0.total_cmp(&b.0)).unwrap_or((f64::INFINITY, 0))
         };
         let (ratio, second) = (0..grid.lengths).map(best).unzip();
@@ -123,13 +157,12 @@ impl Scores {
 
 /// Judge a scan.
 pub(super) fn judge(scan: &Scan, grid: &Grid, first: &Axis, second: Option<&Axis>) -> Judged {
-    let all = Scores::of(scan, grid, Judging::All);
-    let kept = all.ratio.iter().any(|r| *r <= 1.0);
-    let (judging, scores) =
-        if kept { (Judging::All, all) } else { (Judging::MatchAlone, Scores::of(scan, grid, Judging::MatchAlone)) };
+    let judging = Judging::of(scan, grid);
+    let kept = matches!(judging, Judging::Limits);
+    let scores = Scores::of(scan, grid, judging);
     let mut found: Vec<(usize, (usize, usize))> =
         scores.runs(1.0).into_iter().map(|run| (scores.best(run), run)).collect();
-    if found.is_empty() {
+    if !kept {
         let around = |l: usize| {
             let runs = scores.runs(SLACK * scores.ratio[l]);
             (l, runs.into_iter().find(|run| (run.0..=run.1).contains(&l)).unwrap_or((l, l)))
@@ -140,14 +173,13 @@ pub(super) fn judge(scan: &Scan, grid: &Grid, first: &Axis, second: Option<&Axis
     let picks: Vec<CutPick> = found
         .iter()
         .map(|&(l, run)| {
-            let worst_case = worst(scan, grid, (l, scores.second[l]), Judging::All).1;
-            let judged_case = worst(scan, grid, (l, scores.second[l]), judging).1;
+            let worst_case = worst(scan, grid, (l, scores.second[l])).1;
             let window_m = [first.lengths_m[run.0], first.lengths_m[run.1]];
             CutPick {
                 length_m: first.lengths_m[l],
                 second_length_m: second.map(|s| s.lengths_m[scores.second[l]]),
                 window_m,
-                why: reason(scan, window_m, &judged_case),
+                why: reason(scan, window_m, &worst_case),
                 worst: worst_case,
             }
         })
@@ -163,7 +195,8 @@ pub(super) fn judge(scan: &Scan, grid: &Grid, first: &Axis, second: Option<&Axis
         (true, true) => CutVerdict::Keep,
         (true, false) => CutVerdict::Cut,
     };
-    let why = sentence(scan, first, verdict, &picks, (grid, scores.ratio.iter().any(|r| *r <= 1.0)));
+    let matched = found.first().is_some_and(|p| ratios(scan, grid, (p.0, scores.second[p.0]))[0] <= 1.0);
+    let why = sentence(scan, first, verdict, &picks, (grid, matched));
     Judged { verdict, why, picks }
 }
 
@@ -229,11 +262,10 @@ fn sentence(
             at(scan, &pick.worst)
         ),
         CutVerdict::NoLength if matched => format!(
-            "no length keeps the current off the shack (at {} it is still {}): that takes a choke or a counterpoise. The match \
-             alone holds{over} from {}",
-            metres(pick.length_m),
-            at(scan, &pick.worst),
-            span(pick.window_m)
+            "no length keeps the current off the shack: that takes a choke or a counterpoise. At {}{with} the match holds{over}, and the \
+             current is as low as goes with that: {}",
+            metres_and_feet(pick.length_m),
+            at(scan, &pick.worst)
         ),
         CutVerdict::NoLength => format!(
             "no length keeps the limits{over}; the least bad is {}{with}, with {}",
@@ -258,14 +290,13 @@ pub(super) fn stock(
     let lengths_m: Vec<f64> = stock.iter().map(|s| s.1).collect();
     let second = second_m.map(|s| [s]);
     let grid = scan.grid(&lengths_m, second.as_ref().map(<[f64; 1]>::as_slice))?;
-    let by_current = (0..stock.len()).any(|l| worst(scan, &grid, (l, 0), Judging::All).0 <= 1.0);
-    let judging = if by_current { Judging::All } else { Judging::MatchAlone };
+    let judging = Judging::of(scan, &grid);
     let mut ranked: Vec<(f64, StockOutcome)> = stock
         .iter()
         .enumerate()
         .map(|(l, (name, length_m))| {
-            let (ratio, worst_case) = worst(scan, &grid, (l, 0), Judging::All);
-            let rank = worst(scan, &grid, (l, 0), judging).0;
+            let (ratio, worst_case) = worst(scan, &grid, (l, 0));
+            let rank = judging.score(ratios(scan, &grid, (l, 0)));
             (
                 rank,
                 StockOutcome {

@@ -182,7 +182,7 @@ fn outcome(
         bands: layout.operation.frequencies.iter().map(|f| f.band.clone()).collect(),
         moving_end: first.target.moving_end(layout),
         present_length_m: first.present_m,
-        lengths_to_avoid: avoid::resonances(scan, grid, &first),
+        lengths_to_avoid: avoid::resonances(scan, grid, &first, judged.picks.first().map(|p| p.window_m)),
         entry_current_a: of(|r| r.entry_current_a),
         entry_voltage_v: volts(|r| r.entry_voltage_v),
         end_voltage_v: volts(|r| r.end_voltage_v),

@@ -5,6 +5,10 @@
 //! the shield at the radio, which a choke may not raise above the worst the station shows without it. So an open end, where the
 //! current is nothing by definition, cannot pass as a quiet one.
 //!
+//! Which of two places is better goes by all four together: the 4-norm of their worst ratios, so that the furthest from its limit leads
+//! and the others decide between likes. A standing-wave ratio that the station has without a choke too is not held against a place there: no
+//! choke mends the match, and the currents must not be chosen by it.
+//!
 //! The default of 20 mA is what test level 2 of IEC 61000-4-6 drives through its common-mode impedance: 3 V over 150 ohm (values from
 //! memory). A standing-wave ratio of 2 is common practice.
 
@@ -20,6 +24,8 @@ const LEAST_VOLTAGE_V: f64 = 3.0;
 const VOLTAGE_SLACK: f64 = 1.05;
 /// Heat in the choke worth naming, as a share of the power.
 pub(super) const LARGE_HEAT: f64 = 0.05;
+/// A standing-wave ratio this much above the one without a choke is held against a choke, whatever the limit.
+const SWR_SLACK: f64 = 1.1;
 /// With no place within the limits, the worst case may get worse by this factor inside the window of the least bad.
 const WINDOW_WORSE: f64 = 1.1;
 
@@ -34,6 +40,8 @@ pub(super) struct Case {
     quantity: usize,
     value: f64,
     limit: f64,
+    /// What the value is held against where two places are compared.
+    against: f64,
 }
 
 impl Case {
@@ -60,6 +68,8 @@ pub(super) struct Judged {
     /// Largest share of the power that the choke turns into heat.
     pub(super) heat: f64,
     pub(super) worst: Case,
+    /// Worst ratio of every quantity, as places are compared by them.
+    ratios: [f64; 4],
 }
 
 impl Judged {
@@ -68,15 +78,22 @@ impl Judged {
         for case in cases {
             let beyond = out.map_or(0, |o| o.beyond) + usize::from(case.ratio() > 1.0);
             let worst = out.map(|o| o.worst).filter(|w| w.ratio() >= case.ratio()).unwrap_or(case);
-            out = Some(Self { beyond, heat: 0.0, worst });
+            let mut ratios = out.map_or([0.0; 4], |o| o.ratios);
+            ratios[case.quantity] = f64::max(ratios[case.quantity], case.value / case.against);
+            out = Some(Self { beyond, heat: 0.0, worst, ratios });
         }
         out
     }
 
-    /// What keeps its limits comes first. Among what does not, the one whose worst case is the least of its limit beyond it, however many
-    /// cases are; among what does, the one furthest from its limits, and of two alike the cooler.
+    /// The 4-norm of the worst ratios.
+    fn norm(&self) -> f64 {
+        self.ratios.iter().map(|r| r.powi(4)).sum::<f64>().powf(0.25)
+    }
+
+    /// What keeps its limits comes first. Then the least of all four quantities together, the furthest beyond its limit leading, however many
+    /// cases are; among what keeps them, of two alike the cooler.
     pub(super) fn better(&self, other: &Self) -> Ordering {
-        let rank = |j: &Self| j.worst.ratio().ln() + if j.keeps() { j.heat } else { 0.0 };
+        let rank = |j: &Self| j.norm().max(f64::MIN_POSITIVE).ln() + if j.keeps() { j.heat } else { 0.0 };
         other.keeps().cmp(&self.keeps()).then(rank(self).total_cmp(&rank(other)))
     }
 
@@ -87,7 +104,7 @@ impl Judged {
 
     /// Whether another place is as good as far as a window goes.
     pub(super) fn window_takes(&self, other: &Self) -> bool {
-        if self.keeps() { other.keeps() } else { other.worst.ratio() <= WINDOW_WORSE * self.worst.ratio() }
+        if self.keeps() { other.keeps() } else { other.norm() <= WINDOW_WORSE * self.norm() }
     }
 }
 
@@ -107,7 +124,9 @@ fn cases<'a>(
     let all = (0..variants).flat_map(move |v| (0..frequencies).flat_map(move |f| (0..4).map(move |q| (v, f, q))));
     all.filter_map(move |(variant, frequency, quantity)| {
         let value = value(variant, frequency, quantity)?;
-        Some(Case { variant, frequency, quantity, value, limit: limits[quantity] })
+        let limit = limits[quantity];
+        let bare = if quantity == 2 { SWR_SLACK * outcome.without.swr[variant][frequency] } else { 0.0 };
+        Some(Case { variant, frequency, quantity, value, limit, against: limit.max(bare) })
     })
 }
 
@@ -325,6 +344,25 @@ mod tests {
         assert!(pick.why.contains("3 of 12 values beyond a limit"), "{}", pick.why);
         assert!(out.why.contains("the current into the shack is at best 24 mA (limit 20 mA) at 21 MHz"), "{}", out.why);
         assert!(!out.why.contains("without a choke"), "{}", out.why);
+    }
+
+    #[test]
+    fn a_match_that_no_choke_mends_does_not_choose_the_place_and_likes_are_told_apart_by_the_rest() {
+        let mut out = outcome([[0.010, 0.012, 0.018, 0.2]; 3]);
+        let swr = |values: [f64; 4]| vec![vec![vec![values.to_vec(); 3]]];
+        // within the limits the match is the same everywhere: the least current is chosen
+        out.swr = swr([1.99, 1.99, 1.99, 1.99]);
+        decide(&mut out);
+        assert_eq!((out.verdict, out.picks[0].at_m), (PlaceVerdict::Place, 1.0));
+        // beyond its limit with and without, and a little better where the current is large
+        out.without.swr = vec![vec![8.7; 3]];
+        out.swr = swr([9.4, 9.4, 8.6, 8.5]);
+        decide(&mut out);
+        assert_eq!((out.verdict, out.picks[0].at_m), (PlaceVerdict::NoPlace, 1.0));
+        // a choke that spoils the match is another matter
+        out.swr = swr([20.0, 20.0, 8.6, 8.5]);
+        decide(&mut out);
+        assert_eq!(out.picks[0].at_m, 3.0);
     }
 
     #[test]
