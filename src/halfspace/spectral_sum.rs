@@ -151,32 +151,37 @@ impl Vectorised for Flush<'_> {
         let (n, width) = (self.columns, LANES * self.columns);
         for (row, bessel) in self.total.chunks_exact_mut(width).zip(self.bessel.chunks_exact(2 * BATCH)) {
             let (first, second) = row.split_at_mut(4 * n);
-            product::<FMA>(first, &bessel[..self.count], self.spectral, width, 0);
-            product::<FMA>(second, &bessel[BATCH..BATCH + self.count], self.spectral, width, 4 * n);
+            add_rows::<FMA>(first, &bessel[..self.count], self.spectral, (width, 0));
+            add_rows::<FMA>(second, &bessel[BATCH..BATCH + self.count], self.spectral, (width, 4 * n));
         }
     }
 }
 
-/// row += Σ bessel[t] · spectral[t·width + from ..].
+/// row += Σ weights[t] · rows[t·stride + from ..].
 #[inline(always)]
-fn product<const FMA: bool>(row: &mut [f64], bessel: &[f64], spectral: &[f64], width: usize, from: usize) {
+pub(super) fn add_rows<const FMA: bool>(
+    row: &mut [f64],
+    weights: &[f64],
+    rows: &[f64],
+    (stride, from): (usize, usize),
+) {
     let n = row.len();
-    let whole = bessel.len() / 4 * 4;
+    let whole = weights.len() / 4 * 4;
     for t in (0..whole).step_by(4) {
-        let (p, q, r, s) = (bessel[t], bessel[t + 1], bessel[t + 2], bessel[t + 3]);
-        let a = &spectral[t * width + from..t * width + from + n];
-        let b = &spectral[(t + 1) * width + from..(t + 1) * width + from + n];
-        let c = &spectral[(t + 2) * width + from..(t + 2) * width + from + n];
-        let d = &spectral[(t + 3) * width + from..(t + 3) * width + from + n];
+        let (p, q, r, s) = (weights[t], weights[t + 1], weights[t + 2], weights[t + 3]);
+        let a = &rows[t * stride + from..t * stride + from + n];
+        let b = &rows[(t + 1) * stride + from..(t + 1) * stride + from + n];
+        let c = &rows[(t + 2) * stride + from..(t + 2) * stride + from + n];
+        let d = &rows[(t + 3) * stride + from..(t + 3) * stride + from + n];
         for k in 0..n {
             let pair = mul_add::<FMA>(p, a[k], row[k]);
             row[k] = mul_add::<FMA>(q, b[k], pair) + mul_add::<FMA>(r, c[k], s * d[k]);
         }
     }
-    for t in whole..bessel.len() {
-        let a = &spectral[t * width + from..t * width + from + n];
+    for t in whole..weights.len() {
+        let a = &rows[t * stride + from..t * stride + from + n];
         for k in 0..n {
-            row[k] = mul_add::<FMA>(bessel[t], a[k], row[k]);
+            row[k] = mul_add::<FMA>(weights[t], a[k], row[k]);
         }
     }
 }

@@ -1,8 +1,8 @@
 //! Chebyshev coefficients over a box of three variables, and their restriction to half of it.
 
 use super::chebyshev::{analysis, restriction};
-use super::spectral_sum::LANES;
-use crate::processor::{Vectorised, mul_add, widest};
+use super::spectral_sum::{LANES, add_rows};
+use crate::processor::{Vectorised, widest};
 
 /// Values or coefficients `[lane][first][second][third]`.
 #[derive(Debug, Clone)]
@@ -149,36 +149,14 @@ impl Vectorised for Along<'_> {
                 turned[p] = matrix[(p % to) * from + p / to];
             }
             for (source, target) in source.chunks_exact(from).zip(target.chunks_exact_mut(to)) {
-                combine::<FMA>(target, source, &turned);
+                add_rows::<FMA>(target, source, &turned, (to, 0));
             }
             return;
         }
         for (source, target) in source.chunks_exact(from * inner).zip(target.chunks_exact_mut(to * inner)) {
             for (row, weights) in target.chunks_exact_mut(inner).zip(matrix.chunks_exact(from)) {
-                combine::<FMA>(row, weights, source);
+                add_rows::<FMA>(row, weights, source, (inner, 0));
             }
-        }
-    }
-}
-
-/// row += Σ weights[i] · (row i of `rows`).
-#[inline(always)]
-fn combine<const FMA: bool>(row: &mut [f64], weights: &[f64], rows: &[f64]) {
-    let n = row.len();
-    let whole = weights.len() / 4 * 4;
-    for i in (0..whole).step_by(4) {
-        let w = &weights[i..i + 4];
-        let r = &rows[i * n..(i + 4) * n];
-        let (a, b, c, d) = (&r[..n], &r[n..2 * n], &r[2 * n..3 * n], &r[3 * n..4 * n]);
-        for k in 0..n {
-            let pair = mul_add::<FMA>(w[0], a[k], row[k]);
-            row[k] = mul_add::<FMA>(w[1], b[k], pair) + mul_add::<FMA>(w[2], c[k], w[3] * d[k]);
-        }
-    }
-    for i in whole..weights.len() {
-        let r = &rows[i * n..(i + 1) * n];
-        for k in 0..n {
-            row[k] = mul_add::<FMA>(weights[i], r[k], row[k]);
         }
     }
 }

@@ -6,13 +6,14 @@
 use super::assembly::add_metal_loss;
 use super::block::SIDE;
 use super::fill::{Interaction, Matrix, UnknownMap, region_of};
+use super::group::goes_on;
 use super::kernel::{LINE_POINTS, LineMoments, MOST_POINTS, line_moments};
 use super::lagrange::stretch_weights;
 use super::line::{Line, Tubes, clearance, tubes};
 use super::pairs::{Statics, far_points};
 use super::probe::{Spot, slope, value_weights};
 use super::quadrature::{gauss, legendre};
-use super::rest::{Kernels, points as rest_points};
+use super::rest::{Kernels, moments, points as rest_points};
 use super::surroundings::{Family, SoilRest, Surroundings};
 use crate::halfspace::Region;
 use crate::mesh::{Element, MAX_DEGREE, Mesh};
@@ -415,7 +416,7 @@ impl Sight<'_> {
         let rule = gauss(NODES);
         for (xi, weight) in points.nodes.iter().zip(&points.weights) {
             let here = e.at(*xi);
-            let left = legendre(*xi).map(|x| 0.5 * weight * x);
+            let left = moments(points.nodes.len(), *xi, *weight);
             for q in 0..NODES {
                 let (c, p) = kernels.at::<FMA>(soil, here, run.at(rule.nodes[q]));
                 for a in 0..SIDE {
@@ -443,13 +444,7 @@ fn add_turned<const FMA: bool>(factor: Complex64, from: &AtNodes, to: &mut AtNod
 fn runs(mesh: &Mesh, new_ids: &[usize], reach_m: impl Fn(usize, f64) -> f64) -> Vec<Run> {
     let mut groups: Vec<Vec<usize>> = Vec::new();
     for &k in new_ids {
-        let follows = |last: &usize| {
-            let (d, e) = (&mesh.elements[*last], &mesh.elements[k]);
-            *last + 1 == k
-                && d.conductor == e.conductor
-                && d.tangent.dot(&e.tangent) > 1.0 - 1e-12
-                && d.below == e.below
-        };
+        let follows = |last: &usize| goes_on(&mesh.elements[*last], &mesh.elements[k]);
         match groups.last_mut() {
             Some(group) if group.last().is_some_and(follows) => group.push(k),
             _ => groups.push(vec![k]),

@@ -144,7 +144,7 @@ impl Groups {
 }
 
 /// The second element goes straight on from the first.
-fn goes_on(d: &Element, e: &Element) -> bool {
+pub(super) fn goes_on(d: &Element, e: &Element) -> bool {
     d.conductor == e.conductor
         && d.below == e.below
         && (d.to_m - e.from_m).abs() < 1e-9

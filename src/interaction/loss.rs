@@ -4,7 +4,7 @@
 //! [`crate::field::FarField::downward_w`].
 
 use super::fill::{Interaction, Legendre, derive};
-use super::kernel::{PointPair, pair_moments};
+use super::kernel::pair_moments;
 use super::quadrature::{gauss, legendre};
 use super::rest::points;
 use super::surroundings::{SoilRest, Surroundings};
@@ -64,18 +64,7 @@ impl Interaction {
                 let area = e.length_m * f.length_m;
                 image[0].statics[index as usize].inverse.map(|row| row.map(|x| x / area))
             }
-            None => {
-                let (n, m) = (usize::from(pair.points.0), usize::from(pair.points.1));
-                let points = PointPair {
-                    observers: &self.nodes.at[pair.one][n],
-                    sources: &nodes.at[pair.two][m],
-                    left: &self.nodes.weighted[n],
-                    right: &self.nodes.weighted[m],
-                    offset_m2: pair.offset_m2,
-                    rest_only: false,
-                };
-                pair_moments(&points, 0.0, 0.0).re
-            }
+            None => pair_moments(&self.points(pair, nodes), 0.0, 0.0).re,
         };
         let mut sum = 0.0;
         for a in 0..=MAX_DEGREE {

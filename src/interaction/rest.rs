@@ -79,7 +79,7 @@ pub(super) fn add<const FMA: bool>(e: &Element, f: &Element, soil: &SoilRest, re
 
 /// Weight times P_0..P_3 at a point. A rule cannot tell moments of as high a degree as it has points: left out rather than wrong.
 #[inline(always)]
-fn moments(points: usize, xi: f64, weight: f64) -> [f64; SIDE] {
+pub(super) fn moments(points: usize, xi: f64, weight: f64) -> [f64; SIDE] {
     let p = legendre(xi);
     std::array::from_fn(|a| if a < points { 0.5 * weight * p[a] } else { 0.0 })
 }

@@ -35,6 +35,20 @@ impl<V: Visit, W: Visit> Visit for (V, W) {
 }
 
 impl Interaction {
+    /// Quadrature points of a pair; of a near one only the rest beyond its static moments is wanted.
+    #[inline(always)]
+    pub(super) fn points<'a>(&'a self, pair: &Pair, sources: &'a Nodes) -> PointPair<'a> {
+        let (n, m) = (usize::from(pair.points.0), usize::from(pair.points.1));
+        PointPair {
+            observers: &self.nodes.at[pair.one][n],
+            sources: &sources.at[pair.two][m],
+            left: &self.nodes.weighted[n],
+            right: &self.nodes.weighted[m],
+            offset_m2: pair.offset_m2,
+            rest_only: pair.near.is_some(),
+        }
+    }
+
     /// Hand every pair with its kernels, all images included, to a visitor.
     pub(super) fn walk(&self, earth: &Surroundings, visit: &mut impl Visit) {
         self.walk_some(earth, None, visit);
@@ -125,15 +139,7 @@ fn add_family<const FMA: bool>(
 ) {
     let elements = &interaction.mesh.elements;
     let (e, f) = (&elements[pair.one], &elements[pair.two]);
-    let (n, m) = (usize::from(pair.points.0), usize::from(pair.points.1));
-    let points = PointPair {
-        observers: &interaction.nodes.at[pair.one][n],
-        sources: &sources.at[pair.two][m],
-        left: &interaction.nodes.weighted[n],
-        right: &interaction.nodes.weighted[m],
-        offset_m2: pair.offset_m2,
-        rest_only: pair.near.is_some(),
-    };
+    let points = interaction.points(pair, sources);
     let k = family.k;
     let mut block = pair_block::<FMA>(&points, k.re, -k.im);
     if let Some(index) = pair.near {

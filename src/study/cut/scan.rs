@@ -112,11 +112,8 @@ impl<'a> Scan<'a> {
             .zip(&extents)
             .map(|((name, station), extent)| {
                 let layout = Layout::place(station).map_err(|faults| refused(station, faults))?;
-                let earth = frequencies_hz.par_iter().map(|&f| At::new(f, &layout, extent, watch)).collect::<Result<
-                    Vec<_>,
-                    CutFailure,
-                >>(
-                )?;
+                let at = |f: &f64| At::new(*f, &layout, extent, watch);
+                let earth = frequencies_hz.par_iter().map(at).collect::<Result<Vec<_>, CutFailure>>()?;
                 Ok(Variant { name: name.clone(), station: station.clone(), earth })
             })
             .collect::<Result<Vec<_>, CutFailure>>()?;
