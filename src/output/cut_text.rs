@@ -1,6 +1,6 @@
 //! What `cut` says: the length with its window, the runner-up, the lengths to avoid, what can be bought, how to trim.
 
-use super::place_text::{warnings, worst_words};
+use super::place_text::{holds, warnings, worst_line, worst_words};
 use super::{Units, cautions, figures};
 use crate::outcome::cut::{CutOutcome, CutPick, CutVerdict, LengthToAvoid, TrimOutcome};
 
@@ -70,15 +70,16 @@ fn choice(cut: &CutOutcome, pick: &CutPick, units: Units) -> String {
         _ => String::new(),
     };
     format!(
-        "{} to {}{second} (anywhere from {} holds)",
+        "{} to {}{second} (anywhere from {} {})",
         cut.conductor,
         figures::distance(pick.length_m, units),
-        figures::distances(from, to, units)
+        figures::distances(from, to, units),
+        holds(&pick.worst)
     )
 }
 
 fn details(pick: &CutPick) -> String {
-    format!("  why: {}\n  nearest to a limit: {}\n", pick.why, worst_words(&pick.worst))
+    format!("  why: {}\n  {}\n", pick.why, worst_line(&pick.worst))
 }
 
 /// The lengths to avoid in order of length, each said once with everything that speaks against it.

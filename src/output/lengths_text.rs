@@ -1,6 +1,6 @@
 //! What `place` says when the length of the coax was free too: the pair of length and place, its windows, the runner-up.
 
-use super::place_text::worst_words;
+use super::place_text::worst_line;
 use super::{Units, figures};
 use crate::outcome::joint::{LengthPick, LengthsOutcome};
 use crate::outcome::place::PlaceVerdict;
@@ -64,7 +64,7 @@ fn choice(pick: &LengthPick, units: Units) -> String {
 }
 
 fn details(pick: &LengthPick) -> String {
-    format!("  why: {}\n  nearest to a limit: {}\n", pick.why, worst_words(&pick.worst))
+    format!("  why: {}\n  {}\n", pick.why, worst_line(&pick.worst))
 }
 
 #[cfg(test)]

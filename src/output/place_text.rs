@@ -66,11 +66,23 @@ fn sentence(text: &str) -> &str {
 fn choice(pick: &PlacePick, units: Units) -> String {
     let [from, to] = pick.window_m;
     format!(
-        "choke \"{}\" at {} from the feed point (anywhere from {} holds)",
+        "choke \"{}\" at {} from the feed point (anywhere from {} {})",
         pick.choke,
         figures::distance(pick.at_m, units),
-        figures::distances(from, to, units)
+        figures::distances(from, to, units),
+        holds(&pick.worst)
     )
+}
+
+/// How a choice stands: how near its worst is to a limit, or how far beyond.
+pub(super) fn worst_line(worst: &WorstCase) -> String {
+    let how = if worst.value > worst.limit { "furthest beyond a limit" } else { "nearest to a limit" };
+    format!("{how}: {}", worst_words(worst))
+}
+
+/// "holds", or, where its worst is beyond a limit, "is about as good".
+pub(super) fn holds(worst: &WorstCase) -> &'static str {
+    if worst.value > worst.limit { "is about as good" } else { "holds" }
 }
 
 /// "current into the shack 82 mA of 100 mA at 7 MHz, wet".
@@ -119,7 +131,7 @@ fn case(place: &PlaceOutcome, variant: usize, frequency: usize) -> String {
 }
 
 fn details(place: &PlaceOutcome, pick: &PlacePick, units: Units) -> String {
-    let mut lines = vec![format!("  why: {}", pick.why), format!("  nearest to a limit: {}", worst_words(&pick.worst))];
+    let mut lines = vec![format!("  why: {}", pick.why), format!("  {}", worst_line(&pick.worst))];
     if let Some((watts, variant, frequency)) = largest(place, &place.choke_w, pick) {
         let share = watts / place.power_w;
         let large =

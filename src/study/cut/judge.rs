@@ -311,3 +311,22 @@ pub(super) fn stock(
     ranked.sort_by(|a, b| a.0.total_cmp(&b.0));
     Ok(ranked.into_iter().map(|r| r.1).collect())
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn what_no_length_can_keep_does_not_choose_alone() {
+        // SWR 16.4 with 487 mA against 16.6 with 152 mA, limits 2 and 20 mA: the match differs by nothing, the current threefold
+        let (loud, quiet) = ([8.2, 24.35, 20.0], [8.3, 7.6, 6.0]);
+        let reachable = Judging::Reachable([8.2, 7.0, 5.8]);
+        assert!(reachable.score(quiet) < reachable.score(loud));
+        // the match by itself would have chosen the other one
+        assert!(quiet[0] > loud[0]);
+        // and a match that some length keeps still counts
+        let spoiled = [40.0, 7.2, 5.9];
+        assert!(reachable.score(quiet) < reachable.score(spoiled));
+        assert_eq!(Judging::Limits.score([0.9, 0.5, 0.7]), 0.9);
+    }
+}
