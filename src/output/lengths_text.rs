@@ -52,9 +52,10 @@ fn choice(pick: &LengthPick, units: Units) -> String {
         width if width < 5e-3 => "no other".to_string(),
         _ => format!("{what} from {}", figures::distances(from, to, units)),
     };
+    let good = if pick.worst.value > pick.worst.limit { "about as good" } else { "that hold" };
     format!(
-        "{} of coax with choke \"{}\" at {} from the feed point (places that hold at that length: {}; lengths that hold with the \
-         choke there: {})",
+        "{} of coax with choke \"{}\" at {} from the feed point (places {good} at that length: {}; lengths {good} with the choke \
+         there: {})",
         figures::distance(pick.length_m, units),
         pick.choke,
         figures::distance(pick.at_m, units),
