@@ -1,4 +1,7 @@
 //! Files written whole or not at all: into a temporary file of the same folder, then renamed.
+//!
+//! A link is followed, so that the file it names is replaced and the link stays. What is no regular file (a pipe, a terminal,
+//! a device) cannot be replaced by one: it gets the finished bytes written straight into it.
 
 use super::OutputError;
 use std::io::Write;
@@ -33,9 +36,46 @@ pub(super) fn remove_unfinished() {
     UNFINISHED.remove();
 }
 
-/// Runs `fill` on a temporary file beside `path`, and puts it in the place of `path` only when everything went well.
+/// Links followed one after another at most, before they are taken for a circle.
+const MOST_LINKS: usize = 40;
+
+/// Where finished bytes go.
+#[derive(Debug, PartialEq)]
+enum Destination {
+    /// A regular file, or nothing yet: replaced as a whole.
+    Replace(PathBuf),
+    /// A pipe, a terminal or a device: written into.
+    Straight,
+}
+
+impl Destination {
+    /// What stands at a path, links followed; a link to what is not there yet leads to where the file will be.
+    fn of(path: &Path) -> Destination {
+        match std::fs::metadata(path) {
+            Ok(there) if !there.is_file() => return Destination::Straight,
+            Ok(_) => return Destination::Replace(path.canonicalize().unwrap_or_else(|_| path.to_path_buf())),
+            Err(_) => {}
+        }
+        let mut at = path.to_path_buf();
+        for _ in 0..MOST_LINKS {
+            let Ok(next) = std::fs::read_link(&at) else { break };
+            // a relative link starts in its own folder; an absolute one takes the place of all of it
+            at = folder_of(&at).join(next);
+        }
+        Destination::Replace(at)
+    }
+}
+
+fn folder_of(path: &Path) -> &Path {
+    match path.parent() {
+        Some(folder) if !folder.as_os_str().is_empty() => folder,
+        _ => Path::new("."),
+    }
+}
+
+/// Runs `fill` on a temporary file, and puts it in the place of `path` only when everything went well.
 ///
-/// The temporary file carries the extension of `path`, because encoders choose by it.
+/// The temporary file stands beside what it will replace and carries the extension of `path`, because encoders choose by it.
 ///
 /// # Errors
 /// What `fill` returns, or [`OutputError::File`] when the folder or the disk refuses.
@@ -44,9 +84,10 @@ pub(super) fn write_with(
     fill: impl FnOnce(&mut NamedTempFile) -> Result<(), OutputError>,
 ) -> Result<(), OutputError> {
     let failed = |source| OutputError::File { path: path.to_path_buf(), source };
-    let folder = match path.parent() {
-        Some(folder) if !folder.as_os_str().is_empty() => folder,
-        _ => Path::new("."),
+    let destination = Destination::of(path);
+    let folder = match &destination {
+        Destination::Replace(file) => folder_of(file).to_path_buf(),
+        Destination::Straight => std::env::temp_dir(),
     };
     let ending = path.extension().map(|e| format!(".{}", e.to_string_lossy())).unwrap_or_default();
     let mut list = UNFINISHED.list();
@@ -55,13 +96,26 @@ pub(super) fn write_with(
     drop(list);
     let filled = fill(&mut file).and_then(|()| {
         file.flush().map_err(failed)?;
-        readable_by_all(file.as_file()).map_err(failed)
+        match &destination {
+            Destination::Replace(old) => take_permissions(file.as_file(), old).map_err(failed),
+            // a pipe may keep it waiting: the file is still on the list meanwhile
+            Destination::Straight => pour(file.path(), path).map_err(failed),
+        }
     });
     let mut list = UNFINISHED.list();
     list.retain(|p| p != file.path());
     filled?;
-    file.persist(path).map_err(|e| failed(e.error))?;
+    if let Destination::Replace(old) = &destination {
+        file.persist(old).map_err(|e| failed(e.error))?;
+    }
     Ok(())
+}
+
+/// Copies a finished file into what is no regular file.
+fn pour(from: &Path, into: &Path) -> std::io::Result<()> {
+    let mut target = std::fs::OpenOptions::new().write(true).open(into)?;
+    std::io::copy(&mut std::fs::File::open(from)?, &mut target)?;
+    target.flush()
 }
 
 /// Writes `bytes` to `path`, whole or not at all.
@@ -74,15 +128,17 @@ pub(super) fn write_bytes(path: &Path, bytes: &[u8]) -> Result<(), OutputError> 
     })
 }
 
-/// Temporary files are made private; a result is a file like any other.
+/// Temporary files are made private; a result is a file like any other, or like the one it replaces.
 #[cfg(unix)]
-fn readable_by_all(file: &std::fs::File) -> std::io::Result<()> {
+fn take_permissions(file: &std::fs::File, old: &Path) -> std::io::Result<()> {
     use std::os::unix::fs::PermissionsExt;
-    file.set_permissions(std::fs::Permissions::from_mode(0o644))
+    let permissions =
+        std::fs::metadata(old).map_or_else(|_| std::fs::Permissions::from_mode(0o644), |there| there.permissions());
+    file.set_permissions(permissions)
 }
 
 #[cfg(not(unix))]
-fn readable_by_all(_file: &std::fs::File) -> std::io::Result<()> {
+fn take_permissions(_file: &std::fs::File, _old: &Path) -> std::io::Result<()> {
     Ok(())
 }
 
@@ -139,5 +195,47 @@ mod tests {
         let path = folder.path().join("nowhere").join("result.csv");
         let message = write_bytes(&path, b"x").unwrap_err().to_string();
         assert!(message.contains("nowhere") && message.contains("folder exists"), "{message}");
+    }
+
+    #[cfg(unix)]
+    #[test]
+    fn links_are_followed_and_stay_links() {
+        use std::os::unix::fs::{PermissionsExt, symlink};
+        let folder = tempfile::tempdir().unwrap();
+        std::fs::create_dir(folder.path().join("kept")).unwrap();
+        let (real, link, early) =
+            (folder.path().join("kept/real.csv"), folder.path().join("link.csv"), folder.path().join("early.csv"));
+        std::fs::write(&real, b"old").unwrap();
+        std::fs::set_permissions(&real, std::fs::Permissions::from_mode(0o600)).unwrap();
+        symlink(&real, &link).unwrap();
+        // nothing there yet, and named from the link's own folder
+        symlink("kept/later.csv", &early).unwrap();
+        for path in [&link, &early] {
+            write_bytes(path, b"new").unwrap();
+            assert!(path.symlink_metadata().unwrap().is_symlink(), "{}", path.display());
+        }
+        assert_eq!(std::fs::read(&real).unwrap(), b"new");
+        assert_eq!(real.metadata().unwrap().permissions().mode() & 0o777, 0o600);
+        assert_eq!(std::fs::read(folder.path().join("kept/later.csv")).unwrap(), b"new");
+    }
+
+    #[cfg(unix)]
+    #[test]
+    fn what_is_no_regular_file_is_written_into_and_stays() {
+        use std::os::unix::fs::FileTypeExt;
+        let folder = tempfile::tempdir().unwrap();
+        let pipe = folder.path().join("pipe.csv");
+        assert!(std::process::Command::new("mkfifo").arg(&pipe).status().unwrap().success());
+        let reader = std::thread::spawn({
+            let pipe = pipe.clone();
+            move || std::fs::read(pipe).unwrap()
+        });
+        write_bytes(&pipe, b"rows").unwrap();
+        // before the reader is waited for: it would wait for ever on a file that took the pipe's place
+        assert!(pipe.symlink_metadata().unwrap().file_type().is_fifo());
+        assert_eq!(reader.join().unwrap(), b"rows");
+        assert_eq!(Destination::of(Path::new("/dev/null")), Destination::Straight);
+        write_bytes(Path::new("/dev/null"), b"rows").unwrap();
+        assert!(write_bytes(folder.path(), b"rows").unwrap_err().to_string().contains("directory"));
     }
 }
