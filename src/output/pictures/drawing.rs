@@ -126,6 +126,8 @@ pub(super) struct Drawing {
     pub(super) width: f64,
     pub(super) height: f64,
     pub(super) marks: Vec<Mark>,
+    /// By how much everything drawn next is moved down, because the heading takes more lines than two.
+    lowered: f64,
 }
 
 /// Width of every picture.
@@ -136,19 +138,33 @@ pub(super) const EM: f64 = 15.0;
 pub(super) const SMALL: f64 = 13.0;
 /// Size of the heading.
 pub(super) const HEADING: f64 = 20.0;
+/// Lines of the heading, and of what stands below it, at most.
+const MOST_LINES: usize = 4;
 
 impl Drawing {
-    /// An empty picture with its heading, and a line below it in smaller text.
+    /// An empty picture with its heading, and smaller text below it. `height` counts one line of each; where they need more,
+    /// the picture grows and all that is drawn later moves down.
     pub(super) fn new(height: f64, heading: &str, below: &str) -> Self {
-        let mut drawing = Self { title: heading.to_string(), width: WIDTH, height, marks: Vec::new() };
-        drawing.write_fitted([30.0, 36.0], HEADING, heading, WIDTH - 60.0);
-        drawing.write_fitted([30.0, 60.0], EM, below, WIDTH - 60.0);
+        let mut drawing = Self { title: heading.to_string(), width: WIDTH, height, marks: Vec::new(), lowered: 0.0 };
+        for (text, em, first, step) in [(heading, HEADING, 36.0, 26.0), (below, EM, 60.0, 20.0)] {
+            let lines = wrapped(text, em, WIDTH - 60.0, MOST_LINES);
+            for (index, line) in lines.iter().enumerate() {
+                drawing.write([30.0, first + step * index as f64], em, Anchor::Start, line.as_str());
+            }
+            let more = step * lines.len().saturating_sub(1) as f64;
+            drawing.lowered += more;
+            drawing.height += more;
+        }
         drawing
+    }
+
+    fn lower(&self, points: &[Spot]) -> Vec<Spot> {
+        points.iter().map(|[x, y]| [*x, y + self.lowered]).collect()
     }
 
     pub(super) fn line(&mut self, points: &[Spot], width: f64, grey: f64) {
         if points.len() > 1 {
-            self.marks.push(Mark::Line { points: points.to_vec(), width, grey });
+            self.marks.push(Mark::Line { points: self.lower(points), width, grey });
         }
     }
 
@@ -163,7 +179,7 @@ impl Drawing {
     }
 
     pub(super) fn fill(&mut self, points: Vec<Spot>, grey: f64) {
-        self.marks.push(Mark::Fill { points, grey });
+        self.marks.push(Mark::Fill { points: self.lower(&points), grey });
     }
 
     pub(super) fn rectangle(&mut self, area: Area, grey: f64) {
@@ -177,7 +193,7 @@ impl Drawing {
     }
 
     pub(super) fn disc(&mut self, centre: Spot, radius: f64, grey: f64) {
-        self.marks.push(Mark::Disc { centre, radius, grey });
+        self.marks.push(Mark::Disc { centre: [centre[0], centre[1] + self.lowered], radius, grey });
     }
 
     /// A circle with a white inside.
@@ -186,19 +202,15 @@ impl Drawing {
         self.disc(centre, radius - width, 1.0);
     }
 
-    pub(super) fn words(&mut self, words: Words) {
+    pub(super) fn words(&mut self, mut words: Words) {
         if !words.text.is_empty() {
+            words.at[1] += self.lowered;
             self.marks.push(Mark::Words(words));
         }
     }
 
     pub(super) fn write(&mut self, at: Spot, em: f64, anchor: Anchor, text: impl Into<String>) {
         self.words(Words::new(at, em, anchor, text));
-    }
-
-    /// Text from the left, cut with an ellipsis where it would be wider than `room`.
-    pub(super) fn write_fitted(&mut self, at: Spot, em: f64, text: &str, room: f64) {
-        self.write(at, em, Anchor::Start, fitted(text, em, room));
     }
 
     /// What is written, with what each text covers.
@@ -227,6 +239,23 @@ pub(super) fn fitted(text: &str, em: f64, room: f64) -> String {
         }
     }
     String::new()
+}
+
+/// The text in lines no wider than `room`, broken between words; what goes beyond `most` lines ends in an ellipsis.
+pub(super) fn wrapped(text: &str, em: f64, room: f64, most: usize) -> Vec<String> {
+    let mut lines: Vec<String> = vec![String::new()];
+    for word in text.split_whitespace() {
+        let full = lines.len() == most;
+        if let Some(line) = lines.last_mut() {
+            let longer = if line.is_empty() { word.to_string() } else { format!("{line} {word}") };
+            if line.is_empty() || full || font::width(&longer, em) <= room {
+                *line = longer;
+            } else {
+                lines.push(word.to_string());
+            }
+        }
+    }
+    lines.iter().map(|line| fitted(line, em, room)).collect()
 }
 
 /// Cuts a polyline into strokes after a pattern.
@@ -281,5 +310,27 @@ mod tests {
         let cut = fitted("a station with a very long title indeed", 15.0, 120.0);
         assert!(cut.ends_with('…') && font::width(&cut, 15.0) <= 120.0, "{cut}");
         assert_eq!(fitted("short", 15.0, 120.0), "short");
+    }
+
+    #[test]
+    fn a_long_heading_takes_lines_and_moves_the_rest_down() {
+        let why = "within limits on all four bands, as written and in all three variants ".repeat(3);
+        let mut drawing = Drawing::new(100.0, "hut", &why);
+        drawing.write([30.0, 90.0], EM, Anchor::Start, "next");
+        drawing.disc([30.0, 95.0], 2.0, 0.0);
+        let texts = drawing.texts();
+        let said: Vec<&str> = texts[1..texts.len() - 1].iter().map(|(text, _)| *text).collect();
+        assert_eq!(said.join(" "), why.trim());
+        assert_eq!(drawing.height, 100.0 + 20.0 * (said.len() - 1) as f64);
+        assert!(said.len() > 1 && texts[said.len()].1.bottom < texts[said.len() + 1].1.top);
+        super::super::checks::texts_are_clear(&drawing);
+    }
+
+    #[test]
+    fn lines_break_between_words_and_only_the_last_is_cut() {
+        let lines = wrapped("one two three four five six seven", 15.0, 80.0, 2);
+        assert_eq!(lines[0], "one two");
+        assert!(lines.len() == 2 && lines[1].starts_with("three") && lines[1].ends_with('…'), "{lines:?}");
+        assert_eq!(wrapped("short", 15.0, 80.0, 2), ["short"]);
     }
 }

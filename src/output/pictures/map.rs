@@ -111,10 +111,18 @@ impl Levels {
     }
 }
 
-/// Shades a frame; where there is no value it is hatched.
+/// Whether a frame has places without a value: between those of the grid, or beyond its first or last column.
+pub(super) fn has_gaps(frame: &Frame, grid: &Grid) -> bool {
+    let beyond = |end: Option<&f64>, edge: f64| end.is_some_and(|x| (frame.x.at(*x) - edge).abs() > 1.0);
+    grid.values.iter().flatten().any(Option::is_none)
+        || beyond(grid.x.first(), frame.x.start)
+        || beyond(grid.x.last(), frame.x.end)
+}
+
+/// Shades a frame; where there is no value it is hatched, because white is a value.
 pub(super) fn shade(drawing: &mut Drawing, frame: &Frame, grid: &Grid, levels: &Levels) {
     let area = frame.area();
-    let holes = grid.values.iter().flatten().any(Option::is_none);
+    let holes = has_gaps(frame, grid);
     if holes {
         hatch(drawing, area);
     }
@@ -315,6 +323,16 @@ pub(super) fn key(drawing: &mut Drawing, at: Spot, levels: &Levels, said: &dyn F
     }
 }
 
+/// What hatching means, the words ending at a spot.
+pub(super) fn key_of_gaps(drawing: &mut Drawing, [right, y]: Spot, said: &str) {
+    let words = Words::centred([right, y], SMALL, Anchor::End, said);
+    let edge = words.extent().left - 10.0;
+    let area = Area::new(edge - 48.0, y - 9.0, edge, y + 9.0);
+    drawing.words(words);
+    hatch(drawing, area);
+    drawing.outline(area, 1.0, 0.0);
+}
+
 /// Cuts a line of values to the frame and draws it: limits and marks over a map.
 pub(super) fn upright(drawing: &mut Drawing, frame: &Frame, x: f64, width: f64) {
     let across = frame.x.at(x);
@@ -366,6 +384,20 @@ mod tests {
         let row = grid.row_at(0.5).unwrap_or_default();
         let levels = Levels { values: vec![10.0], limit: None };
         assert_eq!(runs(&grid.x, &row, &frame(), &levels).last().map(|r| r.2), Some(500.0));
+    }
+
+    #[test]
+    fn a_grid_that_ends_before_its_frame_leaves_a_gap() {
+        let to = |end: f64| Grid::new(vec![0.0, end], vec![0.0, 1.0], vec![vec![Some(1.0), Some(2.0)]; 2]);
+        assert!(has_gaps(&frame(), &to(9.5)) && !has_gaps(&frame(), &to(9.995)));
+        let levels = Levels { values: vec![10.0], limit: Some(10.0) };
+        let mut drawing = Drawing::new(200.0, "", "");
+        shade(&mut drawing, &frame(), &to(9.5), &levels);
+        let hatched = drawing.marks.iter().any(|m| match m {
+            super::super::drawing::Mark::Line { points, .. } => points.iter().all(|[x, _]| *x > 950.0),
+            _ => false,
+        });
+        assert!(hatched, "what lies beyond the grid is hatched");
     }
 
     #[test]

@@ -1,12 +1,12 @@
 //! The choice of choke and place in one picture: every candidate's worst case against place, and the picks in order.
 
 use super::axes::{Frame, Scale};
-use super::drawing::{Anchor, Area, Drawing, EM, PATTERNS, SMALL, Words, fitted};
+use super::drawing::{Anchor, Area, Drawing, EM, PATTERNS, SMALL, Words, fitted, wrapped};
 use super::map;
-use crate::outcome::place::{OverPlace, PlaceOutcome};
-use crate::output::OutputError;
-use crate::output::figures::FEET_PER_METRE;
+use crate::outcome::place::{OverPlace, PlaceOutcome, PlacePick};
+use crate::output::figures;
 use crate::output::place_text::worst_words;
+use crate::output::{OutputError, Units};
 
 /// Left and right edge of the boxes.
 const EDGES: [f64; 2] = [104.0, 1164.0];
@@ -14,6 +14,10 @@ const EDGES: [f64; 2] = [104.0, 1164.0];
 const BOXES: [[f64; 2]; 3] = [[176.0, 366.0], [404.0, 564.0], [602.0, 762.0]];
 /// Rows of the list of picks at most.
 const PICKS: usize = 5;
+/// Where the columns of the list begin, and the room of each.
+const COLUMNS: [(f64, f64); 5] = [(0.0, 30.0), (34.0, 136.0), (174.0, 150.0), (328.0, 280.0), (614.0, 446.0)];
+/// Between two lines of the list.
+const LINE: f64 = 22.0;
 
 /// The worst over variants and frequencies at each place, for one choke.
 pub(super) fn worst_line(values: &OverPlace<f64>, choke: usize, places: usize) -> Vec<f64> {
@@ -39,8 +43,9 @@ pub(super) fn drawing(place: &PlaceOutcome) -> Result<Drawing, OutputError> {
             needs: "candidates and places".into(),
         });
     }
-    let rows = place.picks.len().min(PICKS);
-    let mut drawing = Drawing::new(864.0 + 34.0 + 24.0 * rows as f64, &place.station, &place.why);
+    let rows: Vec<[Vec<String>; 5]> = place.picks.iter().take(PICKS).enumerate().map(row).collect();
+    let lines = rows.iter().map(lines_of).sum::<usize>();
+    let mut drawing = Drawing::new(898.0 + LINE * lines as f64, &place.station, &place.why);
     let x = Scale::linear([0.0, place.coax_length_m], EDGES[0], EDGES[1]);
     let lines = |values: &OverPlace<f64>| -> Vec<Vec<f64>> {
         (0..place.chokes.len().min(PATTERNS.len())).map(|c| worst_line(values, c, place.places_m.len())).collect()
@@ -70,7 +75,7 @@ pub(super) fn drawing(place: &PlaceOutcome) -> Result<Drawing, OutputError> {
     let last = Frame { x, y };
     last.below(&mut drawing, "place of the choke: distance along the coax from the feed point, m", 12, true);
     Frame { x, y: Scale::linear([0.0, 1.0], BOXES[0][1], BOXES[0][0]) }.feet_above(&mut drawing, "feet", 12);
-    list(&mut drawing, place, BOXES[2][1] + 80.0);
+    list(&mut drawing, &rows, BOXES[2][1] + 80.0);
     Ok(drawing)
 }
 
@@ -104,8 +109,16 @@ fn key(drawing: &mut Drawing, place: &PlaceOutcome) {
     let x = EDGES[0] + room * place.chokes.len().min(PATTERNS.len()) as f64;
     drawing.line(&[[x, y], [x + 44.0, y]], 3.0, 0.6);
     drawing.words(Words::centred([x + 50.0, y], SMALL, Anchor::Start, fitted("no choke", SMALL, room - 52.0)));
-    let note = "Worst over all frequencies and variants; grey: window of the pick, ring: the pick; bold: limit; dashed upright: entry";
-    drawing.words(Words::centred([EDGES[0], y + 22.0], SMALL, Anchor::Start, note));
+    let reachable = if place.reachable_m.is_empty() { "" } else { "; bar below a box: within reach" };
+    let note = format!(
+        "Worst over all frequencies and variants; grey: window of the pick, ring: the pick; bold: limit; dashed upright: entry{reachable}"
+    );
+    drawing.words(Words::centred(
+        [EDGES[0], y + 22.0],
+        SMALL,
+        Anchor::Start,
+        fitted(&note, SMALL, EDGES[1] - EDGES[0]),
+    ));
 }
 
 fn panel(
@@ -147,6 +160,15 @@ fn panel(
         }
     }
     frame.outline(drawing);
+    reachable_bar(drawing, place, frame.x, area.bottom + 1.0);
+}
+
+/// The stretches of coax a person can get at as bars along it; nothing where all of it can be reached.
+pub(super) fn reachable_bar(drawing: &mut Drawing, place: &PlaceOutcome, x: Scale, top: f64) {
+    for stretch in &place.reachable_m {
+        let [from, to] = stretch.map(|m| x.at(m).clamp(x.start, x.end));
+        drawing.rectangle(Area::new(from, top, to.max(from + 1.0), top + 4.0), 0.45);
+    }
 }
 
 /// Index of the place nearest to a distance.
@@ -156,28 +178,40 @@ pub(super) fn nearest(places_m: &[f64], at_m: f64) -> usize {
     found.map_or(0, |(index, _)| index)
 }
 
+/// The cells of a pick, each in as many lines as its column needs.
+fn row((index, pick): (usize, &PlacePick)) -> [Vec<String>; 5] {
+    let [from, to] = pick.window_m;
+    let both = |say: &dyn Fn(Units) -> String| format!("{} ({})", say(Units::Metres), say(Units::Feet));
+    let cells = [
+        format!("{}", index + 1),
+        pick.choke.clone(),
+        both(&|units| figures::distance(pick.at_m, units)),
+        both(&|units| figures::distances(from, to, units)),
+        worst_words(&pick.worst),
+    ];
+    let mut rooms = COLUMNS.iter().map(|c| c.1);
+    cells.map(|cell| wrapped(&cell, EM, rooms.next().unwrap_or(EM), 4))
+}
+
+fn lines_of(row: &[Vec<String>; 5]) -> usize {
+    row.iter().map(Vec::len).max().unwrap_or(1)
+}
+
 /// The picks in order, with their windows and what comes closest to its limit.
-fn list(drawing: &mut Drawing, place: &PlaceOutcome, top: f64) {
-    let columns = [EDGES[0], EDGES[0] + 40.0, EDGES[0] + 220.0, EDGES[0] + 420.0, EDGES[0] + 640.0];
+fn list(drawing: &mut Drawing, rows: &[[Vec<String>; 5]], top: f64) {
     let heads = ["", "choke", "at", "window", "nearest to its limit, or furthest beyond it"];
-    for (x, head) in columns.into_iter().zip(heads) {
-        drawing.write([x, top], SMALL, Anchor::Start, head);
+    for ((x, _), head) in COLUMNS.into_iter().zip(heads) {
+        drawing.write([EDGES[0] + x, top], SMALL, Anchor::Start, head);
     }
     drawing.line(&[[EDGES[0], top + 7.0], [EDGES[1], top + 7.0]], 0.8, 0.3);
-    for (index, pick) in place.picks.iter().take(PICKS).enumerate() {
-        let y = top + 28.0 + 24.0 * index as f64;
-        let [from, to] = pick.window_m;
-        let cells = [
-            format!("{}", index + 1),
-            pick.choke.clone(),
-            format!("{:.2} m ({:.1} ft)", pick.at_m, pick.at_m * FEET_PER_METRE),
-            format!("{from:.2} to {to:.2} m"),
-            worst_words(&pick.worst),
-        ];
-        let rooms = [34.0, 172.0, 192.0, 212.0, 424.0];
-        for ((x, cell), room) in columns.into_iter().zip(cells).zip(rooms) {
-            drawing.write([x, y], EM, Anchor::Start, fitted(&cell, EM, room));
+    let mut y = top + 28.0;
+    for row in rows {
+        for ((x, _), cell) in COLUMNS.into_iter().zip(row) {
+            for (index, line) in cell.iter().enumerate() {
+                drawing.write([EDGES[0] + x, y + LINE * index as f64], EM, Anchor::Start, line.as_str());
+            }
         }
+        y += LINE * lines_of(row) as f64;
     }
 }
 
@@ -198,6 +232,24 @@ mod tests {
                 .iter()
                 .any(|(text, _)| text.starts_with("current into the shack 82 mA of 100 mA at 7 MHz, wet"))
         );
+    }
+
+    #[test]
+    fn nothing_is_cut_off_and_windows_are_in_metres_and_feet() {
+        let mut place = sample_studies::place();
+        place.why = format!("{}; and this is only the first half of a long reason", place.why).repeat(2);
+        place.picks[1].worst.variant = "the line on the fence and the river up to the hut".into();
+        let bars = |drawing: &Drawing| {
+            let bar = |mark: &super::super::drawing::Mark| matches!(mark, super::super::drawing::Mark::Fill { grey, .. } if *grey == 0.45);
+            drawing.marks.iter().filter(|m| bar(m)).count()
+        };
+        assert_eq!(bars(&super::drawing(&place).unwrap()), 0);
+        place.reachable_m = vec![[0.0, 2.0], [4.0, 6.5]];
+        let drawing = super::drawing(&place).unwrap();
+        checks::texts_are_clear(&drawing);
+        assert!(!drawing.texts().iter().any(|(text, _)| text.contains('…')), "{:?}", drawing.texts());
+        assert!(drawing.texts().iter().any(|(text, _)| *text == "5.40 to 6.10 m (17.7 to 20.0 ft)"));
+        assert_eq!(bars(&drawing), 3 * 2, "a bar a stretch below every box");
     }
 
     #[test]

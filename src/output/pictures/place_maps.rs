@@ -1,8 +1,9 @@
 //! Maps of what a choke does at every place on every frequency: current, volts, watts; nominal and worst.
 
 use super::axes::{Frame, Scale, tick_text};
-use super::drawing::{Anchor, Area, Drawing, EM, SMALL, Words};
+use super::drawing::{Anchor, Area, Drawing, EM, SMALL, Words, fitted};
 use super::map::{self, Grid, Levels};
+use super::place_choice::reachable_bar;
 use crate::outcome::place::{OverPlace, PlaceOutcome, PlacePick};
 use crate::output::OutputError;
 use crate::output::bands::{self, Group};
@@ -14,6 +15,8 @@ const EDGES: [f64; 2] = [126.0, 1164.0];
 const TALLEST: f64 = 440.0;
 /// Height of a band, of a single frequency, and of what separates them.
 const ROWS: [f64; 3] = [66.0, 30.0, 7.0];
+/// Above every map: its title, and under that its marks.
+const ABOVE: f64 = 76.0;
 
 /// Values over `[frequency][place]`.
 type Plane = Vec<Vec<Option<f64>>>;
@@ -46,16 +49,14 @@ pub(super) fn current(place: &PlaceOutcome, choke: usize) -> Result<Drawing, Out
         limit: Some(place.limits.entry_current_a),
         key: "current",
     };
-    picture(place, choke, &below, nominal_and_worst(place, values, choke), &say)
+    picture(place, choke, &below, nominal_and_worst(place, values, choke, ""), &say)
 }
 
-/// Volts of the shield at the radio and across the choke, worst over the variants.
+/// Volts of the shield at the radio and across the choke, each nominal and worst over the variants.
 pub(super) fn volts(place: &PlaceOutcome, choke: usize) -> Result<Drawing, OutputError> {
-    let below = format!("Voltage, RMS, worst of all variants, with {} at each place", choke_name(place, choke));
-    let panels = vec![
-        Panel { title: "outside of the coax at the radio".into(), values: worst(&place.end_voltage_v, choke) },
-        Panel { title: "across the choke".into(), values: worst(&optional(&place.choke_v), choke) },
-    ];
+    let below = format!("Voltage, RMS, with {} at each place", choke_name(place, choke));
+    let mut panels = nominal_and_worst(place, &place.end_voltage_v, choke, "outside of the coax at the radio, ");
+    panels.extend(nominal_and_worst(place, &optional(&place.choke_v), choke, "across the choke, "));
     picture(
         place,
         choke,
@@ -72,7 +73,7 @@ pub(super) fn watts(place: &PlaceOutcome, choke: usize) -> Result<Drawing, Outpu
         choke_name(place, choke),
         figures::watts(place.power_w)
     );
-    let panels = nominal_and_worst(place, &optional(&place.choke_w), choke);
+    let panels = nominal_and_worst(place, &optional(&place.choke_w), choke, "");
     picture(
         place,
         choke,
@@ -92,11 +93,12 @@ fn optional(values: &OverPlace<f64>) -> OverPlace<Option<f64>> {
     values.iter().map(|chokes| chokes.iter().map(plane).collect()).collect()
 }
 
-fn nominal_and_worst(place: &PlaceOutcome, values: &OverPlace<Option<f64>>, choke: usize) -> Vec<Panel> {
+/// Two maps of a quantity, or one where there is one variant; `what` stands before "nominal" and "worst of ...".
+fn nominal_and_worst(place: &PlaceOutcome, values: &OverPlace<Option<f64>>, choke: usize, what: &str) -> Vec<Panel> {
     let nominal = values.first().and_then(|v| v.get(choke)).cloned().unwrap_or_default();
-    let mut panels = vec![Panel { title: "nominal".into(), values: nominal }];
+    let mut panels = vec![Panel { title: format!("{what}nominal"), values: nominal }];
     if place.variants.len() > 1 {
-        let title = format!("worst of {}", place.variants.join(", "));
+        let title = format!("{what}worst of {}", place.variants.join(", "));
         panels.push(Panel { title, values: worst(values, choke) });
     }
     panels
@@ -137,7 +139,7 @@ fn picture(
     let groups = bands::of_axes(&place.frequencies_hz, &place.bands);
     let high = heights(&groups);
     let tall = high.iter().sum::<f64>() + ROWS[2] * (groups.len().saturating_sub(1)) as f64;
-    let step = tall + 58.0;
+    let step = tall + ABOVE;
     let height = 92.0 + step * panels.len() as f64 + 150.0;
     let mut drawing = Drawing::new(height, &place.station, below);
     let x = Scale::linear([0.0, place.coax_length_m], EDGES[0], EDGES[1]);
@@ -146,7 +148,7 @@ fn picture(
     let pick = place.picks.iter().find(|p| place.chokes.get(choke).is_some_and(|c| c.name == p.choke));
     let mut bottom = 0.0;
     for (index, panel) in panels.iter().enumerate() {
-        let top = 122.0 + step * index as f64;
+        let top = 140.0 + step * index as f64;
         bottom = top + tall;
         let area = Area::new(EDGES[0], top, EDGES[1], bottom);
         blocks(&mut drawing, place, (&groups, &high), panel, (x, area, &levels, say));
@@ -154,7 +156,17 @@ fn picture(
     }
     axes(&mut drawing, x, bottom);
     map::key(&mut drawing, [EDGES[0], bottom + 118.0], &levels, say.value, say.key);
+    if gaps(place, &panels, x) {
+        map::key_of_gaps(&mut drawing, [EDGES[1], bottom + 118.0], "beyond the shortest coax of all cases");
+    }
     Ok(drawing)
+}
+
+/// Whether any map has places without values, which are hatched.
+fn gaps(place: &PlaceOutcome, panels: &[Panel], x: Scale) -> bool {
+    let frame = Frame { x, y: Scale::linear([0.0, 1.0], 1.0, 0.0) };
+    let grid = |p: &Panel| Grid::new(place.places_m.clone(), place.frequencies_hz.clone(), p.values.clone());
+    panels.iter().any(|panel| map::has_gaps(&frame, &grid(panel)))
 }
 
 fn heights(groups: &[Group]) -> Vec<f64> {
@@ -211,11 +223,11 @@ fn name(drawing: &mut Drawing, group: &Group, place: &PlaceOutcome, area: Area) 
     }
 }
 
-/// Title, entry and joins, and the window of the pick above a map.
+/// Title, entry and joins, the reachable stretches and the window of the pick above a map.
 fn marks(drawing: &mut Drawing, place: &PlaceOutcome, x: Scale, area: Area, (title, pick): (&str, Option<&PlacePick>)) {
-    let title = Words::new([EDGES[0], area.top - 14.0], EM, Anchor::Start, title);
-    let mut taken = vec![title.extent()];
-    drawing.words(title);
+    drawing.write([EDGES[0], area.top - 36.0], EM, Anchor::Start, fitted(title, EM, EDGES[1] - EDGES[0]));
+    let mut taken: Vec<Area> = Vec::new();
+    reachable_bar(drawing, place, x, area.top - 7.0);
     if let Some(pick) = pick {
         let [from, to] = pick.window_m.map(|m| x.at(m));
         drawing.rectangle(Area::new(from, area.top - 8.0, to.max(from + 2.0), area.top - 3.0), 0.0);
@@ -223,15 +235,21 @@ fn marks(drawing: &mut Drawing, place: &PlaceOutcome, x: Scale, area: Area, (tit
         taken.push(words.extent());
         drawing.words(words);
     }
-    let frame = Frame { x, y: Scale::linear([0.0, 1.0], area.bottom, area.top) };
-    let joins = place.joins_m.iter().filter(|j| (**j - place.entry_at_m).abs() > 0.02).map(|j| (*j, "join"));
-    for (at_m, said) in std::iter::once((place.entry_at_m, "entry")).chain(joins) {
-        map::upright(drawing, &frame, at_m, 1.6);
+    let mut mark = |drawing: &mut Drawing, at_m: f64, said: &str| {
         let words = Words::new([x.at(at_m), area.top - 14.0], SMALL, Anchor::Middle, said);
         if !taken.iter().any(|t| t.meets(&words.extent().grown(4.0))) {
             taken.push(words.extent());
             drawing.words(words);
         }
+    };
+    let frame = Frame { x, y: Scale::linear([0.0, 1.0], area.bottom, area.top) };
+    let joins = place.joins_m.iter().filter(|j| (**j - place.entry_at_m).abs() > 0.02).map(|j| (*j, "join"));
+    for (at_m, said) in std::iter::once((place.entry_at_m, "entry")).chain(joins) {
+        map::upright(drawing, &frame, at_m, 1.6);
+        mark(drawing, at_m, said);
+    }
+    for [from, to] in &place.reachable_m {
+        mark(drawing, 0.5 * (from + to), "reachable");
     }
 }
 
@@ -294,6 +312,37 @@ mod tests {
         let most = worst(&values, 1)[3][100];
         assert_eq!(most, Some(place.entry_current_a[0][1][3][100].max(place.entry_current_a[1][1][3][100])));
         place.variants.truncate(1);
-        assert_eq!(nominal_and_worst(&place, &values, 1).len(), 1);
+        assert_eq!(nominal_and_worst(&place, &values, 1, "").len(), 1);
+    }
+
+    #[test]
+    fn volts_and_watts_are_shown_nominal_and_worst() {
+        let place = sample_studies::place();
+        for (drawing, heads) in [
+            (volts(&place, 0).unwrap(), vec!["outside of the coax at the radio, ", "across the choke, "]),
+            (watts(&place, 0).unwrap(), vec![""]),
+        ] {
+            for head in heads {
+                for kind in ["nominal", "worst of nominal, wet"] {
+                    let title = format!("{head}{kind}");
+                    assert!(drawing.texts().iter().any(|(text, _)| *text == title), "{title}");
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn places_beyond_the_shortest_coax_are_hatched_and_reachable_stretches_named() {
+        let mut place = sample_studies::place();
+        let says = |drawing: &Drawing, said: &str| drawing.texts().iter().any(|(text, _)| text.contains(said));
+        let whole = current(&place, 0).unwrap();
+        assert!(!says(&whole, "shortest coax") && !says(&whole, "reachable"));
+        place.coax_length_m += 0.54;
+        place.reachable_m = vec![[0.0, 2.0], [10.0, 11.5]];
+        for drawing in [current(&place, 0), volts(&place, 0), watts(&place, 0)] {
+            let drawing = drawing.unwrap();
+            checks::texts_are_clear(&drawing);
+            assert!(says(&drawing, "beyond the shortest coax") && says(&drawing, "reachable"));
+        }
     }
 }
