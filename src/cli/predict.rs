@@ -10,7 +10,7 @@ use crate::outcome::Prediction;
 use crate::outcome::curve::InterpolatedCurve;
 use crate::output;
 use crate::quantity;
-use crate::study::curve::{CurveOptions, PortCurve, of_bands_watched, spaced};
+use crate::study::curve::{CurveOptions, PortCurve, bands, of_bands_watched, spaced};
 use crate::study::{Failure, Options, Watch, pattern, predict_variants_watched};
 use clap::Args;
 use num_complex::Complex64;
@@ -21,7 +21,7 @@ use std::path::PathBuf;
 /// Points of a curve over a range.
 const CURVE_POINTS: usize = 541;
 /// Points of a curve over a band.
-const BAND_POINTS: usize = 21;
+const BAND_POINTS: usize = 41;
 
 /// Arguments of `predict`.
 #[derive(Debug, Args)]
@@ -37,7 +37,7 @@ pub(super) struct Predict {
     /// Write the impedance at the radio end as Touchstone (.s1p)
     #[arg(long, value_name = "FILE")]
     touchstone: Option<PathBuf>,
-    /// Draw the site, the coax and the curves into a folder (SVG and PNG)
+    /// Draw the site, the coax and the match through each band into a folder (SVG and PNG)
     #[arg(long, value_name = "DIR")]
     plots: Option<PathBuf>,
     /// Radiation pattern at the middle of every band (in --json; drawn with --plots)
@@ -47,15 +47,15 @@ pub(super) struct Predict {
     #[arg(long, value_enum, default_value_t)]
     units: Length,
     /// Lowest frequency of a curve instead of the station's own frequencies, e.g. "3 MHz"
-    #[arg(long, value_name = "FREQUENCY", requires = "to", conflicts_with = "curve")]
+    #[arg(long, value_name = "FREQUENCY", requires = "to", conflicts_with = "curve", allow_hyphen_values = true)]
     from: Option<String>,
     /// Highest frequency of the curve
-    #[arg(long, value_name = "FREQUENCY", requires = "from")]
+    #[arg(long, value_name = "FREQUENCY", requires = "from", allow_hyphen_values = true)]
     to: Option<String>,
     /// Frequencies of the range to solve in full beside the curve, equally spaced
     #[arg(long, value_name = "N", default_value_t = 21, requires = "from")]
     points: usize,
-    /// Add a curve through each of the station's bands
+    /// Add a curve through each of the station's bands (--plots draws it without this)
     #[arg(long)]
     curve: bool,
     /// Finer (above 1) or coarser mesh, to see how much it matters
@@ -74,7 +74,7 @@ impl Predict {
         let options = Options { density, frequencies: range.map(|(low, high)| full(low, high, self.points)) };
         let (prediction, curve) = watched("steps", |watch| -> Result<_, Failure> {
             let mut prediction = predict_variants_watched(&loaded.layout, &loaded.variants, &options, watch)?;
-            if self.pattern || self.plots.is_some() {
+            if self.pattern {
                 for frequency_hz in pattern_frequencies(&prediction) {
                     if watch.stop() {
                         return Err(Failure::Stopped);
@@ -84,41 +84,41 @@ impl Predict {
             }
             Ok((prediction, self.curve(&loaded.layout, range, watch)?))
         })?;
+        // what pictures need beyond what was asked for is theirs alone
+        let asked = curve.as_ref().filter(|_| self.curve || range.is_some());
         if let Some(path) = &self.csv {
             output::whole_file(path, |w| output::csv::prediction(&prediction, w))?;
         }
         if let Some(path) = &self.touchstone {
-            let points = at_the_radio(&prediction, curve.as_ref());
+            let points = at_the_radio(&prediction, asked);
             output::whole_file(path, |w| output::touchstone::s1p(&points, loaded.layout.radio.impedance_ohm, w))?;
         }
         if let Some(folder) = &self.plots {
             let references = references(&loaded.layout);
-            let mut drawn =
-                output::pictures::write_all_prediction(&prediction, &references, folder, self.units.into())?;
+            let along = curve.as_ref().map(|c| &c.curve);
+            let units = self.units.into();
+            let mut drawn = output::pictures::write_all_prediction(&prediction, along, &references, folder, units)?;
             for pattern in &prediction.patterns {
                 drawn.extend(output::pictures::write_pattern(pattern, folder)?);
-            }
-            if let Some(curve) = &curve {
-                drawn.extend(output::pictures::write_curve(&curve.curve, folder)?);
             }
             drew(drawn);
         }
         if self.json {
-            let document = Document { prediction: &prediction, curve: curve.as_ref() };
+            let document = Document { prediction: &prediction, curve: asked };
             let text = serde_json::to_string(&document).map_err(|e| Stop::Could(e.to_string()))?;
             writeln!(std::io::stdout().lock(), "{text}")?;
         } else {
             let table = output::table::prediction(&prediction, &references(&loaded.layout), self.units.into());
             let mut out = std::io::stdout().lock();
             writeln!(out, "{table}")?;
-            if let Some(curve) = &curve {
+            if let Some(curve) = asked {
                 writeln!(out, "\n{}", of_the_curve(curve))?;
             }
         }
         Ok(())
     }
 
-    /// The interpolated curve where one was asked for.
+    /// The interpolated curve where one was asked for or is drawn.
     fn curve(
         &self,
         layout: &Layout,
@@ -131,7 +131,9 @@ impl Predict {
                 let curve = PortCurve::watched(layout, (low, high), options, watch)?;
                 Some(curve.outcome(&spaced(low, high, CURVE_POINTS))?)
             }
-            None if self.curve => Some(of_bands_watched(layout, BAND_POINTS, options, watch)?),
+            None if self.curve || (self.plots.is_some() && !bands(layout).is_empty()) => {
+                Some(of_bands_watched(layout, BAND_POINTS, options, watch)?)
+            }
             None => None,
         })
     }

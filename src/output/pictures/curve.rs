@@ -14,6 +14,8 @@ const EDGES: [f64; 2] = [104.0, 1160.0];
 const GUTTER: f64 = 16.0;
 /// Top and bottom of the boxes: feed point, radio, standing-wave ratio.
 const BOXES: [[f64; 2]; 3] = [[136.0, 356.0], [416.0, 636.0], [696.0, 916.0]];
+/// A stretch narrower than this has its numbers in smaller text.
+const NARROW: f64 = 90.0;
 /// Fewer points than this in a stretch are marked one by one.
 const MARKED_BELOW: usize = 8;
 
@@ -50,7 +52,9 @@ pub(super) fn drawing(curve: &CurveOutcome) -> Result<Drawing, OutputError> {
     }
     let [top, bottom] = BOXES[2];
     let most = curve.points.iter().map(|p| p.swr).filter(|s| s.is_finite()).fold(1.0, f64::max);
-    let most = [2.0, 3.0, 5.0, 10.0, 20.0, 50.0].into_iter().find(|m| *m >= most).unwrap_or(100.0);
+    // above the limit as well: a line on the frame would not be seen
+    let limit = curve.swr_limit.unwrap_or(1.0);
+    let most = [2.0, 3.0, 5.0, 10.0, 20.0, 50.0].into_iter().find(|m| *m >= most && *m > limit).unwrap_or(100.0);
     let y = Scale::logarithmic([1.0, most], bottom, top);
     boxes(&mut drawing, curve, &stretches, y, "standing-wave ratio");
     draw_line(&mut drawing, &stretches, y, &|p| p.swr.min(1e6), PATTERNS[0]);
@@ -156,9 +160,14 @@ fn key(drawing: &mut Drawing, y: f64) {
     }
 }
 
-/// Ticks of a stretch: round frequencies on one axis; the edges where bands stand beside each other.
+/// Ticks of a stretch: round frequencies on one axis; the edges where bands stand beside each other, and the frequency itself
+/// where there is only one.
 fn ticks(stretch: &Stretch, stretches: usize) -> Vec<f64> {
-    if stretches == 1 { stretch.x.ticks(12) } else { vec![stretch.x.from, stretch.x.to] }
+    match stretch.points.as_slice() {
+        _ if stretches == 1 => stretch.x.ticks(12),
+        [only] => vec![only.frequency_hz / 1e6],
+        _ => vec![stretch.x.from, stretch.x.to],
+    }
 }
 
 fn below_axis(drawing: &mut Drawing, curve: &CurveOutcome, stretches: &[Stretch], bottom: f64) {
@@ -167,10 +176,12 @@ fn below_axis(drawing: &mut Drawing, curve: &CurveOutcome, stretches: &[Stretch]
         for (index, tick) in ticks.iter().enumerate() {
             let (anchor, text) = match (stretches.len(), index) {
                 (1, _) => (Anchor::Middle, tick_text(*tick, &ticks)),
+                _ if ticks.len() == 1 => (Anchor::Middle, figures::megahertz(1e6 * tick)),
                 (_, 0) => (Anchor::Start, figures::megahertz(1e6 * tick)),
                 _ => (Anchor::End, figures::megahertz(1e6 * tick)),
             };
-            drawing.write([stretch.x.at(*tick), bottom + 21.0], SMALL, anchor, text);
+            let em = if stretch.x.end - stretch.x.start < NARROW { SMALL - 2.0 } else { SMALL };
+            drawing.write([stretch.x.at(*tick), bottom + 21.0], em, anchor, text);
         }
     }
     drawing.write([0.5 * (EDGES[0] + EDGES[1]), bottom + 44.0], EM, Anchor::Middle, "frequency, MHz");
@@ -212,6 +223,18 @@ mod tests {
         checks::texts_are_clear(&drawing(&whole).unwrap());
         let single = CurveOutcome { points: whole.points[..1].to_vec(), bands: vec![], ..whole };
         checks::texts_are_clear(&drawing(&single).unwrap());
+    }
+
+    #[test]
+    fn the_limit_is_seen_where_the_axis_would_end_on_it() {
+        let mut curve = sample::curve();
+        curve.points.iter_mut().for_each(|p| p.swr = 1.9);
+        for limit in [2.0, 3.0, 5.0] {
+            curve.swr_limit = Some(limit);
+            let said = format!("dotted: limit {}", figures::swr(limit));
+            let drawing = drawing(&curve).unwrap();
+            assert!(drawing.texts().iter().any(|(text, _)| *text == said), "{said}");
+        }
     }
 
     #[test]

@@ -29,20 +29,24 @@ mod hard_cases;
 
 use super::OutputError;
 use crate::outcome::Prediction;
-use crate::outcome::curve::CurveOutcome;
+use crate::outcome::curve::{CurveBand, CurveOutcome, CurvePoint};
 use crate::outcome::cut::CutOutcome;
 use crate::outcome::pattern::PatternOutcome;
 use crate::outcome::place::PlaceOutcome;
 use crate::output::{References, Units};
 use std::path::{Path, PathBuf};
 
+/// Stretches beside each other in the picture of the match at most, single frequencies among them.
+const MOST_STRETCHES: usize = 12;
+
 /// Draws every picture of a prediction into a folder, which is made if it is not there: the site, current and voltage along
-/// the coax (where there is one), impedance and match over the predicted frequencies.
+/// the coax (where there is one), impedance and match over `curve`, and over the predicted frequencies where it has nothing.
 ///
 /// # Errors
 /// [`OutputError`] of the first picture that could not be drawn or written.
 pub fn write_all_prediction(
     prediction: &Prediction,
+    curve: Option<&CurveOutcome>,
     references: &References,
     folder: &Path,
     units: Units,
@@ -52,9 +56,29 @@ pub fn write_all_prediction(
         paths.extend(write(folder, "along-the-coax", &along::drawing(prediction)?)?);
     }
     let limit = references.limits.map(|l| l.swr);
-    let curve = CurveOutcome::of(prediction, references.radio_impedance_ohm, limit);
-    paths.extend(write_curve(&curve, folder)?);
+    let predicted = CurveOutcome::of(prediction, references.radio_impedance_ohm, limit);
+    paths.extend(write_curve(&matched(predicted, curve), folder)?);
     Ok(paths)
+}
+
+/// What is drawn of the match: the curve, or else the predicted frequencies; predicted frequencies outside all bands stand
+/// alone, because a line between them would be made up.
+fn matched(predicted: CurveOutcome, curve: Option<&CurveOutcome>) -> CurveOutcome {
+    let mut drawn = curve.unwrap_or(&predicted).clone();
+    let banded =
+        |p: &CurvePoint, bands: &[CurveBand]| bands.iter().any(|b| (b.from_hz..=b.to_hz).contains(&p.frequency_hz));
+    let runs_on = curve.is_some_and(|c| !c.points.iter().all(|p| banded(p, &c.bands)));
+    let mut single = predicted.points.clone();
+    single.retain(|p| !banded(p, &drawn.bands));
+    if runs_on || drawn.bands.len() + single.len() > MOST_STRETCHES {
+        return drawn;
+    }
+    let alone = |p: &CurvePoint| CurveBand { name: String::new(), from_hz: p.frequency_hz, to_hz: p.frequency_hz };
+    drawn.bands.extend(single.iter().map(alone));
+    drawn.bands.sort_by(|a, b| a.from_hz.total_cmp(&b.from_hz));
+    drawn.points.extend(single.iter().filter(|_| curve.is_some()));
+    drawn.points.sort_by(|a, b| a.frequency_hz.total_cmp(&b.frequency_hz));
+    drawn
 }
 
 /// Draws impedance and standing-wave ratio against frequency ("match").
@@ -158,10 +182,34 @@ mod tests {
     }
 
     #[test]
+    fn the_match_follows_the_curve_and_keeps_frequencies_of_their_own() {
+        let mut prediction = sample::prediction();
+        for frequency in &mut prediction.frequencies[..3] {
+            (frequency.band, frequency.edge) = (None, None);
+        }
+        let of = |curve: Option<&CurveOutcome>| matched(CurveOutcome::of(&prediction, 50.0, None), curve);
+        let predicted = of(None);
+        assert_eq!((predicted.bands.len(), predicted.points.len()), (4 + 3, 15));
+        checks::texts_are_clear(&curve::drawing(&predicted).unwrap());
+        let mut through = CurveOutcome::of(&prediction, 50.0, None);
+        let bands = through.bands.clone();
+        through.points.retain(|p| bands.iter().any(|b| (b.from_hz..=b.to_hz).contains(&p.frequency_hz)));
+        let between: Vec<_> = through.bands.iter().map(|b| 0.3 * b.from_hz + 0.7 * b.to_hz).collect();
+        let like = through.points[0];
+        through.points.extend(between.iter().map(|hz| CurvePoint { frequency_hz: *hz, ..like }));
+        through.points.sort_by(|a, b| a.frequency_hz.total_cmp(&b.frequency_hz));
+        let drawn = of(Some(&through));
+        assert_eq!((drawn.bands.len(), drawn.points.len()), (4 + 3, 12 + 4 + 3));
+        assert!(between.iter().all(|hz| drawn.points.iter().any(|p| p.frequency_hz == *hz)));
+        checks::texts_are_clear(&curve::drawing(&drawn).unwrap());
+        assert_eq!(of(Some(&sample::curve())), sample::curve(), "a whole run is left as it is");
+    }
+
+    #[test]
     fn every_picture_of_a_prediction_is_written_twice() {
         let (folder, _keep) = folder();
         let references = References { impedance_ratio: Some(49.0), ..References::default() };
-        let mut paths = write_all_prediction(&sample::prediction(), &references, &folder, Units::Metres).unwrap();
+        let mut paths = write_all_prediction(&sample::prediction(), None, &references, &folder, Units::Metres).unwrap();
         paths.extend(write_curve(&sample::curve(), &folder.join("run")).unwrap());
         paths.extend(write_pattern(&sample::pattern(), &folder).unwrap());
         assert_eq!(paths.len(), 10);
