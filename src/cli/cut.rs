@@ -22,16 +22,16 @@ pub(super) struct Cut {
     #[arg(long, value_name = "NAME")]
     conductor: String,
     /// Its lengths, e.g. "4 m .. 25 m by 0.5 m" or "41 ft .. 66 ft by 1 ft"
-    #[arg(long, value_name = "RANGE")]
+    #[arg(long, value_name = "RANGE", allow_hyphen_values = true)]
     range: String,
     /// A second conductor scanned jointly
     #[arg(long, value_name = "NAME", requires = "with_range")]
     with: Option<String>,
     /// The lengths of the second
-    #[arg(long, value_name = "RANGE", requires = "with")]
+    #[arg(long, value_name = "RANGE", requires = "with", allow_hyphen_values = true)]
     with_range: Option<String>,
     /// Lengths one can buy, e.g. "25, 33, 50 ft"
-    #[arg(long, value_name = "LENGTHS")]
+    #[arg(long, value_name = "LENGTHS", allow_hyphen_values = true)]
     stock: Option<String>,
     /// One JSON document on standard output, nothing else
     #[arg(long)]

@@ -31,7 +31,8 @@ pub(super) fn load(args: &StationArgs) -> Result<Loaded, Stop> {
     let document = Document::parse(&text, &name)?.with(&sets)?;
     let mut placed = Vec::new();
     for (name, station) in document.stations(&Embedded)? {
-        placed.push((name, place(&station)?));
+        let layout = place(&station).map_err(|refused| refused.in_variant(&name))?;
+        placed.push((name, layout));
     }
     // the first is the station as written
     let (_, layout) = placed.remove(0);

@@ -24,13 +24,13 @@ pub(super) struct Place {
     #[arg(long)]
     json: bool,
     /// Distance between the places tried [default: 1 cm, and 5 cm where --lengths has them tried on every length]
-    #[arg(long, value_name = "LENGTH")]
+    #[arg(long, value_name = "LENGTH", allow_hyphen_values = true)]
     step: Option<String>,
     /// Try these lengths of the coax too, and choose length and place together, e.g. "5 m .. 25 m by 0.5 m"
-    #[arg(long, value_name = "RANGE")]
+    #[arg(long, value_name = "RANGE", allow_hyphen_values = true)]
     lengths: Option<String>,
     /// A candidate's resistance, e.g. "2 kohm" (repeatable); without any, and without chokes in the file, 0.5 to 10 kohm
-    #[arg(long = "impedance", value_name = "RESISTANCE")]
+    #[arg(long = "impedance", value_name = "RESISTANCE", allow_hyphen_values = true)]
     impedances: Vec<String>,
     /// A choke of the file that stays where it is, while the others are candidates (repeatable)
     #[arg(long = "keep", value_name = "NAME")]
@@ -101,12 +101,15 @@ impl Place {
                 )))
             }
         });
-        Ok(PlaceOptions {
-            step_m,
-            candidates: candidates.collect::<Result<_, Stop>>()?,
-            keep: self.keep.clone(),
-            ..PlaceOptions::default()
-        })
+        let mut chosen: Vec<Candidate> = Vec::new();
+        for candidate in candidates {
+            let candidate = candidate?;
+            // "2 kohm" and "2000 ohm" are one choke
+            if !chosen.contains(&candidate) {
+                chosen.push(candidate);
+            }
+        }
+        Ok(PlaceOptions { step_m, candidates: chosen, keep: self.keep.clone(), ..PlaceOptions::default() })
     }
 }
 

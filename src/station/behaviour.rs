@@ -207,10 +207,35 @@ fn variants_are_the_station_turned_the_other_way() {
         ("\"earth.soil\" = \"dry sand\"", "\"earth.soil\" = \"dry sandd\"", "dry sand"),
         ("wire.earth lead", "wire.earth led", "earth lead"),
         ("wire.earth lead", "wire.earth lead.length", "whole tables"),
+        ("wire.earth lead", "earth lead", "did you mean `wire.\"earth lead\"`?"),
+        ("wire.earth lead", "earth led", "did you mean `wire.\"earth lead\"`?"),
+        ("set = { \"earth.soil\" = \"dry sand\", \"points.foot.up\" = \"on ground\" }", "set = {}", "changes nothing"),
+        ("set = { \"earth.soil\" = \"dry sand\", \"points.foot.up\" = \"on ground\" }", "", "changes nothing"),
+        (
+            "set = { \"earth.soil\" = \"dry sand\", \"points.foot.up\" = \"on ground\" }",
+            "set = { \"wire.earth lead.diameter\" = \"2 mm\" }\nwithout = [\"wire.earth lead\"]",
+            "that contradicts",
+        ),
     ] {
         let broken = Document::parse(&FILE.replace(old, new), "hut.toml").unwrap();
         let text = broken.stations(&Few).unwrap_err().to_string();
         assert!(text.contains("in variant") && text.contains(reason), "{text}");
+    }
+}
+
+#[test]
+fn a_layout_fault_of_a_variant_names_it_and_stretches_have_their_own_brackets() {
+    let file = FILE.replace("without = [\"wire.earth lead\", \"rod.entry rod\"]", "set = { \"coax.length\" = 400 }");
+    let stations = Document::parse(&file, "hut.toml").unwrap().stations(&Few).unwrap();
+    let faults = crate::layout::Layout::place(&stations[2].1).unwrap_err();
+    let refused =
+        |name: &str| Refused { sources: stations[2].1.sources.clone(), faults: faults.clone() }.in_variant(name);
+    assert!(refused("no bond").to_string().contains("in variant \"no bond\""), "{}", refused("no bond"));
+    assert!(!refused("nominal").to_string().contains("in variant"));
+    for bare in ["[\"1 ft\", \"8 ft\"]", "\"1 ft\""] {
+        let file = FILE.replace("[[\"1 ft\", \"8 ft\"], [7, 9]]", bare);
+        let refused = Station::read(&file, "hut.toml", &[], &Few).unwrap_err();
+        assert!(refused.faults.len() == 1 && refused.to_string().contains("[[\"1 ft\", \"7 ft\"]]"), "{refused}");
     }
 }
 

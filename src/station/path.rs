@@ -83,7 +83,8 @@ pub(super) fn target(root: &Node, path: &str, place: Place) -> Result<Target, Fa
     }
     let Some(known) = keys_of(&table) else {
         let tables = RawStation::KEYS.iter().copied();
-        return Err(nothing(format!("there is no table \"{table}\""), super::offer(&table, tables)));
+        let mend = whole_path(root, &steps, tables.clone()).unwrap_or_else(|| super::offer(&table, tables));
+        return Err(nothing(format!("there is no table \"{table}\""), mend));
     };
     let (row, rest) = if in_rows(&table) {
         let Some(name) = steps.get(1) else {
@@ -107,6 +108,24 @@ pub(super) fn target(root: &Node, path: &str, place: Place) -> Result<Target, Fa
         Some(key) if known.contains(&key.as_str()) => Ok(Target::Key { table, row, keys: rest.to_vec() }),
         Some(key) => Err(nothing(format!("\"{key}\" is not a key there"), super::offer(key, known.iter().copied()))),
     }
+}
+
+/// The path that was meant where only a name was written: "did you mean `wire.counterpoise`?".
+fn whole_path<'a>(root: &Node, steps: &[String], tables: impl Iterator<Item = &'a str> + Clone) -> Option<String> {
+    let (name, rest) = steps.split_first()?;
+    let mut named: Vec<(&str, String)> = Vec::new();
+    for table in tables.clone().filter(|t| in_rows(t)) {
+        named.extend(row_names(root, table).into_iter().map(|(n, _)| (table, n)));
+    }
+    let meant = named.iter().find(|(_, n)| n == name).or_else(|| {
+        let near = super::nearest(name, named.iter().map(|(_, n)| n.as_str()))?;
+        let no_table = super::nearest(name, tables).is_none();
+        named.iter().find(|(_, n)| no_table && n == near)
+    })?;
+    let quoted = |step: &str| if step.contains([' ', '.']) { format!("\"{step}\"") } else { step.to_owned() };
+    let path: Vec<String> =
+        [meant.0, &meant.1].into_iter().chain(rest.iter().map(String::as_str)).map(quoted).collect();
+    Some(format!("did you mean `{}`?", path.join(".")))
 }
 
 fn point_target(root: &Node, steps: &[String], nothing: impl Fn(String, String) -> Fault) -> Result<Target, Fault> {

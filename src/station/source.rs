@@ -111,6 +111,15 @@ pub struct Refused {
 }
 
 impl Refused {
+    /// The same faults, each saying which variant it belongs to; "nominal" is the file as written and needs no word.
+    #[must_use]
+    pub fn in_variant(mut self, name: &str) -> Self {
+        if name != "nominal" {
+            self.faults = super::variant::in_variant(self.faults, name);
+        }
+        self
+    }
+
     /// Every fault with the line it stands on, a caret, the reason and the mend; ANSI colours where `colour`.
     #[must_use]
     pub fn show(&self, colour: bool) -> String {

@@ -6,7 +6,7 @@ use super::document::Document;
 use super::node::{Entry, Node, NodeKind};
 use super::path::{Target, entries_mut, target};
 use super::raw::{RawVariant, Read, Reader};
-use super::source::{Fault, Place, Refused};
+use super::source::{Fault, Place, Refused, Written};
 
 /// The document of a variant; "nominal" is the file as written.
 ///
@@ -28,19 +28,45 @@ pub(super) fn document(nominal: &Document, name: &str) -> Result<Document, Refus
     let Some(raw) = RawVariant::read(row, &mut reader) else { return Err(refused(reader.faults)) };
     let mut faults = reader.faults;
     let settings = raw.set.as_ref().map_or(&[][..], |s| s.value.0.as_slice());
+    let without = raw.without.as_ref().map_or(&[][..], |w| w.value.as_slice());
+    if settings.is_empty() && without.is_empty() {
+        let mend =
+            "give it set = { \"earth.soil\" = \"wet meadow\" } or without = [\"wire.counterpoise\"], or take it out";
+        faults.push(Fault::new(Some(row.place), "this variant changes nothing", mend));
+    }
+    faults.extend(contradictions(&nominal.root, settings, without));
     let within = |p: Place| settings.iter().any(|s| s.value.place == p);
     for setting in settings {
         let set = target(&changed.root, &setting.key, setting.place)
             .and_then(|target| change::set(&mut changed.root, &target, setting.place, setting.value.clone(), &within));
         faults.extend(set.err());
     }
-    for path in raw.without.iter().flat_map(|w| &w.value) {
+    for path in without {
         let place = path.place.unwrap_or(row.place);
         let gone =
             target(&changed.root, &path.value, place).and_then(|target| remove(&mut changed.root, &target, place));
         faults.extend(gone.err());
     }
     if faults.is_empty() { Ok(changed) } else { Err(refused(in_variant(faults, name))) }
+}
+
+/// Values set inside what the same variant leaves out; paths that name nothing are told elsewhere.
+fn contradictions(root: &Node, settings: &[Entry], without: &[Written<String>]) -> Vec<Fault> {
+    let table_of = |target: Target| match target {
+        Target::Whole { table, row, point: None } | Target::Key { table, row, .. } => Some((table, row)),
+        _ => None,
+    };
+    let of = |path: &str, place: Place| target(root, path, place).ok().and_then(table_of);
+    let mut faults = Vec::new();
+    for setting in settings {
+        let Some(set) = of(&setting.key, setting.place) else { continue };
+        if let Some(gone) = without.iter().find(|path| of(&path.value, setting.place).as_ref() == Some(&set)) {
+            let reason = format!("`{}` is set here, and `{}` is left out: that contradicts", setting.key, gone.value);
+            let mend = format!("take `{}` out of `set`, or `{}` out of `without`", setting.key, gone.value);
+            faults.push(Fault::new(Some(setting.place), reason, mend));
+        }
+    }
+    faults
 }
 
 /// Says which variant the faults belong to.

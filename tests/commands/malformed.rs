@@ -94,3 +94,38 @@ fn the_program_refuses_them_with_status_two_and_nothing_on_standard_output() {
         }
     }
 }
+
+#[test]
+fn what_a_variant_cannot_be_placed_as_names_the_variant() {
+    let folder = tempfile::tempdir().unwrap();
+    let model = std::fs::read_to_string(format!("{}/models/gauge-hut.toml", env!("CARGO_MANIFEST_DIR"))).unwrap();
+    let broken = format!("{model}\n[[variant]]\nname = \"short\"\nset = {{ \"coax.length\" = 3 }}\n");
+    std::fs::write(folder.path().join("m.toml"), broken).unwrap();
+    let mut program = std::process::Command::new(env!("CARGO_BIN_EXE_braidwise"));
+    let run = program.args(["check", "m.toml"]).current_dir(folder.path()).output().unwrap();
+    let told = String::from_utf8_lossy(&run.stderr);
+    assert!(run.status.code() == Some(2) && told.contains("in variant \"short\""), "{told}");
+}
+
+#[test]
+fn lengths_and_resistances_below_zero_get_the_programs_own_message() {
+    let model = format!("{}/models/gauge-hut.toml", env!("CARGO_MANIFEST_DIR"));
+    for (command, more, says) in [
+        ("place", vec!["--impedance", "-2 kohm"], "a choke has more than 0 ohm"),
+        ("cut", vec!["--conductor", "coax", "--range", "-3 m .. 9 m by 1 m"], "a length must be longer than zero"),
+        (
+            "cut",
+            vec!["--conductor", "coax", "--range", "3 m .. 9 m by 1 m", "--stock", "-3 ft"],
+            "a length must be longer than zero",
+        ),
+    ] {
+        let run = std::process::Command::new(env!("CARGO_BIN_EXE_braidwise"))
+            .arg(command)
+            .arg(&model)
+            .args(more)
+            .output()
+            .unwrap();
+        let told = String::from_utf8_lossy(&run.stderr);
+        assert!(run.status.code() == Some(2) && told.contains(says), "{told}");
+    }
+}

@@ -44,6 +44,13 @@ fn json_has_the_axes_of_the_contract() {
 }
 
 #[test]
+fn one_resistance_given_twice_is_one_candidate() {
+    let more = ["--json", "--step", "50 cm", "--impedance", "2 kohm", "--impedance", "2000 ohm"];
+    let out: Value = serde_json::from_slice(&place("levee-straight", &more).success().get_output().stdout).unwrap();
+    assert_eq!(out["chokes"].as_array().unwrap().len(), 1);
+}
+
+#[test]
 fn a_person_reads_one_answer_with_its_cautions() {
     let done = place("levee-straight-choke", &["--step", "10 cm"]).success();
     let out = text(&done.get_output().stdout);

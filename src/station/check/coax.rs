@@ -28,7 +28,7 @@ impl Check<'_> {
             Some(entry) => self.point_exists(entry),
             None => Some(()),
         };
-        let reachable_m = self.reachable(raw.reachable.clone());
+        let reachable_m = self.reachable(raw.reachable.clone().map(|r| r.value.0));
         let cable = self.cable(&raw, table);
         entry?;
         let cable = cable?;
@@ -176,21 +176,20 @@ impl Check<'_> {
         Some(points)
     }
 
-    fn reachable(&mut self, raw: Option<Written<Vec<Written<Stretch>>>>) -> Option<Vec<Written<(f64, f64)>>> {
-        let stretches =
-            raw.map_or_else(Vec::new, |r| r.value).into_iter().map(|stretch| match stretch.value.as_slice() {
-                [from, to] if from.value.0 >= 0.0 && to.value.0 > from.value.0 => {
-                    Some(stretch.map(|s| (s[0].value.0, s[1].value.0)))
-                }
-                _ => {
-                    self.fault(
-                        stretch.place,
-                        "a stretch runs from one distance to a larger one",
-                        "write reachable = [[\"1 ft\", \"8 ft\"]]",
-                    );
-                    None
-                }
-            });
+    fn reachable(&mut self, raw: Option<Vec<Written<Stretch>>>) -> Option<Vec<Written<(f64, f64)>>> {
+        let stretches = raw.unwrap_or_default().into_iter().map(|stretch| match stretch.value.as_slice() {
+            [from, to] if from.value.0 >= 0.0 && to.value.0 > from.value.0 => {
+                Some(stretch.map(|s| (s[0].value.0, s[1].value.0)))
+            }
+            _ => {
+                self.fault(
+                    stretch.place,
+                    "a stretch runs from one distance to a larger one",
+                    "write reachable = [[\"1 ft\", \"8 ft\"]]",
+                );
+                None
+            }
+        });
         stretches.collect::<Vec<_>>().into_iter().collect()
     }
 }

@@ -1,9 +1,49 @@
 //! `[[wire]]`, `[[radials]]`, `[coax]` and `[[rod]]`.
 
 use super::{
-    Angle, Conductivity, Decibel, Distance, Fraction, Frequency, Height, Length, PathPoint, Resistance, WireSize, table,
+    Angle, Conductivity, Decibel, Distance, Fraction, Frequency, Height, Length, PathPoint, Read, Reader, Resistance,
+    WireSize, table,
 };
+use crate::station::node::{Node, NodeKind};
 use crate::station::source::Written;
+use schemars::{JsonSchema, Schema, SchemaGenerator};
+use std::borrow::Cow;
+
+/// A list of stretches, each a list of its own: from and to.
+type StretchList = Vec<Written<Vec<Written<Distance>>>>;
+
+/// Stretches along a conductor.
+#[derive(Debug, Clone)]
+pub(crate) struct RawStretches(pub(crate) StretchList);
+
+impl Read for RawStretches {
+    fn read(node: &Node, reader: &mut Reader) -> Option<Self> {
+        let bare = node.items().iter().find(|item| !matches!(item.kind, NodeKind::List(_)));
+        if matches!(node.kind, NodeKind::List(_)) && bare.is_none() {
+            return StretchList::read(node, reader).map(RawStretches);
+        }
+        let stands = bare.map_or_else(|| node.called(), Node::called);
+        let reason = format!("{stands} stands where a stretch in square brackets of its own is wanted");
+        reader.fault(
+            node.place,
+            reason,
+            "write each stretch, from and to, in brackets inside the list: [[\"1 ft\", \"7 ft\"]]",
+        );
+        None
+    }
+}
+
+impl JsonSchema for RawStretches {
+    fn schema_name() -> Cow<'static, str> {
+        StretchList::schema_name()
+    }
+    fn inline_schema() -> bool {
+        true
+    }
+    fn json_schema(generator: &mut SchemaGenerator) -> Schema {
+        StretchList::json_schema(generator)
+    }
+}
 
 table! {
     /// A dielectric jacket.
@@ -107,7 +147,7 @@ table! {
         /// The line ends there, and the radio with it.
         length: Option<Written<Distance>>,
         /// Stretches along the coax, from and to, where a choke could be put.
-        reachable: Option<Written<Vec<Written<Vec<Written<Distance>>>>>>,
+        reachable: Option<Written<RawStretches>>,
     }
 }
 

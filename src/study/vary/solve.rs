@@ -120,7 +120,7 @@ impl Work<'_> {
             let document = self.document.with(&self.plan.sets(&self.points[point]))?;
             let place = |(name, station): (String, crate::station::Station)| match Layout::place(&station) {
                 Ok(layout) => Ok(Variant { name, geometry: geometry(&layout), layout }),
-                Err(faults) => Err(Refused { sources: station.sources.clone(), faults }),
+                Err(faults) => Err(Refused { sources: station.sources.clone(), faults }.in_variant(&name)),
             };
             document.stations(self.catalogue)?.into_iter().map(place).collect()
         };
