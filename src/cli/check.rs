@@ -3,7 +3,7 @@
 use super::flags::StationArgs;
 use super::load::{Loaded, load};
 use super::stop::Stop;
-use crate::layout::{ConductorKind, Earth, Layout, PartKind};
+use crate::layout::{Conductor, ConductorKind, Earth, Layout, PartKind};
 use crate::quantity::metres_and_feet;
 use crate::station;
 use crate::study::earthing::{LOW_FREQUENCY_HZ, rods_alone};
@@ -109,13 +109,7 @@ fn as_text(file: &std::path::Path, loaded: &Loaded) -> Result<String, Stop> {
             ConductorKind::Body => "case",
         };
         let note = if c.protective { ", protective" } else { "" };
-        let _ = writeln!(
-            text,
-            "  {kind:<11} {}: {}, {:.2} mm thick{note}",
-            c.name,
-            metres_and_feet(c.length_m()),
-            2e3 * c.radius_m
-        );
+        let _ = writeln!(text, "  {kind:<11} {}: {}, {:.2} mm thick{note}", c.name, lengths(c), 2e3 * c.radius_m);
     }
     let ratio = layout.feed.impedance_ratio.map_or("no transformer".to_string(), |r| format!("transformer {r}:1"));
     let _ = writeln!(text, "  feed        gap {:.1} mm, {ratio}", 1e3 * layout.feed.gap_m);
@@ -133,7 +127,7 @@ fn as_text(file: &std::path::Path, loaded: &Loaded) -> Result<String, Stop> {
         let _ = writeln!(text, "  {kind:<11} {}: at {} on {on}", p.name, metres_and_feet(p.at_m));
     }
     for (name, ohm) in rods(layout)? {
-        let _ = writeln!(text, "  {name}: {ohm:.1} ohm to remote earth by itself at low frequency");
+        let _ = writeln!(text, "  {:<11} {name}: {ohm:.1} ohm to remote earth by itself at low frequency", "earthing");
     }
     let shown: Vec<String> =
         layout.operation.frequencies.iter().map(|f| format!("{:.3}", f.frequency_hz / 1e6)).collect();
@@ -146,6 +140,25 @@ fn as_text(file: &std::path::Path, loaded: &Loaded) -> Result<String, Stop> {
         let _ = writeln!(text, "  warning     {}: {}", w.about, w.message);
     }
     Ok(text)
+}
+
+/// How long a conductor is; of a rod, how deep, and what joins it to a head above the surface.
+fn lengths(conductor: &Conductor) -> String {
+    let length_m = conductor.length_m();
+    let above_m: f64 = conductor
+        .points
+        .windows(2)
+        .map(|leg| {
+            let (low, high) = (leg[0].z.min(leg[1].z), leg[0].z.max(leg[1].z));
+            let part = if high > low { ((high - low.max(0.0)) / (high - low)).clamp(0.0, 1.0) } else { 0.0 };
+            part * (leg[1] - leg[0]).norm()
+        })
+        .sum();
+    if conductor.kind == ConductorKind::Rod && above_m > 1e-6 {
+        let (below, above) = (metres_and_feet(length_m - above_m), metres_and_feet(above_m));
+        return format!("{below} in the earth, {above} above it");
+    }
+    metres_and_feet(length_m)
 }
 
 fn earth(layout: &Layout) -> String {
@@ -162,6 +175,54 @@ fn earth(layout: &Layout) -> String {
                 ),
                 _ => "soil".to_string(),
             }
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    #![allow(clippy::unwrap_used)]
+    use super::*;
+
+    #[test]
+    fn every_line_keeps_the_column_of_labels_and_a_rod_is_as_long_as_it_is_deep() {
+        let text = "
+            [earth]
+            kind = \"soil\"
+            permittivity = 13
+            conductivity = \"5 mS/m\"
+            [points]
+            feed = [0, 0, 3]
+            head = [0, 0, 0.1]
+            [[wire]]
+            name = \"radiator\"
+            path = [\"feed\", [0, 10, 6]]
+            diameter = \"2 mm\"
+            [[wire]]
+            name = \"lead\"
+            path = [\"feed\", \"head\"]
+            diameter = \"2 mm\"
+            [[rod]]
+            name = \"foot rod\"
+            at = \"head\"
+            length = 2
+            diameter = \"14 mm\"
+            [feed]
+            at = \"feed\"
+            hot = [\"radiator\"]
+            cold = [\"lead\"]
+            [operation]
+            frequencies = [\"7.1 MHz\"]";
+        let folder = tempfile::tempdir().unwrap();
+        let file = folder.path().join("m.toml");
+        std::fs::write(&file, text).unwrap();
+        let loaded = load(&StationArgs { file: file.clone(), sets: Vec::new() }).unwrap();
+        let said = as_text(&file, &loaded).unwrap();
+        assert!(said.contains("foot rod: 2 m (6 ft 6.7 in) in the earth, 0.1 m (3.9 in) above it"), "{said}");
+        for line in said.lines().skip(1) {
+            let column: Vec<char> = line.chars().skip(12).take(3).collect();
+            assert!(column[0] == ' ' || column[1] == ' ', "{line}");
+            assert!(column[1] == ' ' && column[2] != ' ', "{line}");
         }
     }
 }

@@ -191,7 +191,8 @@ fn shield(f: &FrequencyOutcome, read: impl Fn(&ShieldOutcome) -> Option<f64>) ->
 }
 
 fn total_w(parts: &[PartOutcome]) -> f64 {
-    parts.iter().map(|p| p.dissipated_w).sum()
+    // from plain zero: the sum of nothing would be -0
+    parts.iter().fold(0.0, |sum, p| sum + p.dissipated_w)
 }
 
 /// One quantity of a station at a frequency.

@@ -18,6 +18,13 @@ pub(super) struct Group {
     pub(super) members: Vec<usize>,
 }
 
+impl Group {
+    /// A run of frequencies that are no band: which one a value belongs to is not said by an edge.
+    pub(super) fn is_run(&self) -> bool {
+        self.span.is_empty() && self.members.len() > 1
+    }
+}
+
 /// Groups the frequencies of a prediction.
 pub(super) fn of_outcomes(frequencies: &[FrequencyOutcome]) -> Vec<Group> {
     let hertz: Vec<f64> = frequencies.iter().map(|f| f.frequency_hz).collect();
@@ -101,5 +108,6 @@ mod tests {
         assert_eq!(groups[1].name, "10.12 MHz");
         let curve: Vec<f64> = (0..50).map(|i| 3e6 + 1e5 * f64::from(i)).collect();
         assert_eq!(of_axes(&curve, &[]).len(), 1);
+        assert!(of_axes(&curve, &[])[0].is_run() && groups.iter().all(|g| !g.is_run()));
     }
 }

@@ -84,7 +84,8 @@ fn parts(frequency: &FrequencyOutcome) -> impl Iterator<Item = &PartOutcome> {
 
 /// Shortest digits that read back the same; nothing for what is missing or not a number.
 pub(super) fn number(value: Option<f64>) -> String {
-    value.filter(|v| v.is_finite()).map_or(String::new(), |v| v.to_string())
+    // a sum of nothing is -0, which reads like a value
+    value.filter(|v| v.is_finite()).map_or(String::new(), |v| (v + 0.0).to_string())
 }
 
 /// Everything between the variant and the parts, in the order of [`COLUMNS`].
@@ -146,6 +147,16 @@ mod tests {
             ["radiated_w", "earth_w", "metal_w", "line_w", "transformer_w", "chokes_w", "inline_w", "unaccounted_w"];
         let sum: f64 = watts.iter().map(|name| read(4, name).parse::<f64>().unwrap()).sum();
         assert!((sum - 100.0).abs() < 1e-9, "{sum}");
+    }
+
+    #[test]
+    fn nothing_is_zero_and_not_less_than_zero() {
+        assert_eq!((number(Some(-0.0)), number(Some(-0.5))), ("0".into(), "-0.5".into()));
+        let mut sample = sample::prediction();
+        sample.frequencies.iter_mut().for_each(|f| f.power.inline.clear());
+        let mut bytes = Vec::new();
+        prediction(&sample, &mut bytes).unwrap();
+        assert!(!String::from_utf8(bytes).unwrap().split(',').any(|field| field == "-0"));
     }
 
     #[test]

@@ -111,12 +111,19 @@ fn cell(prediction: &Prediction, group: &Group, content: &Content) -> String {
         text.push_str(&format!(" {}", bands::edge_word(edge)));
     }
     text.push_str(mark(nominal));
+    let frequency = |f: &FrequencyOutcome| format!("at {} MHz", figures::megahertz(f.frequency_hz));
+    if group.is_run() {
+        text.push_str(&format!("\n{}", frequency(nominal)));
+    }
     if let Some(rest) = rest {
         text.push_str(&format!("\n{rest}"));
     }
-    if let Some((variant, frequency)) = worst {
-        let said = (content.say)(frequency);
-        text.push_str(&format!("\n{} {variant}{}", said.lines().next().unwrap_or_default(), mark(frequency)));
+    if let Some((variant, there)) = worst {
+        let said = (content.say)(there);
+        text.push_str(&format!("\n{} {variant}{}", said.lines().next().unwrap_or_default(), mark(there)));
+        if group.is_run() {
+            text.push_str(&format!("\n{}", frequency(there)));
+        }
     }
     text
 }
@@ -263,8 +270,9 @@ fn power_rows(prediction: &Prediction) -> Vec<Row<'static>> {
     let least = |title: &str, say: Box<dyn Fn(&FrequencyOutcome) -> String>| {
         row(title, Worse::Smaller, efficiency, say).unnamed()
     };
+    let where_least = if columns(prediction).0 { "frequency" } else { "edge" };
     let mut rows = vec![
-        block("Power at the edge that radiates least"),
+        block(format!("Power at the {where_least} that radiates least")),
         row("efficiency (radiated / input)", Worse::Smaller, efficiency, |f| {
             let fraction = efficiency(f).unwrap_or(f64::NAN);
             format!("{}, {}", figures::percent(fraction), figures::decibels(fraction))
@@ -293,13 +301,33 @@ fn power_rows(prediction: &Prediction) -> Vec<Row<'static>> {
     rows
 }
 
+/// Whether any column stands for a run of frequencies, and whether any stands for a band.
+fn columns(prediction: &Prediction) -> (bool, bool) {
+    let groups = bands::of_outcomes(&prediction.frequencies);
+    (groups.iter().any(Group::is_run), groups.iter().any(|g| !g.span.is_empty()))
+}
+
+/// Which of its frequencies a column shows.
+fn shown_at(prediction: &Prediction) -> &'static str {
+    match columns(prediction) {
+        (false, true) => "Each band is shown at its worst edge (low, mid or high), for each quantity on its own.",
+        (false, false) => "Each frequency is shown as it is.",
+        (true, false) => {
+            "The run is shown at the frequency worst for each quantity on its own; --csv and --json have all."
+        }
+        (true, true) => {
+            "Each band is shown at its worst edge and each run at its worst frequency, for each quantity on its own."
+        }
+    }
+}
+
 fn part_named<'a>(frequency: &'a FrequencyOutcome, name: &str) -> Option<&'a PartOutcome> {
     frequency.power.chokes.iter().chain(&frequency.power.inline).find(|p| p.name == name)
 }
 
 fn notes(prediction: &Prediction, references: &References) -> String {
     let mut notes = vec![
-        "Each band is shown at its worst edge (low, mid or high), for each quantity on its own.".to_string(),
+        shown_at(prediction).to_string(),
         "± is the solver's estimate of its own discretisation error; soil, heights and parts add theirs.".to_string(),
         "Peak is √2 times RMS, at the operating power as carrier or peak envelope.".to_string(),
         "The dB of a loss are what it alone would take from the input.".to_string(),
@@ -371,6 +399,23 @@ mod tests {
         // Without the ratio the same feed point is a bad match: the ratio is really used.
         let bare = References { impedance_ratio: None, ..references() };
         assert!(feed_swr(&one, &bare) > 90.0);
+    }
+
+    #[test]
+    fn a_run_of_frequencies_names_the_one_that_is_worst() {
+        let mut sample = sample::prediction();
+        let variants = sample.variants.iter_mut().flat_map(|v| v.frequencies.iter_mut());
+        for frequency in sample.frequencies.iter_mut().chain(variants) {
+            (frequency.band, frequency.edge) = (None, None);
+        }
+        let worst =
+            sample.frequencies.iter().max_by(|a, b| a.radio.swr.total_cmp(&b.radio.swr)).map(|f| f.frequency_hz);
+        let text = prediction(&sample, &references(), Units::Metres);
+        let lines: Vec<&str> = text.lines().collect();
+        let row = lines.iter().position(|l| l.contains("SWR at the radio")).unwrap_or(0);
+        let said = format!("at {} MHz", figures::megahertz(worst.unwrap_or(0.0)));
+        assert!(lines[row + 1].trim() == said, "{said} is missing below {}\n{text}", lines[row]);
+        assert!(!text.contains("edge"), "{text}");
     }
 
     #[test]

@@ -1,6 +1,6 @@
 //! Varied points as comma-separated rows, as JSON lines, and as tables: the extremes, and nominal and worst at every point.
 
-use super::OutputError;
+use super::{OutputError, figures};
 use crate::outcome::vary::{VariedEnds, VariedExtreme, VariedPoint, VariedRow, VaryOutcome, Worse};
 use comfy_table::{CellAlignment, Table, presets};
 use serde_json::{Map, Value, json};
@@ -68,7 +68,8 @@ pub fn table(outcome: &VaryOutcome) -> String {
     let mut table = Table::new();
     table.load_preset(presets::ASCII_MARKDOWN);
     table.set_header(["quantity", "least", "where", "greatest", "where"]);
-    for (n, name) in outcome.want.iter().enumerate() {
+    let (there, nowhere): (Vec<_>, Vec<_>) = outcome.want.iter().enumerate().partition(|(n, _)| exists(outcome, *n));
+    for (n, name) in there {
         let all = || {
             outcome
                 .points
@@ -81,7 +82,7 @@ pub fn table(outcome: &VaryOutcome) -> String {
         let mut cells = vec![name.clone()];
         for end in [least, greatest] {
             match end {
-                Some((point, row, value)) => cells.extend([figure(value), whereabouts(outcome, point, row)]),
+                Some((point, row, value)) => cells.extend([figure(name, value), whereabouts(outcome, point, row)]),
                 None => cells.extend(["none".to_owned(), String::new()]),
             }
         }
@@ -103,8 +104,17 @@ pub fn table(outcome: &VaryOutcome) -> String {
             first.failed.as_deref().unwrap_or_default()
         )),
     }
+    if !nowhere.is_empty() && outcome.points.iter().any(|p| !p.rows.is_empty()) {
+        let names: Vec<&str> = nowhere.iter().map(|(_, name)| name.as_str()).collect();
+        text.push_str(&format!("nowhere in this station: {}\n", names.join(", ")));
+    }
     text.push_str(&each_point(outcome));
     text
+}
+
+/// Whether any point has a value of the quantity with an index.
+fn exists(outcome: &VaryOutcome, n: usize) -> bool {
+    outcome.points.iter().flat_map(|p| &p.rows).any(|row| row.values.get(n).is_some_and(Option::is_some))
 }
 
 /// Nominal and worst of every point, a table a quantity.
@@ -121,7 +131,7 @@ fn each_point(outcome: &VaryOutcome) -> String {
     }
     let with_variants = points.iter().flat_map(|p| &p.rows).any(|r| r.variant != "nominal");
     let mut text = String::new();
-    for (n, name) in outcome.want.iter().enumerate() {
+    for (n, name) in outcome.want.iter().enumerate().filter(|(n, _)| exists(outcome, *n)) {
         let worse = points.iter().find_map(|p| p.summary.get(n)?.worse);
         let (what, over) = match worse {
             Some(Worse::Larger) => (" (worst is the largest)", "worst over the variants"),
@@ -137,10 +147,10 @@ fn each_point(outcome: &VaryOutcome) -> String {
         table.set_header(heads);
         for point in &points {
             let Some(summary) = point.summary.get(n) else { continue };
-            let mut cells = point.values.clone();
-            cells.push(ends(&summary.nominal));
+            let mut cells: Vec<String> = point.values.iter().map(|v| shortened(v)).collect();
+            cells.push(ends(name, &summary.nominal));
             if with_variants {
-                cells.push(ends(&summary.over_variants));
+                cells.push(ends(name, &summary.over_variants));
             }
             table.add_row(cells);
         }
@@ -150,10 +160,10 @@ fn each_point(outcome: &VaryOutcome) -> String {
 }
 
 /// The worst value and where it is, or both ends where neither is worse.
-fn ends(ends: &VariedEnds) -> String {
+fn ends(name: &str, ends: &VariedEnds) -> String {
     let at = |e: &VariedExtreme| {
         let variant = if e.variant == "nominal" { String::new() } else { format!(", {}", e.variant) };
-        format!("{} at {:.4} MHz{variant}", figure(e.value), e.frequency_hz / 1e6)
+        format!("{} at {} MHz{variant}", figure(name, e.value), figures::megahertz(e.frequency_hz))
     };
     match (&ends.worst, &ends.smallest, &ends.largest) {
         (Some(worst), _, _) => at(worst),
@@ -163,18 +173,38 @@ fn ends(ends: &VariedEnds) -> String {
     }
 }
 
-fn figure(value: f64) -> String {
-    if value != 0.0 && !(1e-3..1e6).contains(&value.abs()) { format!("{value:.3e}") } else { format!("{value:.4}") }
+/// A value with its unit: the name of a quantity ends in it.
+fn figure(name: &str, value: f64) -> String {
+    let last = name.rsplit('.').next().unwrap_or(name);
+    match last {
+        "conductivity_s_per_m" => format!("{} mS/m", figures::three(1e3 * value)),
+        _ => figures::quantity(last, value),
+    }
+}
+
+/// A value varied, its number to five figures: drawn ones carry more than a person needs; CSV and JSON have all of them.
+fn shortened(value: &str) -> String {
+    let (number, unit) = value.split_once(' ').map_or((value, String::new()), |(n, unit)| (n, format!(" {unit}")));
+    match number.parse::<f64>() {
+        Ok(exact) if exact.is_finite() && exact != 0.0 && number.len() > 7 => {
+            let decimals = (4 - exact.abs().log10().floor() as i32).clamp(0, 12) as usize;
+            let text = format!("{exact:.decimals$}");
+            let text = if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.') } else { &text };
+            format!("{text}{unit}")
+        }
+        _ => value.to_owned(),
+    }
 }
 
 fn values(outcome: &VaryOutcome, point: &VariedPoint) -> String {
-    let each: Vec<String> = outcome.over.iter().zip(&point.values).map(|(path, v)| format!("{path} = {v}")).collect();
+    let each: Vec<String> =
+        outcome.over.iter().zip(&point.values).map(|(path, v)| format!("{path} = {}", shortened(v))).collect();
     each.join(", ")
 }
 
 fn whereabouts(outcome: &VaryOutcome, point: &VariedPoint, row: &VariedRow) -> String {
     let variant = if row.variant == "nominal" { String::new() } else { format!(", {}", row.variant) };
-    format!("{}, {:.4} MHz{variant}", values(outcome, point), row.frequency_hz / 1e6)
+    format!("{}, {} MHz{variant}", values(outcome, point), figures::megahertz(row.frequency_hz))
 }
 
 fn edge(row: &VariedRow) -> Option<String> {
@@ -241,14 +271,40 @@ mod tests {
     }
 
     #[test]
+    fn figures_carry_units_and_what_exists_nowhere_has_no_page() {
+        for (name, value, said) in [
+            ("shield.entry_current_a", 0.0059, "5.90 mA"),
+            ("choke.entry choke.current_a", 8.64e-4, "0.864 mA"),
+            ("shield.entry_voltage_v", 12.3, "12.3 V"),
+            ("feed.resistance_ohm", 2450.0, "2450 ohm"),
+            ("power.radiated_fraction", 0.52, "52 %"),
+            ("earth.conductivity_s_per_m", 0.005, "5.00 mS/m"),
+            ("radio.swr", 1.25, "1.25"),
+            ("earth.permittivity", 13.0, "13.0"),
+        ] {
+            assert_eq!(figure(name, value), said, "{name}");
+        }
+        for (typed, said) in [
+            ("10.7682166842 m", "10.768 m"),
+            ("0.00123456789", "0.0012346"),
+            ("10.5 m", "10.5 m"),
+            ("dry sand of the yard", "dry sand of the yard"),
+        ] {
+            assert_eq!(shortened(typed), said);
+        }
+        let text = table(&outcome());
+        assert!(text.contains("nowhere in this station: power.unaccounted_w") && !text.contains("none |"), "{text}");
+    }
+
+    #[test]
     fn the_table_says_where_the_extremes_are() {
         let text = table(&outcome());
-        assert!(text.contains("coax.length = 4 m, 7.1000 MHz, flood"), "{text}");
+        assert!(text.contains("coax.length = 4 m, 7.1 MHz, flood"), "{text}");
         assert!(text.contains("2 points, 1 failed, the first at coax.length = 40 m"), "{text}");
         let mut other = outcome();
         (other.points[0].rows[1].values[0], other.points[0].rows[1].frequency_hz) = (Some(4.25), 7.15e6);
         other.points[0].summary = VariedSummary::of(&want(), &other.points[0].rows);
-        for said in ["radio.swr (worst is the largest)", "3.5000 at 7.1000 MHz", "4.2500 at 7.1500 MHz, flood"] {
+        for said in ["radio.swr (worst is the largest)", "3.50 at 7.1 MHz", "4.25 at 7.15 MHz, flood"] {
             let text = table(&other);
             assert!(text.contains(said), "{said} is missing in {text}");
         }

@@ -92,11 +92,14 @@ fn key(drawing: &mut Drawing, curves: &[Curve]) {
         let (x, y) = (100.0 + room * column as f64, 92.0 + 22.0 * row as f64);
         drawing.patterned(&[[x, y], [x + 62.0, y]], 2.25, 0.0, curve.pattern);
         let place = figures::amperes(curve.shield.largest_current_a);
-        let said = format!(
-            "{} ({} MHz), largest {place}",
-            bands::short(curve.frequency),
-            figures::megahertz(curve.frequency.frequency_hz)
-        );
+        let said = match curve.frequency.edge {
+            Some(_) => format!(
+                "{} ({} MHz), largest {place}",
+                bands::short(curve.frequency),
+                figures::megahertz(curve.frequency.frequency_hz)
+            ),
+            None => format!("{}, largest {place}", bands::short(curve.frequency)),
+        };
         drawing.words(Words::centred([x + 70.0, y], SMALL, Anchor::Start, fitted(&said, SMALL, room - 84.0)));
     }
 }
@@ -186,6 +189,20 @@ mod tests {
             assert!(drawing.texts().iter().any(|(text, _)| *text == band), "{band}");
         }
         assert!(drawing.texts().iter().any(|(text, _)| text.contains("entry to the shack, entry rod joined")));
+    }
+
+    #[test]
+    fn a_frequency_of_its_own_is_said_once() {
+        let mut prediction = sample::prediction();
+        for frequency in &mut prediction.frequencies {
+            (frequency.band, frequency.edge) = (None, None);
+        }
+        let drawing = drawing(&prediction).unwrap();
+        let legend: Vec<&str> = drawing.texts().iter().map(|(t, _)| *t).filter(|t| t.contains("largest ")).collect();
+        assert!(
+            legend.iter().any(|t| t.contains(" MHz, largest")) && !legend.iter().any(|t| t.contains('(')),
+            "{legend:?}"
+        );
     }
 
     #[test]
