@@ -131,7 +131,8 @@ fn as_text(file: &std::path::Path, loaded: &Loaded) -> Result<String, Stop> {
     }
     let shown: Vec<String> =
         layout.operation.frequencies.iter().map(|f| format!("{:.3}", f.frequency_hz / 1e6)).collect();
-    let _ = writeln!(text, "  computes    {} frequencies: {} MHz", shown.len(), shown.join(", "));
+    let what = if shown.len() == 1 { "frequency" } else { "frequencies" };
+    let _ = writeln!(text, "  computes    {} {what}: {} MHz", shown.len(), shown.join(", "));
     if !loaded.variants.is_empty() {
         let names: Vec<&str> = loaded.variants.iter().map(|(name, _)| name.as_str()).collect();
         let _ = writeln!(text, "  variants    {}", names.join(", "));
@@ -218,7 +219,8 @@ mod tests {
         std::fs::write(&file, text).unwrap();
         let loaded = load(&StationArgs { file: file.clone(), sets: Vec::new() }).unwrap();
         let said = as_text(&file, &loaded).unwrap();
-        assert!(said.contains("foot rod: 2 m (6 ft 6.7 in) in the earth, 0.1 m (3.9 in) above it"), "{said}");
+        assert!(said.contains("foot rod: 2 m (6 ft 7 in) in the earth, 0.1 m (4 in) above it"), "{said}");
+        assert!(said.contains("computes    1 frequency: 7.100 MHz"), "{said}");
         for line in said.lines().skip(1) {
             let column: Vec<char> = line.chars().skip(12).take(3).collect();
             assert!(column[0] == ' ' || column[1] == ' ', "{line}");

@@ -83,7 +83,7 @@ pub(super) fn target(root: &Node, path: &str, place: Place) -> Result<Target, Fa
     }
     let Some(known) = keys_of(&table) else {
         let tables = RawStation::KEYS.iter().copied();
-        let mend = whole_path(root, &steps, tables.clone()).unwrap_or_else(|| super::offer(&table, tables));
+        let mend = whole_path(root, &steps).unwrap_or_else(|| super::offer(&table, tables));
         return Err(nothing(format!("there is no table \"{table}\""), mend));
     };
     let (row, rest) = if in_rows(&table) {
@@ -111,17 +111,14 @@ pub(super) fn target(root: &Node, path: &str, place: Place) -> Result<Target, Fa
 }
 
 /// The path that was meant where only a name was written: "did you mean `wire.counterpoise`?".
-fn whole_path<'a>(root: &Node, steps: &[String], tables: impl Iterator<Item = &'a str> + Clone) -> Option<String> {
+fn whole_path(root: &Node, steps: &[String]) -> Option<String> {
     let (name, rest) = steps.split_first()?;
     let mut named: Vec<(&str, String)> = Vec::new();
-    for table in tables.clone().filter(|t| in_rows(t)) {
+    for table in RawStation::KEYS.iter().copied().filter(|t| in_rows(t)) {
         named.extend(row_names(root, table).into_iter().map(|(n, _)| (table, n)));
     }
-    let meant = named.iter().find(|(_, n)| n == name).or_else(|| {
-        let near = super::nearest(name, named.iter().map(|(_, n)| n.as_str()))?;
-        let no_table = super::nearest(name, tables).is_none();
-        named.iter().find(|(_, n)| no_table && n == near)
-    })?;
+    let near = super::nearest(name, named.iter().map(|(_, n)| n.as_str()).chain(RawStation::KEYS.iter().copied()));
+    let meant = named.iter().find(|(_, n)| n == name).or_else(|| named.iter().find(|(_, n)| near == Some(n)))?;
     let quoted = |step: &str| if step.contains([' ', '.']) { format!("\"{step}\"") } else { step.to_owned() };
     let path: Vec<String> =
         [meant.0, &meant.1].into_iter().chain(rest.iter().map(String::as_str)).map(quoted).collect();
